@@ -1,0 +1,15 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* Numbers in messages, independent of locale. Not installed. */
+#ifndef KELSPAN_NUMBER_TEXT_H
+#define KELSPAN_NUMBER_TEXT_H
+
+#include <kelspan.h>
+
+/* A temperature in K as a message shows it: up to 7 significant digits. out: KEL_NUMBER_SIZE bytes. */
+static inline void
+kel__temperature_name(char *out, double t)
+{
+    kel_number_format_digits(out, t, 7);
+}
+
+#endif
