@@ -27,7 +27,7 @@ const command commands[] = {
     { "residuals", "list the observations with fitted values and residuals", "RECORD",
       "Lists each observation that was fitted, the curve's value there, the residual, the share of a table's shared error and the "
       "standard uncertainty, and the rows that were left out with the reason.",
-      run_residuals, GROUPS(&residual_options, &csv_group, &unit_group, &table_group, &output_group) },
+      run_residuals, GROUPS(&csv_group, &unit_group, &table_group, &output_group) },
     { "value", "coefficient, mean coefficient, expansion and length ratio at temperatures", "RECORD T...",
       "Answers at each temperature T. The mean coefficient, the expansion and the length ratio count from the reference "
       "temperature.", run_value,

@@ -22,7 +22,7 @@ const command *command_find(const char *name);
 /* The command whose name is nearest to `name`, NULL if none is near. */
 const command *command_near(const char *name);
 
-extern const option_group read_options, fit_options, adopt_options, show_options, residual_options,
+extern const option_group read_options, fit_options, adopt_options, show_options,
     integrate_options, tabulate_options;
 int run_read(job *j);
 int run_fit(job *j);

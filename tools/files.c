@@ -141,8 +141,8 @@ sink_begin(sink *s, int fd)
     *s = (sink){ fd, KEL_TEXT_INIT, 0 };
 }
 
-static void
-pour(sink *s)
+void
+sink_pour(sink *s)
 {
     const char *bytes = s->pending.bytes;
     size_t n = s->pending.size;
@@ -162,7 +162,7 @@ bool
 sink_pass(sink *s)
 {
     if (s->pending.size >= PASS)
-        pour(s);
+        sink_pour(s);
     return s->error == 0 && !s->pending.failed;
 }
 
@@ -171,7 +171,7 @@ sink_end(const job *j, sink *s)
 {
     bool failed = s->pending.failed;
     if (!failed)
-        pour(s);
+        sink_pour(s);
     kel_text_free(&s->pending);
     if (failed)
         return fail_memory(j);

@@ -41,6 +41,8 @@ typedef struct sink { int fd; kel_text pending; int error; } sink;
 void sink_begin(sink *s, int fd);
 /* Writes out what is pending if it is much. False once writing failed. */
 bool sink_pass(sink *s);
+/* Writes out what is pending and says nothing of a failure. */
+void sink_pour(sink *s);
 /* Writes the rest. EXIT_FINE, or EXIT_FAILED with the error said. */
 int sink_end(const job *j, sink *s);
 

@@ -173,7 +173,7 @@ add_reservation_text(kel_text *out, const subject *s, const concern *about, unsi
 }
 
 static int
-keep(job *j, const subject *s, const concern *about, unsigned flag, const char *file, size_t place)
+keep(job *j, const subject *s, const concern *about, unsigned flag, const char *input, size_t place)
 {
     note **end = &j->reservations;
     for (; *end != NULL; end = &(*end)->next)
@@ -185,7 +185,7 @@ keep(job *j, const subject *s, const concern *about, unsigned flag, const char *
     add_reservation_text(&text, s, about, flag);
     note *n = text.failed ? NULL : kel_arena_take(j->memory, 1, sizeof *n);
     if (n != NULL) {
-        *n = (note){ reservation_code(flag), kel_arena_string(j->memory, text.bytes), file, place, 1, flag, NULL };
+        *n = (note){ reservation_code(flag), kel_arena_string(j->memory, text.bytes), input, place, 1, flag, NULL };
         if (n->text == NULL)
             n = NULL;
     }
@@ -197,7 +197,7 @@ keep(job *j, const subject *s, const concern *about, unsigned flag, const char *
 }
 
 int
-reserve(job *j, const subject *s, const concern *about, unsigned flags, const char *file, size_t place)
+reserve(job *j, const subject *s, const concern *about, unsigned flags, const char *input, size_t place)
 {
     if (j->within_range && (flags & KEL_FLAG_EXTRAPOLATED)) {
         kel_text text = KEL_TEXT_INIT;
@@ -207,10 +207,10 @@ reserve(job *j, const subject *s, const concern *about, unsigned flags, const ch
             return fail_memory(j);
         kel_error_set(&err, KEL_E_RANGE, place, 0, "%s", text.bytes);
         kel_text_free(&text);
-        return fail(j, file, &err);
+        return fail(j, input, &err);
     }
     for (size_t i = 0; i < CODES; i++)
-        if ((flags & codes[i].flag) && keep(j, s, about, codes[i].flag, file, place) != EXIT_FINE)
+        if ((flags & codes[i].flag) && keep(j, s, about, codes[i].flag, input, place) != EXIT_FINE)
             return EXIT_FAILED;
     return EXIT_FINE;
 }

@@ -92,33 +92,32 @@ read_header_cell(stream *p, const kel_row *row, size_t k)
 }
 
 /* The next row that is no comment, NULL at the end. */
-static int
-next_row(const stream *p, const kel_row **row)
+static kel_status
+next_row(const stream *p, const kel_row **row, kel_error *err)
 {
-    kel_error err = { 0 };
-    do
-        if (kel_rows_next(row, p->rows, &err) < 0)
-            return fail(p->j, p->name, &err);
-    while (*row != NULL && (*row)->comment);
-    return EXIT_FINE;
+    do {
+        kel_status status = kel_rows_next(row, p->rows, err);
+        if (status < 0)
+            return status;
+    } while (*row != NULL && (*row)->comment);
+    return KEL_OK;
 }
 
 static int
 read_header(stream *p)
 {
     const kel_row *row;
-    int status = next_row(p, &row);
-    if (status != EXIT_FINE)
-        return status;
+    kel_error err = { 0 };
+    if (next_row(p, &row, &err) < 0)
+        return fail(p->j, p->name, &err);
     if (row == NULL)
         return fail_text(p->j, p->name, "no header 'from [K],to [K]': the file is empty");
     for (size_t k = 0; k < row->count; k++) {
-        status = read_header_cell(p, row, k);
+        int status = read_header_cell(p, row, k);
         if (status != EXIT_FINE)
             return status;
     }
     if (p->cell[FROM] == 0 || p->cell[TO] == 0) {
-        kel_error err = { 0 };
         kel_error_set(&err, KEL_E_SYNTAX, 0, 0, "the header has no '%s'", p->cell[FROM] == 0 ? "from [K]" : "to [K]");
         return fail_at(p, row->line, 1, &err);
     }
@@ -210,26 +209,27 @@ write_batch(stream *p)
 
 /* --- rows in --- */
 
-static int
-read_row(stream *p, const kel_row *row)
+static kel_status
+read_row(stream *p, const kel_row *row, kel_error *err)
 {
     batch *b = p->now;
-    kel_error err = { 0 };
-    if (row->count != p->cells) {
-        kel_error_set(&err, KEL_E_SYNTAX, 0, 0, "%zu cells, but the header has %zu", row->count, p->cells);
-        return fail_at(p, row->line, 1, &err);
-    }
+    if (row->count != p->cells)
+        return kel_error_set(err, KEL_E_SYNTAX, row->line, 1, "%zu cells, but the header has %zu", row->count, p->cells);
     for (int i = 0; i < INPUTS; i++) {
         if (p->cell[i] == 0)
             continue;
         const kel_cell *c = &row->cells[p->cell[i] - 1];
         if (c->size == 0)
-            kel_error_set(&err, KEL_E_SYNTAX, 0, 1, "an empty cell where a number is needed");
-        if (c->size == 0 || kel_unit_read(&b->in[i][b->n], NULL, &p->unit[i], c->bytes, c->size, &err) < 0)
-            return fail_at(p, row->line, c->column + (err.column > 0 ? err.column - 1 : 0), &err);
+            return kel_error_set(err, KEL_E_SYNTAX, row->line, c->column, "an empty cell where a number is needed");
+        kel_status status = kel_unit_read(&b->in[i][b->n], NULL, &p->unit[i], c->bytes, c->size, err);
+        if (status < 0) {
+            err->line = row->line;
+            err->column = c->column + (err->column > 0 ? err->column - 1 : 0);
+            return status;
+        }
     }
     b->line[b->n++] = row->line;
-    return EXIT_FINE;
+    return KEL_OK;
 }
 
 static int
@@ -237,25 +237,15 @@ run(stream *p)
 {
     int status = read_header(p);
     const kel_row *row = NULL;
-    if (status != EXIT_FINE)
-        return status;
-    for (;;) {
-        /* The error about row n is said when it is met; what waits before it must be written all the same. */
-        status = next_row(p, &row);
-        if (status == EXIT_FINE && row != NULL)
-            status = read_row(p, row);
-        if (status != EXIT_FINE || row == NULL)
-            break;
-        if (p->now->n == BATCH) {
+    kel_error err = { 0 };
+    kel_status in = KEL_OK;
+    while (status == EXIT_FINE && (in = next_row(p, &row, &err)) >= 0 && row != NULL && (in = read_row(p, row, &err)) >= 0)
+        if (p->now->n == BATCH)
             status = write_batch(p);
-            if (status != EXIT_FINE)
-                return status;
-        }
-    }
-    /* An error in the rows that wait comes earlier in the file, but one error line is the rule: the one already said. */
-    bool said = status != EXIT_FINE;
-    int rest = said ? write_rest(p) : write_batch(p);
-    return said ? status : rest;
+    /* What waits stands before the bad row; an error found there is the earlier one, and the only one said. */
+    if (status == EXIT_FINE && p->now->n > 0)
+        status = write_batch(p);
+    return status == EXIT_FINE && in < 0 ? fail(p->j, p->name, &err) : status;
 }
 
 int
@@ -278,6 +268,8 @@ stream_pairs(job *j, const subject *s, const char *name)
         status = run(&p);
     if (status == EXIT_FINE)
         status = sink_end(j, &p.out);
+    else
+        sink_pour(&p.out); /* the rows before the bad one stand */
     kel_rows_free(p.rows);
     free(p.now);
     kel_text_free(&p.out.pending);

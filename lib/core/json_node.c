@@ -5,10 +5,20 @@
 #include <math.h>
 #include <string.h>
 
-enum { LONGEST_KEY = 64 };
+enum { LONGEST_QUOTE = 64 };
 
 /* Integers up to here are exact as doubles. */
 static const double largest_count = 9007199254740992.0;
+
+/* What a file says may be long; what is wrong with it must still fit behind it. */
+static void
+add_cut(kel_text *text, const char *s)
+{
+    size_t n = strlen(s);
+    kel_text_quote(text, s, n < LONGEST_QUOTE ? n : LONGEST_QUOTE);
+    if (n > LONGEST_QUOTE)
+        kel_text_add(text, "...");
+}
 
 /* "columns[2].label": the way from the root. */
 static void
@@ -23,11 +33,7 @@ add_place(kel_text *text, const kel__node *node)
     }
     if (text->size != 0)
         kel_text_add(text, ".");
-    /* A key of the file may be long; what is wrong with it must still fit behind it. */
-    size_t n = strlen(node->key);
-    kel_text_quote(text, node->key, n < LONGEST_KEY ? n : LONGEST_KEY);
-    if (n > LONGEST_KEY)
-        kel_text_add(text, "...");
+    add_cut(text, node->key);
 }
 
 void
@@ -94,7 +100,9 @@ kel__node_word(kel__reader *reader, const kel__node *node, const kel__words *lis
     if (place >= 0 || reader->status != KEL_OK)
         return place >= 0 ? place : 0;
     kel_text what = KEL_TEXT_INIT;
-    kel_text_add(&what, "is none of ");
+    kel_text_add(&what, "= '");
+    add_cut(&what, word);
+    kel_text_add(&what, "' is none of ");
     for (int i = 0; i < list->count; i++)
         kel_text_printf(&what, "%s'%s'", i == 0 ? "" : ", ", list->words[i]);
     kel__read_fail(reader, node, what.failed ? "is no word that is known here" : what.bytes);

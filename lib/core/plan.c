@@ -55,7 +55,8 @@ quotient(kel__plan *plan, const kel_content *c, const kel_query *q, double f, do
         add_value_term(plan, q->to, 1.0 / d);
     else
         add_integral_term(plan, q->quantity == KEL_EXPANSION ? q->reference : q->from, q->to, 1.0 / d);
-    if (p != R)
+    /* A change always leans on `at`; where that is R the interval is empty and adds nothing to the gradient. */
+    if (p != R || q->quantity == KEL_CHANGE)
         add_integral_term(plan, R, p, -f / d / d);
 }
 

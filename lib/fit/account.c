@@ -31,17 +31,12 @@ static kel_status
 lay_gaps(account *c, kel_error *err)
 {
     const kel__problem *p = c->p;
-    kel_interval *supports = kel_arena_take(c->memory, p->row_count, sizeof *supports);
-    if (supports == NULL)
+    kel_interval *support = kel_arena_take(c->memory, p->row_count, sizeof *support);
+    if (support == NULL)
         return no_memory(err);
-    for (size_t i = 0; i < p->row_count; i++) {
-        const kel_observation *o = p->rows[i].seen;
-        supports[i] = (kel_interval){ fmin(o->from, o->to), fmax(o->from, o->to) };
-    }
-    kel_interval *gaps;
-    kel_status status = kel__support_gaps(&gaps, &c->content->gap_count, supports, p->row_count, p->range, p->options->gap, c->memory, err);
-    c->content->gaps = gaps;
-    return status;
+    for (size_t i = 0; i < p->row_count; i++)
+        support[i] = kel__support_of(p->rows[i].seen);
+    return kel__support_gaps(&c->content->gaps, &c->content->gap_count, c->memory, support, p->row_count, p->range, p->options->gap, err);
 }
 
 static kel_status

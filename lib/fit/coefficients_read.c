@@ -118,7 +118,9 @@ read_piece(kel__published *out, const kel__layout *layout, const kel__sheet_row 
     if ((status = read_bound(&piece->from, &layout->from_unit, layout->from, row, comma, err)) != KEL_OK ||
         (status = read_bound(&piece->to, &layout->to_unit, layout->to, row, comma, err)) != KEL_OK)
         return status;
-    if (!(piece->from < piece->to))
+    /* A record made of one temperature is written as one piece of no width. */
+    bool point = piece->from == piece->to && out->only_piece && layout->powers == 1;
+    if (!(piece->from < piece->to) && !point)
         return kel_error_set(err, KEL_E_DATA, row->line, piece->column, "the piece must run from the lower to the higher temperature");
     return read_powers(out, piece, layout, row, err);
 }
@@ -161,6 +163,7 @@ read_pieces(kel__published *out, const struct sheet *sheet, kel_error *err)
         return status;
     if (sheet->count == 1)
         return kel_error_set(err, KEL_E_DATA, header->line, 1, "no piece under the header");
+    out->only_piece = sheet->count == 2;
     out->pieces = kel_arena_take(out->arena, sheet->count - 1, sizeof *out->pieces);
     if (out->pieces == NULL)
         return no_memory(err);
@@ -188,5 +191,81 @@ kel__published_read(kel__published *out, kel_input input, const char *const *set
         status = read_pieces(out, &sheet, err);
     kel__metadata_free(metadata);
     free(sheet.rows);
+    return status;
+}
+
+kel_status
+kel__adopt_warn(kel__adopt_warnings *warnings, kel_arena *arena, const char *code, size_t line, const kel_text *text, kel_error *err)
+{
+    for (size_t i = 0; i < warnings->count; i++)
+        if (strcmp(warnings->list[i].code, code) == 0) {
+            warnings->list[i].count++;
+            return KEL_OK;
+        }
+    const char *copy = text->failed ? NULL : kel_arena_string(arena, text->bytes);
+    if (copy == NULL)
+        return no_memory(err);
+    warnings->list[warnings->count++] = (kel_warning){ code, copy, line, 1 };
+    return KEL_OK;
+}
+
+/* What the caller sees is the first member. */
+typedef struct held_report { kel_adopt_report report; kel_arena *arena; } held_report;
+
+static kel_status
+make_report(kel_adopt_report **out, const kel__adopt_warnings *warnings, kel_error *err)
+{
+    held_report *made = calloc(1, sizeof *made);
+    if (made == NULL || (made->arena = kel_arena_new()) == NULL) {
+        free(made);
+        return no_memory(err);
+    }
+    kel_warning *list = kel_arena_copy(made->arena, warnings->list, warnings->count, sizeof *list);
+    bool complete = list != NULL;
+    for (size_t i = 0; i < warnings->count && complete; i++)
+        complete = (list[i].text = kel_arena_string(made->arena, list[i].text)) != NULL;
+    made->report = (kel_adopt_report){ list, warnings->count };
+    if (!complete) {
+        kel_adopt_report_free(&made->report);
+        return no_memory(err);
+    }
+    *out = &made->report;
+    return KEL_OK;
+}
+
+void
+kel_adopt_report_free(kel_adopt_report *made)
+{
+    if (made == NULL)
+        return;
+    kel_arena_free(((held_report *)made)->arena);
+    free(made);
+}
+
+kel_status
+kel_coefficients_read(kel_record **out, kel_adopt_report **report, kel_input input, const char *name, const char *const *settings,
+                      size_t setting_count, kel_error *err)
+{
+    if (report != NULL)
+        *report = NULL;
+    if (out == NULL || name == NULL || (settings == NULL && setting_count > 0))
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "coefficients need a name and a place for the record");
+    *out = NULL;
+    kel__published published = { .arena = kel_arena_new() };
+    if (published.arena == NULL)
+        return no_memory(err);
+    const char *slash = strrchr(name, '/');
+    published.name = slash == NULL ? name : slash + 1;
+    kel__adopt_warnings warnings = { .count = 0 };
+    kel_status status = kel__published_read(&published, input, settings, setting_count, err);
+    for (size_t i = 0; i < published.metadata.warning_count && status == KEL_OK; i++)
+        warnings.list[warnings.count++] = published.metadata.warnings[i];
+    if (status == KEL_OK)
+        status = kel__published_curve(out, &warnings, &published, err);
+    if (status == KEL_OK && report != NULL && (status = make_report(report, &warnings, err)) != KEL_OK) {
+        kel_record_free(*out);
+        *out = NULL;
+    }
+    kel_arena_free(published.arena);
     return status;
 }

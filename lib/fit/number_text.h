@@ -5,11 +5,14 @@
 
 #include <kelspan.h>
 
-/* A temperature in K as a message shows it: up to 7 significant digits. out: KEL_NUMBER_SIZE bytes. */
+/* A temperature as a message shows it: up to 7 significant digits, without zeros at the end. out: KEL_NUMBER_SIZE bytes. */
 static inline void
 kel__temperature_name(char *out, double t)
 {
-    kel_number_format_digits(out, t, 7);
+    double rounded;
+    size_t n = kel_number_format_digits(out, t, 7);
+    if (kel_number_read(&rounded, out, n, NULL) == KEL_OK)
+        kel_number_format(out, rounded);
 }
 
 #endif

@@ -204,20 +204,20 @@ merge_transitions(kel__problem *p, kel_error *err)
     return KEL_OK;
 }
 
-static void
-find_hull(kel__problem *p)
+static kel_status
+find_hull(kel__problem *p, kel_error *err)
 {
-    kel_interval hull = { INFINITY, -INFINITY };
-    for (size_t i = 0; i < p->row_count; i++) {
-        const kel_observation *o = p->rows[i].seen;
-        hull.lo = fmin(hull.lo, fmin(o->from, o->to));
-        hull.hi = fmax(hull.hi, fmax(o->from, o->to));
-    }
-    p->hull = p->range = hull;
-    if (p->options->range.lo > hull.lo)
-        p->range.lo = fmin(p->options->range.lo, hull.hi);
-    if (p->options->range.hi < hull.hi)
+    kel_interval *support = kel_arena_take(p->memory, p->row_count, sizeof *support);
+    if (support == NULL)
+        return no_memory(err);
+    for (size_t i = 0; i < p->row_count; i++)
+        support[i] = kel__support_of(p->rows[i].seen);
+    p->hull = p->range = kel__support_hull(support, p->row_count);
+    if (p->options->range.lo > p->hull.lo)
+        p->range.lo = fmin(p->options->range.lo, p->hull.hi);
+    if (p->options->range.hi < p->hull.hi)
         p->range.hi = fmax(p->options->range.hi, p->range.lo);
+    return KEL_OK;
 }
 
 /* Joins: transitions inside the hull, without continuity, and those asked for. */
@@ -235,7 +235,8 @@ collect_joins(kel__problem *p, kel_error *err)
                              o->continuity_count, o->join_count);
     size_t i = 0, k = 0;
     while (i < p->transition_count || k < o->join_count) {
-        double t = i < p->transition_count ? p->transitions[i].at : INFINITY, j = k < o->join_count ? o->joins[k] : INFINITY;
+        double t = i < p->transition_count ? p->transitions[i].at : (double)INFINITY;
+        double j = k < o->join_count ? o->joins[k] : (double)INFINITY;
         if (t <= j) { /* a transition, which makes an equal join superfluous */
             i++;
             k += t == j;
@@ -350,8 +351,7 @@ kel__problem_make(kel__problem *problem, kel_arena *memory, const kel_table *con
     if ((status = collect_rows(problem, err)) < 0 || (status = measure_columns(problem, err)) < 0 ||
         (status = collect_shared(problem, err)) < 0 || (status = merge_transitions(problem, err)) < 0)
         return status;
-    find_hull(problem);
-    if ((status = collect_joins(problem, err)) < 0)
+    if ((status = find_hull(problem, err)) < 0 || (status = collect_joins(problem, err)) < 0)
         return status;
     for (size_t i = 0; i < problem->transition_count; i++)
         set_sides(problem, problem->transitions[i].at);

@@ -26,10 +26,11 @@ typedef struct kel__published {
     kel_unit unit;
     kel__variable variable;
     kel__published_piece *pieces; size_t piece_count;  /* sorted, adjoining */
+    bool only_piece;
     size_t numbers;            /* coefficients printed */
 } kel__published;
 
-enum { KEL__LARGEST_POWER = 60 };
+enum { KEL__LARGEST_POWER = 127 };
 
 /* A row of the file, and which of its cells is what (SIZE_MAX: none). */
 typedef struct kel__sheet_row { size_t line, count; kel_cell *cells; } kel__sheet_row;
@@ -54,6 +55,10 @@ kel_status kel__adopt_warn(kel__adopt_warnings *warnings, kel_arena *arena, cons
 kel_status kel__published_read(kel__published *out, kel_input input, const char *const *settings, size_t setting_count, kel_error *err);
 /* Makes the record. */
 kel_status kel__published_curve(kel_record **out, kel__adopt_warnings *warnings, kel__published *published, kel_error *err);
+/* What a published expansion says beside its derivative: how far from zero it is at the reference (a warning), and the transitions, declared
+   ones and jumps between its pieces, sorted. Of a coefficient curve only the declared ones. */
+kel_status kel__published_steps(kel_declared_transition **out, size_t *count, kel__adopt_warnings *warnings, const kel__published *published,
+                                kel_error *err);
 /* Modes of the stated uncertainty and lot spread for content's pieces and mean curve, and what goes with them. */
 kel_status kel__published_modes(kel_content *content, kel__adopt_warnings *warnings, const kel__published *published, kel_error *err);
 /* Temperatures inside the pieces at which a stated uncertainty changes: into at[count...]. Room for four more a clause is needed. */

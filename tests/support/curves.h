@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Invented curves for tests of the evaluator, and the same functionals in quadruple precision.
 
-   A `specimen` holds a record that is put together by hand, without kel_record_build. Its long values rest on nothing of the library: powers
-   of quadruple arithmetic (113 bits) in the plain recurrence and in antiderivatives, whose cancellation costs at most 6 + 4 of 34 digits here. */
+   A `specimen` holds a record that is put together by hand, without kel_record_build. Its long values rest on nothing
+   of the library: powers of quadruple arithmetic (113 bits) in the plain recurrence and in antiderivatives, whose
+   cancellation costs at most 6 + 4 of 34 digits here. */
 #ifndef KEL_TEST_CURVES_H
 #define KEL_TEST_CURVES_H
 
@@ -48,7 +49,8 @@ random_below(uint64_t *state, size_t n)
     return (size_t)(random_bits(state) % n);
 }
 
-/* Pieces of the degree given between 4 K and some 1000 K, with a step at every join and one outside; alpha of the order of `size`. */
+/* Pieces of the degree given between 4 K and some 1000 K, with a step at every join and one outside; alpha of the order
+   of `size`. */
 static inline void
 specimen_make(specimen *s, uint64_t *state, size_t pieces, size_t degree, size_t modes, kel_base base, double size)
 {

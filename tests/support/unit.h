@@ -70,8 +70,8 @@ kel_test_run(const char *name, kel_tcase_function *const *cases, size_t n)
 #define KEL_TEST_MAIN(name, ...)                                                          \
     int main(void)                                                                        \
     {                                                                                     \
-        kel_tcase_function *const cases[] = { __VA_ARGS__ };                              \
-        return kel_test_run(name, cases, sizeof cases / sizeof cases[0]);                 \
+        kel_tcase_function *const kel_cases[] = { __VA_ARGS__ };                          \
+        return kel_test_run(name, kel_cases, sizeof kel_cases / sizeof kel_cases[0]);     \
     }
 
 #endif

@@ -84,7 +84,8 @@ START_TEST(additive_and_antisymmetric)
 }
 END_TEST
 
-/* The mean over t - h..t + h is alpha(t) + h^2/6 alpha''; |alpha''| <= (2/w)^2 n^2 (n^2 - 1)/3 sum |c_k| (A. A. Markov). */
+/* The mean over t - h..t + h is alpha(t) + h^2/6 alpha''; |alpha''| <= (2/w)^2 n^2 (n^2 - 1)/3 sum |c_k| (A. A.
+   Markov). */
 START_TEST(derivative_is_the_coefficient)
 {
     uint64_t state = 500 + (uint64_t)_i;
@@ -110,7 +111,8 @@ START_TEST(steps_belong_to_their_temperature)
     uint64_t state = 6;
     specimen_make(&s, &state, 2, 1, 0, KEL_BASE_REFERENCE, 0.0);
     const kel_content *c = &s.record.content;
-    const double at = s.transitions[0].at, below = nextafter(at, 0.0), above = nextafter(at, 1e9), outside = s.transitions[1].at;
+    const double at = s.transitions[0].at, outside = s.transitions[1].at;
+    const double below = nextafter(at, 0.0), above = nextafter(at, 1e9);
     s.steps[0][0] = -8e-6;
     s.steps[0][1] = 1e-3;
     const struct { const char *label; double from, to, want; } rows[] = {
@@ -214,5 +216,6 @@ accuracy(void)
     return c;
 }
 
-KEL_TCASE(laws, steps_belong_to_their_temperature, one_temperature_is_a_constant, a_join_changes_nothing, modes_follow_the_mean)
+KEL_TCASE(laws, steps_belong_to_their_temperature, one_temperature_is_a_constant, a_join_changes_nothing,
+          modes_follow_the_mean)
 KEL_TEST_MAIN("integrate", accuracy, laws)

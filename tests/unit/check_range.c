@@ -72,7 +72,8 @@ START_TEST(kelvin_outside)
 }
 END_TEST
 
-enum { REF = KEL_BASE_REFERENCE, CUR = KEL_BASE_CURRENT, OWN = -1, E = KEL_FLAG_EXTRAPOLATED, G = KEL_FLAG_GAP, T = KEL_FLAG_TRANSITION };
+enum { REF = KEL_BASE_REFERENCE, CUR = KEL_BASE_CURRENT, OWN = -1 };
+enum { E = KEL_FLAG_EXTRAPOLATED, G = KEL_FLAG_GAP, T = KEL_FLAG_TRANSITION };
 #define RECORDS NAN /* the record's reference */
 
 static const struct flag_row {
@@ -147,7 +148,7 @@ static const struct flag_row {
     { "change inside", REF, 200, KEL_CHANGE, 120, 220, 120, RECORDS, OWN, 0 },
     { "change needs the reference", REF, 400, KEL_CHANGE, 120, 220, 120, RECORDS, OWN, E },
     { "change of a length at another place", REF, 200, KEL_CHANGE, 120, 220, 350, RECORDS, OWN, E },
-    { "change of a length at the reference", REF, 400, KEL_CHANGE, 120, 220, 400, RECORDS, OWN, 0 },
+    { "change of a length at a reference outside", REF, 400, KEL_CHANGE, 120, 220, 400, RECORDS, OWN, E },
     { "change, current record", CUR, 400, KEL_CHANGE, 120, 220, 120, RECORDS, OWN, 0 },
     { "change, current record, length at another place", CUR, 200, KEL_CHANGE, 120, 220, 350, RECORDS, OWN, E },
 };
@@ -160,12 +161,12 @@ START_TEST(flags)
     kel_answer answer;
     kel_status status = kel_record_answer(&answer, record, &query, NULL);
     ck_assert_msg(answer.flags == row->want, "%s: flags %u, expected %u", row->label, answer.flags, row->want);
-    kel_status worst = row->want & E ? KEL_W_EXTRAPOLATED : row->want & G ? KEL_W_GAP : row->want & T ? KEL_W_TRANSITION : KEL_OK;
+    kel_status worst = row->want & E ? KEL_W_EXTRAPOLATED : row->want & G ? KEL_W_GAP
+                     : row->want & T ? KEL_W_TRANSITION : KEL_OK;
     ck_assert_msg(status == worst, "%s: status %d, expected %d", row->label, (int)status, (int)worst);
 }
 END_TEST
 
-/* A change at the reference in a reference-length record is the integral alone: the reference counts although it equals `at`. */
 START_TEST(status_is_the_gravest)
 {
     ck_assert_int_eq(kel__flags_status(0), KEL_OK);
