@@ -110,6 +110,7 @@ take_number(struct parser *p, int sign)
     kel__decimal d;
     size_t before = p->at, used = kel__decimal_scan(&d, p->bytes + p->at, p->n - p->at);
     int e = 0;
+    used -= p->bytes[p->at + used - 1] == '.'; /* the point of a product: 100.ft */
     bool plain = used == 2 && d.head == 10 && d.exponent == 0; /* "10", which may have an exponent of its own */
     p->at += used;
     if (plain && !take_exponent(p, &e))

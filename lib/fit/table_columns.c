@@ -195,7 +195,7 @@ kel_status
 kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *err)
 {
     struct kel__table *in = t->inner;
-    bool foreign = options->column_count > 0;
+    bool foreign = in->foreign = options->column_count > 0;
     in->columns = kel_arena_take(in->memory, in->sheet.raw.width, sizeof *in->columns);
     if (in->columns == NULL)
         return kel__no_memory(err);

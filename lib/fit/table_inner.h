@@ -32,6 +32,7 @@ typedef struct kel__leave_out { size_t row; const char *reason; bool met; } kel_
 struct kel__table {
     kel_arena *memory;
     bool printed;              /* read from a file, so that it can be written out */
+    bool foreign;              /* columns were named by --column: heads that say nothing are passed over */
     kel__metadata metadata;
     kel__sheet sheet;
     kel__file_column *columns; /* sheet.raw.width of them */

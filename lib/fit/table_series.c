@@ -157,10 +157,11 @@ warn_kinds(kel_table *t, const bool present[3], const bool fitted[3], kel_error 
     for (size_t k = 3; k-- > 0;)
         if (fitted[k])
             kel_text_printf(&text, "%s is fitted", kel_kind_name((kel_kind)k));
-    for (size_t k = 0; k < 3; k++)
+    for (size_t k = 3; k-- > 0;)
         if (present[k] && !fitted[k])
-            kel_text_printf(&text, "%s %s", n++ == 0 ? "; beside it stand" : " and", kel_kind_name((kel_kind)k));
-    kel_text_add(&text, " and only checked against it (--kind chooses)");
+            kel_text_printf(&text, "%s %s", n++ == 0 ? ";" : " and", kel_kind_name((kel_kind)k));
+    kel_text_add(&text, n == 1 ? " beside it is only checked against it (--kind chooses)"
+                               : " beside it are only checked against it (--kind chooses)");
     return kel__warn(t, "kind", &text, t->inner->sheet.head_line, n, err);
 }
 

@@ -94,7 +94,8 @@ START_TEST(polynomial_continues_outside)
     for (int round = 0; round < 500; round++) {
         specimen_make(&s, &state, 1 + random_below(&state, 3), degrees[_i], 0, KEL_BASE_REFERENCE, 1e-5);
         const kel_content *c = &s.record.content;
-        double above = c->range.hi + random_between(&state, 0.0, 100.0), below = random_between(&state, 0.0, c->range.lo);
+        double above = c->range.hi + random_between(&state, 0.0, 100.0);
+        double below = random_between(&state, 0.0, c->range.lo);
         double t = round % 2 == 0 ? above : below, got = kel__curve_value(c, &c->mean, t);
         const kel_piece *p = long_piece(c, t);
         double size[KEL_COEFFICIENTS_MAX];

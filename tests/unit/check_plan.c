@@ -111,7 +111,8 @@ START_TEST(gradients_are_exact)
 {
     uint64_t state = 20 + (uint64_t)_i;
     for (int round = 0; round < 500; round++) {
-        specimen_make(&s, &state, 1 + random_below(&state, 4), random_below(&state, 12), 3, (kel_base)(round % 2), 2e-4);
+        kel_base base = (kel_base)(round % 2);
+        specimen_make(&s, &state, 1 + random_below(&state, 4), random_below(&state, 12), 3, base, 2e-4);
         const kel_content *c = &s.record.content;
         kel_query q = some_query(&state, c, (kel_quantity)_i);
         kel__plan plan;

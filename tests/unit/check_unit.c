@@ -94,10 +94,10 @@ START_TEST(spelling)
 END_TEST
 
 static const struct { const char *text; int dimension; size_t column; const char *says; } refused[] = {
-    { "", A, 1, "a unit is missing, for example 1e-6/K" }, { "  ", T, 3, "a unit is missing, for example K or degC" },
+    { "", A, 1, "a unit is missing, for example 1e-6/K" }, { "  ", T, 1, "a unit is missing, for example K or degC" },
     { "foo", A, 1, "'foo' at byte 1" }, { "1e-6/foo", A, 6, "'foo' at byte 6" }, { "1e-6/Kx", A, 6, "'Kx' at byte 6" },
     { "um/(m.K", A, 8, "missing at its end" }, { "1e-6/", A, 6, "missing at its end" }, { "1e-6/K)", A, 7, "')' at byte 7" },
-    { "K2", T, 2, "'2' at byte 2" }, { "1e-6/K/", A, 8, "missing at its end" }, { "um/(m/K)", A, 5, "'/K)' at byte 5" },
+    { "K2", T, 2, "'2' at byte 2" }, { "1e-6/K/", A, 8, "missing at its end" }, { "um/(m/K)", A, 6, "'/K)' at byte 6" },
     { "um//m", E, 4, "'/m' at byte 4" }, { "K-1", A, 2, "'-1' at byte 2" }, { "10-6/K", A, 3, "'-6/K' at byte 3" },
     { "mK", D, 1, "'mK' at byte 1" }, { "um/mK", A, 4, "'mK' at byte 4" }, { "k", T, 1, "'k' at byte 1" }, { "c", T, 1, "'c' at byte 1" },
     { "10e-6/K", A, 1, "byte 1" }, { "5/K", A, 1, "byte 1" }, { "2e-6/K", A, 1, "byte 1" }, { "-1e-6/K", A, 1, "byte 1" },
@@ -213,7 +213,7 @@ nearest(double g, int64_t n, int64_t d)
     e -= 53;
     if (m == 0)
         return n == 0;
-    i128 difference = (i128)d * m - ((i128)n << -e), twice = 2 * (difference < 0 ? -difference : difference);
+    i128 difference = (i128)d * m - (i128)n * ((i128)1 << -e), twice = 2 * (difference < 0 ? -difference : difference);
     return twice < d || (twice == d && m % 2 == 0);
 }
 
