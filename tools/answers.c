@@ -207,14 +207,10 @@ static void
 text_notes(kel_text *cell, const answers *a, const question *q)
 {
     unsigned flags = a->of[q->wanted].flags;
-    size_t others = 0;
     add_codes(cell, flags, ", ");
-    for (int i = 0; i < ANSWERS; i++)
-        others += other_extrapolated(a, q, i);
-    if (others == 0 || (others == ANSWERS - 1 && (flags & KEL_FLAG_EXTRAPOLATED)))
+    if (flags & KEL_FLAG_EXTRAPOLATED)
         return;
-    kel_text_add(cell, flags != 0 ? "; extrapolated too: " : "extrapolated: ");
-    const char *before = "";
+    const char *before = flags != 0 ? "; extrapolated: " : "extrapolated: ";
     for (int i = 0; i < ANSWERS; i++)
         if (other_extrapolated(a, q, i)) {
             kel_text_printf(cell, "%s%s", before, names[i]);

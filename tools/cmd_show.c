@@ -167,12 +167,9 @@ text_powers(job *j, kel_text *out, const subject *s, const units *in)
             columns_add_text(table, &cell);
             kel_text_printf(&cell, "%zu", k);
             columns_add_text(table, &cell);
-            kel_text_number(&cell, kel_unit_from_si(&in->coefficient, power[k]));
+            add_digits(&cell, kel_unit_from_si(&in->coefficient, power[k]), 15);
             columns_add_text(table, &cell);
-            double x = kel_unit_from_si(&in->coefficient, u[k]);
-            char digits[KEL_NUMBER_FIXED_SIZE];
-            kel_number_format_digits(digits, x, 3);
-            kel_text_add(&cell, isnan(x) ? "not known" : digits);
+            add_digits(&cell, kel_unit_from_si(&in->coefficient, u[k]), 3);
             columns_add_text(table, &cell);
         }
     }
@@ -181,15 +178,6 @@ text_powers(job *j, kel_text *out, const subject *s, const units *in)
     kel_text_free(&cell);
     columns_free(table);
     return status;
-}
-
-static void
-add_stated(kel_text *out, const char *before, const char *stated)
-{
-    if (stated != NULL) {
-        kel_text_add(out, before);
-        kel_text_quote(out, stated, strlen(stated));
-    }
 }
 
 static int
@@ -202,10 +190,10 @@ text_result(job *j, const subject *s, const units *in, kel_text *out)
         const kel_source *t = &c->sources[i];
         add_label(out, i == 0 ? "made from" : "");
         add_file_name(out, t->name);
-        add_stated(out, ": ", t->material);
-        add_stated(out, ", ", t->condition);
-        add_stated(out, ", direction ", t->direction);
-        add_stated(out, "; source: ", t->source);
+        add_quoted(out, ": ", t->material);
+        add_quoted(out, ", ", t->condition);
+        add_quoted(out, ", direction ", t->direction);
+        add_quoted(out, "; source: ", t->source);
         kel_text_add(out, "\n");
     }
     text_summary(out, c, NULL, in);

@@ -118,6 +118,27 @@ add_rounded(kel_text *out, double x, int decimals)
 }
 
 void
+add_digits(kel_text *out, double x, int digits)
+{
+    char bytes[KEL_NUMBER_FIXED_SIZE], *e;
+    if (isnan(x)) {
+        kel_text_add(out, "not known");
+        return;
+    }
+    kel_number_format_digits(bytes, x, digits);
+    size_t end = strlen(bytes);
+    if (strchr(bytes, '.') != NULL) {
+        e = strchr(bytes, 'e');
+        size_t n = e != NULL ? (size_t)(e - bytes) : end;
+        while (bytes[n - 1] == '0')
+            n--;
+        n -= bytes[n - 1] == '.';
+        memmove(bytes + n, e != NULL ? e : bytes + end, e != NULL ? strlen(e) + 1 : 1);
+    }
+    kel_text_add(out, bytes);
+}
+
+void
 add_uncertainty(kel_text *out, double U, int decimals)
 {
     char digits[KEL_NUMBER_FIXED_SIZE];
@@ -171,8 +192,10 @@ add_measured(kel_text *out, const kel_unit *unit, double value, double u)
     add_unit(out, unit->name);
     kel_text_add(out, "   U = ");
     add_uncertainty(out, U, d);
-    if (!isnan(U))
+    if (!isnan(U)) {
         add_unit(out, unit->name);
+        kel_text_add(out, " (k = 2)");
+    }
 }
 
 void
@@ -209,14 +232,11 @@ student_applies(const kel_content *c)
 void
 add_student(kel_text *out, const kel_content *c)
 {
-    char digits[KEL_NUMBER_FIXED_SIZE], nu[KEL_NUMBER_SIZE];
     if (!student_applies(c))
         return;
-    kel_number_format_fixed(digits, student_factor(c->degrees_of_freedom), 2);
-    kel_number_format_digits(nu, c->degrees_of_freedom, 3);
-    kel_text_printf(out, "for 95 %% take k = %s on the scatter's part (Student, ", digits);
-    char *end = strpbrk(nu, ".");
-    if (end != NULL && strspn(end + 1, "0") == strlen(end + 1))
-        *end = '\0';
-    kel_text_printf(out, "%s degree%s of freedom)\n", nu, strcmp(nu, "1") == 0 ? "" : "s");
+    kel_text_add(out, "for 95 % take k = ");
+    add_rounded(out, student_factor(c->degrees_of_freedom), 2);
+    kel_text_add(out, " on the scatter's part (Student, degrees of freedom ");
+    add_digits(out, c->degrees_of_freedom, 3);
+    kel_text_add(out, ")\n");
 }

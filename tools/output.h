@@ -28,13 +28,15 @@ void add_temperature_number(kel_text *out, const kel_unit *unit, double kelvin);
 int decimals_for(double value, double U);
 /* x at so many decimals; "not known" for NaN. */
 void add_rounded(kel_text *out, double x, int decimals);
+/* x with so many significant digits, without trailing zeros; "not known" for NaN. */
+void add_digits(kel_text *out, double x, int digits);
 /* U at two significant digits, "not known" for NaN. */
 void add_uncertainty(kel_text *out, double U, int decimals);
 
 /* Appends the unit to a number: "16.2" + "1e-6/K" is "16.2e-6/K", "3.1" + "mm" is "3.1 mm", "1" adds nothing. */
 void add_unit(kel_text *out, const char *name);
 
-/* "16.21e-6/K   U = 0.12e-6/K": value and U = 2u are SI and shown in the unit. */
+/* "16.21e-6/K   U = 0.12e-6/K (k = 2)": value and U = 2u are SI and shown in the unit. */
 void add_measured(kel_text *out, const kel_unit *unit, double value, double u);
 
 /* What U covers: "scatter of the fit, stated shared error, lot spread". */

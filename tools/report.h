@@ -31,6 +31,8 @@ const char *show_unit(const units *in, kel_kind kind);
 double step_u(const kel_content *c, size_t transition);
 /* A label in the left margin of a report. */
 void add_label(kel_text *out, const char *label);
+/* `before` and the text, made safe; nothing for NULL. */
+void add_quoted(kel_text *out, const char *before, const char *text);
 void add_interval(kel_text *out, const kel_unit *unit, double lo, double hi);
 
 #endif

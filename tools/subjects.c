@@ -69,7 +69,7 @@ say_fitted(job *j, const subject *s)
 {
     const kel_content *c = s->content;
     kel_text text = KEL_TEXT_INIT;
-    kel_text_printf(&text, "is a table: fitted with the defaults, a %s", c->form);
+    kel_text_printf(&text, "this is a table: fitted with the defaults, a %s", c->form);
     for (size_t i = 0; i < c->piece_count; i++)
         kel_text_printf(&text, "%s%zu", i == 0 ? " of degree " : ", ", c->pieces[i].count - 1);
     kel_text_printf(&text, " from %zu observations", c->observations);

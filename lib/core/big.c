@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Schoolbook arithmetic on words of 64 bits with 128-bit products. The quotients that are needed fit one word, so division is one
-   estimate from the leading bits and at most two corrections (D. E. Knuth, The Art of Computer Programming 2, section 4.3.1, for one
-   digit of base 2^62). */
+/* Schoolbook arithmetic on words of 64 bits with 128-bit products. The quotients that are needed fit one word, so
+   division is one estimate from the leading bits and at most two corrections (D. E. Knuth, The Art of Computer
+   Programming 2, section 4.3.1, for one digit of base 2^62). */
 #include "big.h"
 
 #include <assert.h>

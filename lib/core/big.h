@@ -7,8 +7,8 @@
 #include <stddef.h>
 #include <stdint.h>
 
-/* The largest integer comes up in reading a number of KEL__DECIMAL_KEPT digits (decimal.h): below 10^5600, which has 18603 bits,
-   shifted by less than two words. */
+/* The largest integer comes up in reading a number of KEL__DECIMAL_KEPT digits (decimal.h): below 10^5600, which has
+   18603 bits, shifted by less than two words. */
 enum { KEL__BIG_WORDS = 300 };
 
 /* sum word[i] 2^(64 i) for i < n; the highest word in use is not 0, zero has n = 0. Words from n on hold nothing. */

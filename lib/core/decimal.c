@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* The text of a decimal number taken apart, nothing rounded. One pass, no copy: digits beyond the first 19 stay in the caller's text. */
+/* The text of a decimal number taken apart, nothing rounded. One pass, no copy: digits beyond the first 19 stay in the
+   caller's text. */
 #include "decimal.h"
 
 #include <string.h>

@@ -2,13 +2,13 @@
 /* Decimal text to double in one rounding, with the unit's factor inside that rounding.
 
    The value is N P/Q 10^k with integers N, P, Q. Three ways, each exact up to its single rounding:
-     1. N P 10^j and Q 10^j both below 2^53 (or one of them a power of ten up to 10^22): one IEEE multiplication or division of
-        exact doubles (W. D. Clinger, How to read floating point numbers accurately, PLDI 1990, section 3);
-     2. A/B with A below 2^128, B below 2^73, powers of ten as powers of five and a shift: one integer division, whose quotient has at
-        least 55 bits and whose remainder says which side of a tie the value lies on;
+     1. N P 10^j and Q 10^j both below 2^53 (or one of them a power of ten up to 10^22): one IEEE operation on exact
+        doubles (W. D. Clinger, How to read floating point numbers accurately, PLDI 1990, section 3);
+     2. A/B with A below 2^128, B below 2^73, powers of ten as powers of five and a shift: one integer division, whose
+        quotient has at least 55 bits and whose remainder says which side of a tie the value lies on;
      3. integers of bounded size on the stack (big.h).
-   Limits: 3 keeps KEL__DECIMAL_KEPT digits. A longer number lies strictly between two neighbouring numbers of that many digits; where
-   both round to one double that is the answer. */
+   Limits: 3 keeps KEL__DECIMAL_KEPT digits. A longer number lies strictly between two neighbouring numbers of that many
+   digits; where both round to one double that is the answer. */
 #include "decimal.h"
 
 #include <assert.h>
@@ -18,14 +18,19 @@ __extension__ typedef unsigned __int128 u128;
 
 enum {
     HEAD_DIGITS = 19, /* of kel__decimal */
-    LEAD_LIMIT = 400  /* 10^400 times any factor overflows, 10^-400 times any factor is far below half of the least double */
+    /* 10^400 times any factor overflows, 10^-400 times any factor is far below half of the least double. */
+    LEAD_LIMIT = 400
 };
 
-static const double exact_power[] = { 1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15,
-                                      1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22 };
-static const uint64_t power10[] = { 1, 10, 100, 1000, 10000, 100000, 1000000, 10000000, 100000000, 1000000000, 10000000000u,
-                                    100000000000u, 1000000000000u, 10000000000000u, 100000000000000u, 1000000000000000u,
-                                    10000000000000000u, 100000000000000000u, 1000000000000000000u };
+static const double exact_power[] = {
+    1e0,  1e1,  1e2,  1e3,  1e4,  1e5,  1e6,  1e7,  1e8,  1e9,  1e10, 1e11,
+    1e12, 1e13, 1e14, 1e15, 1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22,
+};
+static const uint64_t power10[] = {
+    1, 10, 100, 1000, 10000, 100000, 1000000, 10000000, 100000000, 1000000000, 10000000000u, 100000000000u,
+    1000000000000u, 10000000000000u, 100000000000000u, 1000000000000000u, 10000000000000000u, 100000000000000000u,
+    1000000000000000000u,
+};
 enum { EXACT_POWERS = 23, POWERS = 19 };
 
 static const uint64_t TWO53 = (uint64_t)1 << 53;
@@ -53,7 +58,8 @@ gather(kel__big *a, const kel__decimal *d, size_t digits)
     }
 }
 
-/* The way with big integers: `digits` digits of d, plus `extra` in the last of them, real value above (bias 1) or below it. */
+/* The way with big integers: `digits` digits of d, plus `extra` in the last of them, real value above (bias 1) or below
+   it. */
 static double
 round_big(const kel__decimal *d, size_t digits, unsigned extra, int bias, const kel__factor *f)
 {
@@ -112,10 +118,12 @@ round_long(const kel__decimal *d, const kel__factor *f)
 static bool
 times_power5(u128 *a, unsigned n)
 {
-    static const uint64_t five[] = { 1, 5, 25, 125, 625, 3125, 15625, 78125, 390625, 1953125, 9765625, 48828125, 244140625, 1220703125,
-                                     6103515625u, 30517578125u, 152587890625u, 762939453125u, 3814697265625u, 19073486328125u,
-                                     95367431640625u, 476837158203125u, 2384185791015625u, 11920928955078125u, 59604644775390625u,
-                                     298023223876953125u, 1490116119384765625u, 7450580596923828125u };
+    static const uint64_t five[] = {
+        1, 5, 25, 125, 625, 3125, 15625, 78125, 390625, 1953125, 9765625, 48828125, 244140625, 1220703125, 6103515625u,
+        30517578125u, 152587890625u, 762939453125u, 3814697265625u, 19073486328125u, 95367431640625u, 476837158203125u,
+        2384185791015625u, 11920928955078125u, 59604644775390625u, 298023223876953125u, 1490116119384765625u,
+        7450580596923828125u,
+    };
     return n < sizeof five / sizeof five[0] && !__builtin_mul_overflow(*a, (u128)five[n], a);
 }
 
@@ -183,7 +191,8 @@ round_short(double *out, const kel__decimal *d, const kel__factor *f)
     double x;
     if (n == 0)
         x = 0.0;
-    else if (!__builtin_mul_overflow(n, (uint64_t)f->numerator, &num) && num <= TWO53 && e > -EXACT_POWERS && e < EXACT_POWERS &&
+    else if (!__builtin_mul_overflow(n, (uint64_t)f->numerator, &num) && num <= TWO53 && e > -EXACT_POWERS &&
+             e < EXACT_POWERS &&
              (f->denominator == 1 || (e <= 0 && e > -POWERS && (uint64_t)f->denominator <= TWO53 / power10[-e]))) {
         /* Way 1: both operands are exact, the operation rounds once. */
         if (e >= 0)

@@ -1,13 +1,15 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Doubles through the exact affine factor of a unit, forth and back, rounded once: 255.3722222222222 K gives the degF nearest to it,
-   without the cancellation that -459.67 would cause in double arithmetic. A double is m 2^e exactly, so the result is a ratio of integers. */
+/* Doubles through the exact affine factor of a unit, forth and back, rounded once: 255.3722222222222 K gives the degF
+   nearest to it, without the cancellation that -459.67 would cause in double arithmetic. A double is m 2^e exactly, so
+   the result is a ratio of integers. */
 #include "decimal.h"
 
 #include <math.h>
 #include <stdlib.h>
 
 enum { EXACT_POWERS = 23 };
-static const double exact_power[EXACT_POWERS] = { 1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12, 1e13, 1e14, 1e15,
+static const double exact_power[EXACT_POWERS] = { 1e0, 1e1, 1e2, 1e3, 1e4, 1e5, 1e6, 1e7, 1e8, 1e9, 1e10, 1e11, 1e12,
+                                                  1e13, 1e14, 1e15,
                                                   1e16, 1e17, 1e18, 1e19, 1e20, 1e21, 1e22 };
 
 /* a/b = |x| */

@@ -2,7 +2,8 @@
 # SPDX-License-Identifier: Apache-2.0
 """Writes power_table.c: python3 lib/core/make-power-table.py > lib/core/power_table.c
 
-Row k is g(k) = 10^k / 2^(floor(log2 10^k) - 127) rounded up to an integer: the leading 128 bits, exact for 0 <= k <= 55 (5^55 < 2^128).
+Row k is g(k) = 10^k / 2^(floor(log2 10^k) - 127) rounded up to an integer: the leading 128 bits, exact for
+0 <= k <= 55 (5^55 < 2^128).
 Before it writes, it checks that the integer forms of the logarithms in shortest.c hold for all exponents that occur.
 """
 

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Plain decimal text to double, correctly rounded, independent of locale. strtod is no help here: it takes hex, nan, inf, leading
-   blanks and the locale's point, and needs a terminated string. */
+/* Plain decimal text to double, correctly rounded, independent of locale. strtod is no help here: it takes hex, nan,
+   inf, leading blanks and the locale's point, and needs a terminated string. */
 #include "decimal.h"
 
 #include <math.h>
@@ -16,10 +16,12 @@ refuse(const char *bytes, size_t n, size_t used, kel_error *err)
         return kel_error_set(err, KEL_E_SYNTAX, 0, 1, "a number is missing");
     kel__quote(quote, bytes, n);
     if (used > 0 && bytes[used] == ',')
-        return kel_error_set(err, KEL_E_SYNTAX, 0, used + 1, "'%s' is not a number: a comma at byte %zu where a decimal point belongs",
-                             quote, used + 1);
+        return kel_error_set(err, KEL_E_SYNTAX, 0, used + 1,
+                             "'%s' is not a number: a comma at byte %zu where a decimal point belongs", quote,
+                             used + 1);
     if (used > 0)
-        return kel_error_set(err, KEL_E_SYNTAX, 0, used + 1, "'%s' is not a number: it ends before byte %zu", quote, used + 1);
+        return kel_error_set(err, KEL_E_SYNTAX, 0, used + 1, "'%s' is not a number: it ends before byte %zu", quote,
+                             used + 1);
     return kel_error_set(err, KEL_E_SYNTAX, 0, 1, "'%s' is not a plain decimal number", quote);
 }
 

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Doubles as text: shortest digits, a number of significant digits, a number of decimals. No locale takes part. The last two
-   round the exact binary value once, ties to even, with integers (big.h). */
+/* Doubles as text: shortest digits, a number of significant digits, a number of decimals. No locale takes part. The
+   last two round the exact binary value once, ties to even, with integers (big.h). */
 #include "core.h"
 
 #include <assert.h>
@@ -10,9 +10,10 @@
 #include "big.h"
 #include "shortest.h"
 
-static const char pairs[] = "00010203040506070809101112131415161718192021222324252627282930313233343536373839404142434445464748"
-                            "4950515253545556575859606162636465666768697071727374757677787980818283848586878889909192939495969798"
-                            "99";
+static const char pairs[] =
+    "00010203040506070809101112131415161718192021222324252627282930313233343536373839404142434445464748"
+    "4950515253545556575859606162636465666768697071727374757677787980818283848586878889909192939495969798"
+    "99";
 
 /* Writes d so that it ends before `end`; returns where it starts. */
 static char *
@@ -44,7 +45,8 @@ put_special(char *out, double x)
     return strlen(out);
 }
 
-/* digits 10^exponent, `first`..`last` being the exponents of ten of the leading digit for which plain notation is used. */
+/* digits 10^exponent, `first`..`last` being the exponents of ten of the leading digit for which plain notation is
+   used. */
 static size_t
 lay_out(char *out, bool negative, uint64_t digits, int exponent, int first, int last)
 {

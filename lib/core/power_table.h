@@ -7,8 +7,8 @@
 
 enum { KEL__POWER_FIRST = -292, KEL__POWER_LAST = 324 };
 
-/* Row k - KEL__POWER_FIRST holds the high and the low half of g(k): 10^k = g(k) 2^(floor(log2 10^k) - 127), rounded up, 2^127 <= g < 2^128.
-   Exact for 0 <= k <= 55. */
+/* Row k - KEL__POWER_FIRST holds the high and the low half of g(k): 10^k = g(k) 2^(floor(log2 10^k) - 127), rounded up,
+   2^127 <= g < 2^128. Exact for 0 <= k <= 55. */
 extern const uint64_t kel__power_table[KEL__POWER_LAST - KEL__POWER_FIRST + 1][2];
 
 #endif

@@ -15,8 +15,8 @@ refuse_cold(const kel_unit *unit, const char *bytes, size_t n, kel_error *err)
     if (err == NULL)
         return KEL_E_RANGE;
     kel_number_format(limit, unit->offset_e2 == 0 ? 0.0 : -(double)unit->offset_e2 / 100.0);
-    return kel_error_set(err, KEL_E_RANGE, 0, 1, "%s %s is below absolute zero, %s %s", kel__quote(quote, bytes, n), unit->name, limit,
-                         unit->name);
+    return kel_error_set(err, KEL_E_RANGE, 0, 1, "%s %s is below absolute zero, %s %s", kel__quote(quote, bytes, n),
+                         unit->name, limit, unit->name);
 }
 
 kel_status
@@ -57,8 +57,11 @@ kel_status
 kel_quantity_parse(double *out, kel_unit *unit, kel_dimension dimension, const char *text, kel_error *err)
 {
     static const char *const examples[][2] = {
-        [KEL_DIM_TEMPERATURE] = { "K", "degC" }, [KEL_DIM_DIFFERENCE] = { "K", "degC" }, [KEL_DIM_PER_KELVIN] = { "1e-6/K", "um/(m.K)" },
-        [KEL_DIM_ONE] = { "ppm", "%" }, [KEL_DIM_LENGTH] = { "mm", "in" },
+        [KEL_DIM_TEMPERATURE] = { "K", "degC" },
+        [KEL_DIM_DIFFERENCE] = { "K", "degC" },
+        [KEL_DIM_PER_KELVIN] = { "1e-6/K", "um/(m.K)" },
+        [KEL_DIM_ONE] = { "ppm", "%" },
+        [KEL_DIM_LENGTH] = { "mm", "in" },
     };
     char quote[KEL__QUOTE_SIZE];
     kel_unit u;
@@ -73,7 +76,8 @@ kel_quantity_parse(double *out, kel_unit *unit, kel_dimension dimension, const c
         n--;
     size_t used = start == n ? 0 : kel__decimal_scan(&d, text + start, n - start);
     if (start == n)
-        return kel_error_set(err, KEL_E_SYNTAX, 0, start + 1, "a number with its unit is missing, for example 20 %s", examples[dimension][0]);
+        return kel_error_set(err, KEL_E_SYNTAX, 0, start + 1, "a number with its unit is missing, for example 20 %s",
+                             examples[dimension][0]);
     if (used == 0)
         return kel_error_set(err, KEL_E_SYNTAX, 0, start + 1, "'%s' does not start with a number, as in 20 %s",
                              err == NULL ? "" : kel__quote(quote, text + start, n - start), examples[dimension][0]);
@@ -83,8 +87,8 @@ kel_quantity_parse(double *out, kel_unit *unit, kel_dimension dimension, const c
     if (at == n) {
         if (err != NULL)
             kel__quote(quote, text + start, used);
-        return kel_error_set(err, KEL_E_UNIT, 0, end + 1, "%1$s needs a unit, for example %1$s %2$s or %1$s %3$s", err == NULL ? "" : quote,
-                             examples[dimension][0], examples[dimension][1]);
+        return kel_error_set(err, KEL_E_UNIT, 0, end + 1, "%1$s needs a unit, for example %1$s %2$s or %1$s %3$s",
+                             err == NULL ? "" : quote, examples[dimension][0], examples[dimension][1]);
     }
     kel_status status = kel_unit_parse(&u, dimension, text + at, n - at, err);
     if (status != KEL_OK) {

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* The double nearest to a ratio of two integers: the quotient to 55 or 56 bits, the remainder as one more bit that says "and something". */
+/* The double nearest to a ratio of two integers: the quotient to 55 or 56 bits, the remainder as one more bit that says
+   "and something". */
 #include "decimal.h"
 
 #include <math.h>

@@ -1,12 +1,13 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* Shortest decimal digits of a double.
 
-   Method: R. Giulietti, The Schubfach way to render doubles (2020). x = c 2^q is the only double between the midpoints to its neighbours,
-   (4c - 2) 2^(q-2) and (4c + 2) 2^(q-2) (the lower one 4c - 1 where c is the least of its binade). Take the largest k for which
-   10^k does not exceed the width of that interval: it then holds at least one and at most ten multiples of 10^k, and at most one
-   of 10^(k+1). So the answer is that multiple of 10^(k+1), or the nearer of the two multiples of 10^k around x.
-   Scaled by 10^-k, c and both midpoints are needed only to a quarter of a unit, with the last bit telling whether anything follows
-   ("rounding to odd"); the paper proves (section 9.9) that 126 bits of 10^-k are enough. The table has 128. */
+   Method: R. Giulietti, The Schubfach way to render doubles (2020). x = c 2^q is the only double between the midpoints
+   to its neighbours, (4c - 2) 2^(q-2) and (4c + 2) 2^(q-2) (the lower one 4c - 1 where c is the least of its binade).
+   Take the largest k for which 10^k does not exceed the width of that interval: it then holds at least one and at most
+   ten multiples of 10^k, and at most one of 10^(k+1). So the answer is that multiple of 10^(k+1), or the nearer of the
+   two multiples of 10^k around x. Scaled by 10^-k, c and both midpoints are needed only to a quarter of a unit, with
+   the last bit telling whether anything follows ("rounding to odd"); the paper proves (section 9.9) that 126 bits of
+   10^-k are enough. The table has 128. */
 #include "shortest.h"
 
 #include <stdbool.h>
@@ -35,7 +36,8 @@ floor_log2_pow10(int k)
     return (k * 1741647) >> 19;
 }
 
-/* floor(g c/2^128), its last bit set if anything was cut off. g is rounded up, hence the 1: it may stand for nothing. */
+/* floor(g c/2^128), its last bit set if anything was cut off. g is rounded up, hence the 1: it may stand for
+   nothing. */
 static inline uint64_t
 round_to_odd(const uint64_t g[2], uint64_t c)
 {

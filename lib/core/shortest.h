@@ -5,8 +5,8 @@
 
 #include <stdint.h>
 
-/* digits 10^*exponent reads back as x and has as few digits as any such number (at most 17); of those it is the nearest to x. The last
-   digit is not 0. x is finite and above 0. */
+/* digits 10^*exponent reads back as x and has as few digits as any such number (at most 17); of those it is the nearest
+   to x. The last digit is not 0. x is finite and above 0. */
 uint64_t kel__shortest(int *exponent, double x);
 
 #endif

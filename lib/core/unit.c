@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Units: from the factors that the grammar found to one exact rational factor, a dimension and a name that reads back as the same unit. */
+/* Units: from the factors that the grammar found to one exact rational factor, a dimension and a name that reads back
+   as the same unit. */
 #include "core.h"
 
 #include <assert.h>
@@ -31,7 +32,8 @@ gcd(int64_t a, int64_t b)
     return a;
 }
 
-/* u times p/q 10^e, kept in lowest terms, no 2 or 5 left in the denominator where the power of ten can take it. False on overflow. */
+/* u times p/q 10^e, kept in lowest terms, no 2 or 5 left in the denominator where the power of ten can take it. False
+   on overflow. */
 static bool
 scale(kel_unit *u, int64_t p, int64_t q, int e)
 {
@@ -62,7 +64,8 @@ put_names(char *out, size_t size, const kel__product *product, int sign)
     size_t used = 0;
     for (size_t i = 0; i < product->count; i++)
         if (product->factor[i].sign == sign && used < size)
-            used += (size_t)snprintf(out + used, size - used, "%s%s", used > 0 ? "." : "", product->factor[i].symbol->name);
+            used +=
+                (size_t)snprintf(out + used, size - used, "%s%s", used > 0 ? "." : "", product->factor[i].symbol->name);
     return used;
 }
 
@@ -87,7 +90,8 @@ put_name(char *name, size_t size, const kel__product *product, int above, int be
         under[below + 1] = ' ';
     }
     bool bracket = strchr(down, '.') != NULL;
-    int n = snprintf(name, size, "%s%s%s%s%s%s%s", number, up, downs > 0 ? "/" : "", bracket ? "(" : "", under, down, bracket ? ")" : "");
+    int n = snprintf(name, size, "%s%s%s%s%s%s%s", number, up, downs > 0 ? "/" : "", bracket ? "(" : "", under, down,
+                     bracket ? ")" : "");
     return ups < sizeof up && downs < sizeof down && n < (int)size;
 }
 
@@ -98,11 +102,14 @@ refuse_dimension(kel_error *err, size_t column, const char *quote, int length, i
     int is = length == 1 && temperature == 0 ? KEL_DIM_LENGTH : length == 0 && temperature == 1 ? KEL_DIM_TEMPERATURE
            : length == 0 && temperature == -1 ? KEL_DIM_PER_KELVIN : length == 0 && temperature == 0 ? KEL_DIM_ONE : -1;
     if (expected < 0 && is < 0)
-        return kel_error_set(err, KEL_E_UNIT, 0, column, "'%s' is no temperature, coefficient, pure number or length", quote);
+        return kel_error_set(err, KEL_E_UNIT, 0, column, "'%s' is no temperature, coefficient, pure number or length",
+                             quote);
     if (expected < 0 || is == expected || (is == KEL_DIM_TEMPERATURE && expected == KEL_DIM_DIFFERENCE))
-        return kel_error_set(err, KEL_E_UNIT, 0, column, "'%s' is no plain unit of temperature such as K or degC", quote);
+        return kel_error_set(err, KEL_E_UNIT, 0, column, "'%s' is no plain unit of temperature such as K or degC",
+                             quote);
     return kel_error_set(err, KEL_E_UNIT, 0, column, "'%s' is %s, expected %s such as %s", quote,
-                         is < 0 ? "of another dimension" : dimensions[is].is, dimensions[expected].is, dimensions[expected].example);
+                         is < 0 ? "of another dimension" : dimensions[is].is, dimensions[expected].is,
+                         dimensions[expected].example);
 }
 
 /* expected: a kel_dimension, or -1 for any. */
@@ -126,11 +133,12 @@ parse(kel_unit *out, int expected, const char *bytes, size_t n, kel_error *err)
     if (err != NULL)
         kel__quote(quote, bytes + start, n - start);
     if (!whole && at >= n)
-        return kel_error_set(err, KEL_E_UNIT, 0, n + 1, "'%s' is not a whole unit: something is missing at its end", quote);
+        return kel_error_set(err, KEL_E_UNIT, 0, n + 1, "'%s' is not a whole unit: something is missing at its end",
+                             quote);
     if (!whole) {
         char rest[KEL__QUOTE_SIZE];
-        return kel_error_set(err, KEL_E_UNIT, 0, at + 1, "'%s' is not a known unit: '%s' at byte %zu is not understood", quote,
-                             err == NULL ? "" : kel__quote(rest, bytes + at, n - at), at + 1);
+        return kel_error_set(err, KEL_E_UNIT, 0, at + 1, "'%s' is not a known unit: '%s' at byte %zu is not understood",
+                             quote, err == NULL ? "" : kel__quote(rest, bytes + at, n - at), at + 1);
     }
 
     int length = 0, temperature = 0;
@@ -146,7 +154,8 @@ parse(kel_unit *out, int expected, const char *bytes, size_t n, kel_error *err)
     if (product.above > 0) {
         char name[80] = "";
         put_name(name, sizeof name, &product, -product.above, product.below);
-        return kel_error_set(err, KEL_E_UNIT, 0, start + 1, "'%s' can be read in two ways: for printed numbers times 1e-%d write %s", quote,
+        return kel_error_set(err, KEL_E_UNIT, 0, start + 1,
+                             "'%s' can be read in two ways: for printed numbers times 1e-%d write %s", quote,
                              product.above, name);
     }
     if (!fits || !put_name(out->name, sizeof out->name, &product, product.above, product.below))

@@ -7,9 +7,9 @@
        power of ten = 1, 100, 1e-6, 10^-6, 10**-6, 10⁻⁶
        exponent = ^-1, **-1, ⁻¹
 
-   After a slash the factors joined by products stay below it, as the trade writes um/m-K and in/100 ft, except one with a
-   negative exponent of its own. A positive power of ten above the slash is refused: over a column, "a x 10^6" says that the printed
-   numbers are a million times the coefficient, while "10^6/K" as a unit would say the opposite. */
+   After a slash the factors joined by products stay below it, as the trade writes um/m-K and in/100 ft, except one with
+   a negative exponent of its own. A positive power of ten above the slash is refused: over a column, "a x 10^6" says
+   that the printed numbers are a million times the coefficient, while "10^6/K" as a unit would say the opposite. */
 #include "unit_table.h"
 
 #include <string.h>
@@ -62,8 +62,10 @@ take_digits(struct parser *p)
 static int
 take_superscript(struct parser *p)
 {
-    static const char *const digit[] = { "\xE2\x81\xB0", "\xC2\xB9", "\xC2\xB2", "\xC2\xB3", "\xE2\x81\xB4",
-                                         "\xE2\x81\xB5", "\xE2\x81\xB6", "\xE2\x81\xB7", "\xE2\x81\xB8", "\xE2\x81\xB9" };
+    static const char *const digit[] = {
+        "\xE2\x81\xB0", "\xC2\xB9",     "\xC2\xB2",     "\xC2\xB3",     "\xE2\x81\xB4",
+        "\xE2\x81\xB5", "\xE2\x81\xB6", "\xE2\x81\xB7", "\xE2\x81\xB8", "\xE2\x81\xB9"
+    };
     for (int i = 0; i < 10; i++)
         if (take(p, digit[i]))
             return i;
@@ -120,7 +122,8 @@ take_number(struct parser *p, int sign)
         /* 1e-6 and 1000, not 10e-6, which may have been meant as 10^-6. */
         if (m != 1 && d.exponent != 0)
             m = 0;
-        for (e = (int)(d.exponent < -MAX_POWER || d.exponent > MAX_POWER ? MAX_POWER + 1 : d.exponent); m > 1 && m % 10 == 0; m /= 10)
+        for (e = (int)(d.exponent < -MAX_POWER || d.exponent > MAX_POWER ? MAX_POWER + 1 : d.exponent);
+             m > 1 && m % 10 == 0; m /= 10)
             e++;
         if (m != 1 || e > MAX_POWER || d.negative || d.count > 19) {
             p->at = before;

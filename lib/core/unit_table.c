@@ -1,11 +1,16 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Names of units and all their spellings, with exact factors. The inch is 0.0254 m and the foot 12 inches by definition (1959), the
-   degree Fahrenheit 5/9 K with 0 K at -459.67 degF (exact: 32 degF is 273.15 K), the degree Celsius offset by 273.15 K. */
+/* Names of units and all their spellings, with exact factors. The inch is 0.0254 m and the foot 12 inches by definition
+   (1959), the degree Fahrenheit 5/9 K with 0 K at -459.67 degF (exact: 32 degF is 273.15 K), the degree Celsius offset
+   by 273.15 K. */
 #include "unit_table.h"
 
 #include <string.h>
 
-enum { K, MK, DEGC, DEGF, DEGR, KM, M, CM, MM, UM, NM, IN, FT, MIL, UIN, ONE, PERCENT, PERMILLE, PPM, PPB, MICROSTRAIN };
+enum {
+    K, MK, DEGC, DEGF, DEGR,
+    KM, M, CM, MM, UM, NM, IN, FT, MIL, UIN,
+    ONE, PERCENT, PERMILLE, PPM, PPB, MICROSTRAIN
+};
 
 static const kel__symbol symbols[] = {
     [K] = { "K", 0, 1, 1, 1, 0, 0 },
@@ -35,7 +40,8 @@ static const kel__symbol symbols[] = {
 #define MU "\xCE\xBC"       /* U+03BC Greek small mu */
 #define EPSILON "\xCE\xB5"  /* U+03B5 */
 
-/* Spellings. Where no other unit differs from it by case alone, a name may be written in any case; "mK" is not "MK", so short ones may not. */
+/* Spellings. Where no other unit differs from it by case alone, a name may be written in any case; "mK" is not "MK", so
+   short ones may not. */
 static const struct spelling { const char *text; int symbol; bool any_case; } spellings[] = {
     { "K", K, false }, { "\xE2\x84\xAA", K, false }, { "kelvin", K, true }, { "kelvins", K, true }, { "MK", MK, false },
     { "C", DEGC, false }, { "\xE2\x84\x83", DEGC, false }, { "Celsius", DEGC, true }, { "centigrade", DEGC, true },
@@ -44,14 +50,17 @@ static const struct spelling { const char *text; int symbol; bool any_case; } sp
     { "km", KM, false },
     { "m", M, false }, { "metre", M, true }, { "metres", M, true }, { "meter", M, true }, { "meters", M, true },
     { "cm", CM, false },
-    { "mm", MM, false }, { "millimetre", MM, true }, { "millimetres", MM, true }, { "millimeter", MM, true }, { "millimeters", MM, true },
-    { "um", UM, false }, { MICRO "m", UM, false }, { MU "m", UM, false }, { "micron", UM, true }, { "microns", UM, true },
+    { "mm", MM, false }, { "millimetre", MM, true }, { "millimetres", MM, true }, { "millimeter", MM, true },
+    { "millimeters", MM, true },
+    { "um", UM, false }, { MICRO "m", UM, false }, { MU "m", UM, false }, { "micron", UM, true },
+    { "microns", UM, true },
     { "micrometre", UM, true }, { "micrometres", UM, true }, { "micrometer", UM, true }, { "micrometers", UM, true },
     { "nm", NM, false },
     { "in", IN, true }, { "inch", IN, true }, { "inches", IN, true },
     { "ft", FT, true }, { "foot", FT, true }, { "feet", FT, true },
     { "mil", MIL, true }, { "mils", MIL, true },
-    { "uin", UIN, true }, { MICRO "in", UIN, true }, { MU "in", UIN, true }, { "microinch", UIN, true }, { "microinches", UIN, true },
+    { "uin", UIN, true }, { MICRO "in", UIN, true }, { MU "in", UIN, true }, { "microinch", UIN, true },
+    { "microinches", UIN, true },
     { "strain", ONE, true },
     { "%", PERCENT, false }, { "percent", PERCENT, true },
     { "\xE2\x80\xB0", PERMILLE, false }, { "permille", PERMILLE, true },
@@ -135,7 +144,8 @@ degree_sign(const char *bytes, size_t n)
 bool
 kel__degree_sign(const char *bytes, size_t n)
 {
-    return degree_sign(bytes, n) > 0 || starts_with(bytes, n, "\xE2\x84\x83", false) > 0 || starts_with(bytes, n, "\xE2\x84\x89", false) > 0;
+    return degree_sign(bytes, n) > 0 || starts_with(bytes, n, "\xE2\x84\x83", false) > 0 ||
+           starts_with(bytes, n, "\xE2\x84\x89", false) > 0;
 }
 
 const kel__symbol *

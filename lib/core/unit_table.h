@@ -7,7 +7,8 @@
 #include <stddef.h>
 #include <stdint.h>
 
-/* One name: its factor to SI is numerator/denominator 10^exponent; offset_e2/100 is added first where a point on a scale is meant. */
+/* One name: its factor to SI is numerator/denominator 10^exponent; offset_e2/100 is added first where a point on a
+   scale is meant. */
 typedef struct kel__symbol {
     const char *name;     /* as kelspan writes it, ASCII */
     int length, temperature; /* dimension: powers of m and K */
@@ -15,10 +16,12 @@ typedef struct kel__symbol {
     int offset_e2;
 } kel__symbol;
 
-/* The longest name at the front of the n bytes; *used gets its length. NULL if there is none, or if it runs on into a longer word. */
+/* The longest name at the front of the n bytes; *used gets its length. NULL if there is none, or if it runs on into a
+   longer word. */
 const kel__symbol *kel__symbol_match(size_t *used, const char *bytes, size_t n);
 
-/* Does a degree sign stand at the front of the n bytes? The one sign that may follow another name without anything between: m°C. */
+/* Does a degree sign stand at the front of the n bytes? The one sign that may follow another name without anything
+   between: m°C. */
 bool kel__degree_sign(const char *bytes, size_t n);
 
 /* A unit taken apart: 10^above / 10^below times names, each with sign +1 above or -1 below the line. */
@@ -31,7 +34,8 @@ typedef struct kel__product {
     bool bare_name; /* one name, without number, exponent or slash */
 } kel__product;
 
-/* Takes the n bytes, not empty, apart. False if they follow no grammar of units; *at is then the first byte that is not understood. */
+/* Takes the n bytes, not empty, apart. False if they follow no grammar of units; *at is then the first byte that is not
+   understood. */
 bool kel__unit_grammar(kel__product *out, size_t *at, const char *bytes, size_t n);
 
 #endif

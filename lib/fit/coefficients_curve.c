@@ -6,6 +6,7 @@
 #include <stdlib.h>
 #include <string.h>
 
+#include "phrase.h"
 #include "published.h"
 
 /* |alpha| of solids stays below 1e-3 1/K, by a factor of ten for most. More is a unit misread. */
@@ -69,8 +70,8 @@ check_size(const kel__published *p, const kel__published_piece *piece, kel_error
         if (fabs(alpha) <= largest_believed)
             continue;
         char value[KEL_NUMBER_SIZE], at[KEL_NUMBER_SIZE];
-        kel_number_format_digits(value, alpha, 4);
-        kel_number_format_digits(at, t, 6);
+        kel__number_short(value, alpha);
+        kel__number_short(at, t);
         return kel_error_set(err, KEL_E_DATA, piece->line, piece->column, "the coefficient would be %s 1/K at %s K, beyond 0.001 1/K: check the unit "
                              "[%s] of `curve` and the unit and scale of `variable`", value, at, p->unit.name);
     }

@@ -6,6 +6,7 @@
 #include <math.h>
 #include <string.h>
 
+#include "phrase.h"
 #include "published.h"
 
 static kel_status
@@ -72,7 +73,7 @@ label_of(const kel__published *p, const kel__clause *clauses, size_t count, bool
         if (!(size > 0))
             continue;
         char number[KEL_NUMBER_SIZE];
-        kel_number_format_digits(number, relative ? 100 * size : size, 6);
+        kel__number_short(number, relative ? 100 * size : size);
         kel_text_add(&text, any ? ", " : "");
         kel_text_add(&text, number);
         kel_text_add(&text, relative ? " %" : " 1/K");

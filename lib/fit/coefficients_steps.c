@@ -6,6 +6,7 @@
 #include <stdlib.h>
 #include <string.h>
 
+#include "phrase.h"
 #include "published.h"
 
 static const double negligible = 8 * DBL_EPSILON;
@@ -30,7 +31,7 @@ static void
 add_digits(kel_text *text, double x)
 {
     char number[KEL_NUMBER_SIZE];
-    kel_number_format_digits(number, x, 6);
+    kel__number_short(number, x);
     kel_text_add(text, number);
 }
 
@@ -86,7 +87,7 @@ take_jump(kel_declared_transition *list, size_t *count, kel__adopt_warnings *war
     if (i < *count && list[i].step == KEL_STEP_STATED && !(fabs(list[i].length - jump) <= rounding)) {
         kel__entry entry = place_of(p, &list[i]);
         char number[KEL_NUMBER_SIZE];
-        kel_number_format_digits(number, jump, 6);
+        kel__number_short(number, jump);
         return kel_error_set(err, KEL_E_DATA, entry.line, entry.line == 0 ? 0 : entry.column,
                              "the declared step contradicts the published expansion, which steps by %s there", number);
     }

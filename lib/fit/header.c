@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Heads of columns. The unit is the last bracket, square or round, and may hold brackets itself; what stands before it is the quantity, and
-   behind a colon the label of its series.
+/* Heads of columns. The unit is the last bracket, square or round, and may hold brackets itself; what stands before
+   it is the quantity, and behind a colon the label of its series.
 
-   A coefficient of thermal expansion is in one book the slope at T, in the next the mean from a reference, and standards themselves
-   disagree (IEC 60050-561 means the mean, ISO 11359-2 has both). So the bare name is refused; with a word that settles it, it is taken. */
+   A coefficient of thermal expansion is in one book the slope at T, in the next the mean from a reference, and
+   standards themselves disagree (IEC 60050-561 means the mean, ISO 11359-2 has both). So the bare name is refused;
+   with a word that settles it, it is taken. */
 #include "header.h"
 
 #include "blanks.h"
@@ -16,7 +17,8 @@ enum { SHOWN = 60 };
 typedef struct quantity_word { const char *word; kel__quantity quantity; } quantity_word;
 
 static const quantity_word words[] = {
-    { "temperature", KEL__TEMPERATURE }, { "t", KEL__TEMPERATURE }, { "temp", KEL__TEMPERATURE }, { "temp.", KEL__TEMPERATURE },
+    { "temperature", KEL__TEMPERATURE }, { "t", KEL__TEMPERATURE }, { "temp", KEL__TEMPERATURE },
+        { "temp.", KEL__TEMPERATURE },
     { "from", KEL__FROM }, { "to", KEL__TO },
     { "interval", KEL__INTERVAL }, { "temperature interval", KEL__INTERVAL },
     { "expansion", KEL__EXPANSION }, { "linear expansion", KEL__EXPANSION }, { "thermal expansion", KEL__EXPANSION },
@@ -24,7 +26,8 @@ static const quantity_word words[] = {
     { "dL/L0", KEL__EXPANSION }, { "dL/L", KEL__EXPANSION }, { "(L-L0)/L0", KEL__EXPANSION },
     { "\xCE\x94L/L0", KEL__EXPANSION }, { "\xCE\x94L/L", KEL__EXPANSION },          /* Greek capital delta */
     { "\xE2\x88\x86L/L0", KEL__EXPANSION }, { "\xE2\x88\x86L/L", KEL__EXPANSION },  /* increment sign */
-    { "contraction", KEL__CONTRACTION }, { "linear contraction", KEL__CONTRACTION }, { "thermal contraction", KEL__CONTRACTION },
+    { "contraction", KEL__CONTRACTION }, { "linear contraction", KEL__CONTRACTION },
+        { "thermal contraction", KEL__CONTRACTION },
     { "linear thermal contraction", KEL__CONTRACTION },
     { "uncertainty", KEL__UNCERTAINTY }, { "standard uncertainty", KEL__UNCERTAINTY }, { "u", KEL__UNCERTAINTY },
     { "source", KEL__SOURCE }, { "status", KEL__STATUS },
@@ -33,8 +36,10 @@ static const quantity_word words[] = {
 /* Names of coefficients. Those that stand alone mean the instantaneous one; the others need a word that says which. */
 static const struct { const char *word; bool alone; } nouns[] = {
     { "coefficient", true }, { "alpha", true }, { "\xCE\xB1", true },
-    { "CTE", false }, { "coefficient of thermal expansion", false }, { "coefficient of linear thermal expansion", false },
-    { "coefficient of linear expansion", false }, { "coefficient of expansion", false }, { "expansion coefficient", false },
+    { "CTE", false }, { "coefficient of thermal expansion", false },
+        { "coefficient of linear thermal expansion", false },
+    { "coefficient of linear expansion", false }, { "coefficient of expansion", false },
+        { "expansion coefficient", false },
     { "thermal expansion coefficient", false }, { "linear expansion coefficient", false },
     { "linear thermal expansion coefficient", false }, { "thermal expansivity", false }, { "expansivity", false },
 };
@@ -68,12 +73,15 @@ kel__quantity_name(kel__quantity quantity)
 
 /* An error with the head, or a part of it, in its message; format has one %s for it. */
 static kel_status
-complain(kel_error *err, kel_status code, size_t line, size_t column, kel__word data, const char *before, const char *behind)
+complain(kel_error *err, kel_status code, size_t line, size_t column, kel__word data, const char *before,
+         const char *behind)
 {
     kel_text quoted = KEL_TEXT_INIT;
     kel_text_quote(&quoted, data.p, data.n > SHOWN ? SHOWN : data.n);
-    kel_status status = quoted.failed ? kel_error_set(err, KEL_E_NOMEM, line, column, "out of memory for a message")
-        : kel_error_set(err, code, line, line == 0 ? 0 : column, "%s'%s'%s", before, quoted.bytes == NULL ? "" : quoted.bytes, behind);
+    const char *shown = quoted.bytes == NULL ? "" : quoted.bytes;
+    kel_status status = quoted.failed
+        ? kel_error_set(err, KEL_E_NOMEM, line, column, "out of memory for a message")
+        : kel_error_set(err, code, line, line == 0 ? 0 : column, "%s'%s'%s", before, shown, behind);
     kel_text_free(&quoted);
     return status;
 }
@@ -144,7 +152,8 @@ take_factor(kel__word *number, kel__word *name)
     return false;
 }
 
-/* An uncertainty that is not the plain word: `uncertainty k=2`, `limits`. Leaves quantity alone if it is none of these. */
+/* An uncertainty that is not the plain word: `uncertainty k=2`, `limits`. Leaves quantity alone if it is none of
+   these. */
 static kel_status
 parse_uncertainty(kel__heading *out, kel__word name, size_t line, size_t column, kel_error *err)
 {
@@ -158,12 +167,14 @@ parse_uncertainty(kel__heading *out, kel__word name, size_t line, size_t column,
     kel__word base = name;
     bool has = take_factor(&out->factor, &base), expanded = kel__is_word(base.p, base.n, "expanded uncertainty");
     if (expanded && !has)
-        return complain(err, KEL_E_SYNTAX, line, column, name, "", " does not say by which factor: write for example `uncertainty k=2`");
+        return complain(err, KEL_E_SYNTAX, line, column, name, "",
+                        " does not say by which factor: write for example `uncertainty k=2`");
     if (!has || (!expanded && !kel__is_word(base.p, base.n, "uncertainty") && !kel__is_word(base.p, base.n, "u")))
         return KEL_OK;
     out->quantity = KEL__UNCERTAINTY;
     if (kel_number_read(&out->divisor, out->factor.p, out->factor.n, NULL) != KEL_OK || !(out->divisor > 0))
-        return complain(err, KEL_E_SYNTAX, line, column, name, "the coverage factor in ", " must be a number above zero, as in k=2");
+        return complain(err, KEL_E_SYNTAX, line, column, name, "the coverage factor in ",
+                        " must be a number above zero, as in k=2");
     return KEL_OK;
 }
 
@@ -182,7 +193,8 @@ parse_coefficient(kel__heading *out, kel__word name, size_t line, size_t column,
         if (!kel__is_word(noun.p, noun.n, nouns[i].word))
             continue;
         if (out->quantity == KEL__NOTHING && !nouns[i].alone)
-            return complain(err, KEL_E_SYNTAX, line, column, name, "", " can mean two things: write `coefficient` for the instantaneous one "
+            return complain(err, KEL_E_SYNTAX, line, column, name, "",
+                            " can mean two things: write `coefficient` for the instantaneous one "
                             "(the slope at T) or `mean coefficient` for the mean between two temperatures");
         if (out->quantity == KEL__NOTHING)
             out->quantity = KEL__COEFFICIENT;
@@ -204,7 +216,8 @@ parse_quantity(kel__heading *out, kel__word name, size_t line, size_t column, ke
     if (status == KEL_OK && out->quantity == KEL__NOTHING)
         status = parse_coefficient(out, name, line, column, err);
     if (status == KEL_OK && out->quantity == KEL__NOTHING)
-        status = complain(err, KEL_E_SYNTAX, line, column, name, "", " is no quantity of a table: temperature, from, to, interval, coefficient, "
+        status = complain(err, KEL_E_SYNTAX, line, column, name, "",
+                          " is no quantity of a table: temperature, from, to, interval, coefficient, "
                           "mean coefficient, expansion, contraction, uncertainty, source or status");
     return status;
 }
@@ -215,13 +228,16 @@ parse_unit(kel__heading *out, bool has, size_t line, size_t column, const char *
     kel__quantity q = out->quantity;
     kel__word text = out->unit_text;
     if (quantities[q].example == NULL)
-        return !has ? KEL_OK : complain(err, KEL_E_UNIT, line, column, text, "a column of words has no unit, found ", "");
+        return !has ? KEL_OK : complain(err, KEL_E_UNIT, line, column, text, "a column of words has no unit, found ",
+                                        "");
     if (text.n == 0)
-        return kel_error_set(err, KEL_E_UNIT, line, line == 0 ? 0 : column, "the column '%s' has no unit: write for example %s",
+        return kel_error_set(err, KEL_E_UNIT, line, line == 0 ? 0 : column,
+                             "the column '%s' has no unit: write for example %s",
                              quantities[q].name, quantities[q].example);
     kel_error inner;
     kel_status status = q == KEL__UNCERTAINTY ? kel_unit_parse_any(&out->unit, text.p, text.n, &inner)
-                                              : kel_unit_parse(&out->unit, quantities[q].dimension, text.p, text.n, &inner);
+                                              : kel_unit_parse(&out->unit, quantities[q].dimension, text.p, text.n,
+                                                               &inner);
     return status == KEL_OK ? KEL_OK : kel__error_at(err, &inner, line, column + (size_t)(text.p - head));
 }
 
@@ -244,7 +260,8 @@ kel__heading_parse(kel__heading *out, const char *head, size_t n, size_t line, s
     }
     kel_status status = parse_quantity(out, name, line, column, err);
     if (status == KEL_OK && out->label.n != 0 && !kel__is_value(out->quantity) && out->quantity != KEL__UNCERTAINTY)
-        status = complain(err, KEL_E_SYNTAX, line, column, out->label, "only columns of values and uncertainties carry the label of a series, found ",
+        status = complain(err, KEL_E_SYNTAX, line, column, out->label,
+                          "only columns of values and uncertainties carry the label of a series, found ",
                           "");
     return status == KEL_OK ? parse_unit(out, has, line, column, head, err) : status;
 }
@@ -269,9 +286,11 @@ kel__heading_option(kel__heading *out, kel__word *name, const char *text, kel_er
         kel__trim(&name->p, &name->n);
     if (name->n == 0)
         return complain(err, KEL_E_ARGUMENT, 0, 0, (kel__word){ text, strlen(text) }, "column ",
-                        ": write 'QUANTITY [UNIT]=NAME-OR-NUMBER', for example 'temperature [K]=T' or 'coefficient [1e-6/K]=2'");
+                        ": write 'QUANTITY [UNIT]=NAME-OR-NUMBER', for example 'temperature [K]=T' or 'coefficient "
+                        "[1e-6/K]=2'");
     kel_status status = kel__heading_parse(out, text, (size_t)(sign - text), 0, 0, err);
     if (status == KEL_OK && out->quantity == KEL__NOTHING)
-        status = complain(err, KEL_E_ARGUMENT, 0, 0, (kel__word){ text, strlen(text) }, "column ", " names no quantity");
+        status = complain(err, KEL_E_ARGUMENT, 0, 0, (kel__word){ text, strlen(text) }, "column ",
+                          " names no quantity");
     return status;
 }

@@ -24,7 +24,8 @@ typedef struct kel__heading {
 } kel__heading;
 
 /* Parses head[n], whose first byte stands at line, column (line 0: on the command line). The words point into head. */
-kel_status kel__heading_parse(kel__heading *out, const char *head, size_t n, size_t line, size_t column, kel_error *err);
+kel_status kel__heading_parse(kel__heading *out, const char *head, size_t n, size_t line, size_t column,
+                              kel_error *err);
 
 /* 'QUANTITY [UNIT]=NAME-OR-NUMBER' of --column: the heading, and what names the column. The words point into text. */
 kel_status kel__heading_option(kel__heading *out, kel__word *name, const char *text, kel_error *err);

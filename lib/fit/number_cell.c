@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Cells of numbers.
 
-   Tables print marks at doubtful values: (0.192), 0.192:, 0.192*, ~0.192, <0.192, est. 0.192. A lenient reader takes the number and loses the
-   doubt; here marks are taken off, remembered, and decided upon elsewhere. What is left must be a plain decimal number to the last byte:
-   digits are never picked out of text. Marks of thousands are refused, because 1,234 is 1.234 in the next country. */
+   Tables print marks at doubtful values: (0.192), 0.192:, 0.192*, ~0.192, <0.192, est. 0.192. A lenient reader takes
+   the number and loses the doubt; here marks are taken off, remembered, and decided upon elsewhere. What is left must
+   be a plain decimal number to the last byte: digits are never picked out of text. Marks of thousands are refused,
+   because 1,234 is 1.234 in the next country. */
 #include "number_cell.h"
 
 #include "blanks.h"
@@ -96,7 +97,8 @@ refuse(const kel__cell *c, kel_status code, const char *at, const char *what, ke
 {
     kel_text quoted = KEL_TEXT_INIT;
     kel_text_quote(&quoted, c->p, c->n > SHOWN ? SHOWN : c->n);
-    kel_status status = quoted.failed ? kel_error_set(err, KEL_E_NOMEM, c->line, place(c, at), "out of memory for a message")
+    kel_status status = quoted.failed ? kel_error_set(err, KEL_E_NOMEM, c->line, place(c, at),
+                                                      "out of memory for a message")
                                       : kel_error_set(err, code, c->line, place(c, at), "'%s': %s", quoted.bytes, what);
     kel_text_free(&quoted);
     return status;
@@ -130,7 +132,8 @@ known_trouble(const kel__cell *c, bool comma, const char **at)
             return "no number; an empty cell, ... or n/a stands for no value";
     if ((*at = memchr(c->core, comma ? '.' : ',', c->core_n)) != NULL)
         return comma ? "a point, where the file declares `decimal: comma` (marks of thousands are not taken)"
-                     : "a comma: a decimal comma must be declared by `decimal: comma`, and marks of thousands are not taken";
+                     : "a comma: a decimal comma must be declared by `decimal: comma`, and marks of thousands are "
+                       "not taken";
     return NULL;
 }
 
@@ -200,7 +203,8 @@ skip_blanks(const char *p, const char *end)
 static kel__cell
 end_cell(const kel__cell *c, const char *p, size_t n)
 {
-    return (kel__cell){ .p = p, .n = n, .core = p, .core_n = n, .line = c->line, .column = place(c, p), .marks = c->marks };
+    return (kel__cell){ .p = p, .n = n, .core = p, .core_n = n, .line = c->line, .column = place(c, p),
+                        .marks = c->marks };
 }
 
 kel_status
@@ -222,7 +226,8 @@ void
 kel__marks_text(kel_text *text, unsigned marks)
 {
     static const mark names[] = {
-        { "in parentheses", KEL__MARK_PARENTHESES }, { "with a colon", KEL__MARK_COLON }, { "with an asterisk", KEL__MARK_ASTERISK },
+        { "in parentheses", KEL__MARK_PARENTHESES }, { "with a colon", KEL__MARK_COLON },
+            { "with an asterisk", KEL__MARK_ASTERISK },
         { "with a dagger", KEL__MARK_DAGGER }, { "about", KEL__MARK_ABOUT }, { "less than", KEL__MARK_LESS },
         { "greater than", KEL__MARK_GREATER }, { "estimated", KEL__MARK_ESTIMATED },
     };

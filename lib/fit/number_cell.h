@@ -23,14 +23,23 @@ typedef struct kel__cell {
 /* Takes the marks off. Never fails. */
 kel__cell kel__cell_of(const char *bytes, size_t n, size_t line, size_t column);
 
-/* The number that the core is, in SI; *resolution (may be NULL) one unit of its last digit. comma: the decimal mark is a comma.
-   Errors stand at the offending byte. A negative number of kelvin is answered by the advice to look at the unit. */
-kel_status kel__cell_number(double *out, double *resolution, const kel__cell *cell, const kel_unit *unit, bool comma, kel_error *err);
+/* The number that the core is, in SI; *resolution (may be NULL) one unit of its last digit. comma: the decimal mark
+   is a comma. Errors stand at the offending byte. A negative number of kelvin is answered by the advice to look at
+   the unit. */
+kel_status kel__cell_number(double *out, double *resolution, const kel__cell *cell, const kel_unit *unit, bool comma,
+                            kel_error *err);
 
-/* The core as an interval, "20-100", "20 to 100", "-50 - 20", with any dash: *from and *to get its ends as cores with their places. */
+/* The core as an interval, "20-100", "20 to 100", "-50 - 20", with any dash: *from and *to get its ends as cores with
+   their places. */
 kel_status kel__cell_interval(kel__cell *from, kel__cell *to, const kel__cell *cell, kel_error *err);
 
 /* Appends the marks as words, "in parentheses, with an asterisk". */
 void kel__marks_text(kel_text *text, unsigned marks);
+
+/* Appends n bytes; with comma, points for commas. */
+void kel__put_points(kel_text *out, const char *p, size_t n, bool comma);
+
+/* Appends the cell with its marks; turn: with the other sign. */
+void kel__put_cell(kel_text *out, const kel__cell *cell, bool turn, bool comma);
 
 #endif

@@ -6,7 +6,6 @@
 
 #include <math.h>
 #include <string.h>
-#include <kelspan/text.h>
 
 enum { LONGEST_NUMBER = 400, SHOWN = 60 };
 
@@ -45,6 +44,21 @@ kel__error_at(kel_error *err, const kel_error *inner, size_t line, size_t column
         err->column = line == 0 ? 0 : inner->column == 0 ? column : column + inner->column - 1;
     }
     return inner->code;
+}
+
+void
+kel__number_short(char *out, double x)
+{
+    kel_number_format_digits(out, x, 6);
+    char *e = strchr(out, 'e'), *last = e == NULL ? out + strlen(out) : e;
+    if (memchr(out, '.', (size_t)(last - out)) == NULL)
+        return;
+    char *keep = last;
+    while (keep[-1] == '0')
+        keep--;
+    if (keep[-1] == '.')
+        keep--;
+    memmove(keep, last, strlen(last) + 1);
 }
 
 bool

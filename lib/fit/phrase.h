@@ -4,6 +4,7 @@
 #define KELSPAN_PHRASE_H
 
 #include <stdbool.h>
+#include <kelspan/text.h>
 #include <kelspan/unit.h>
 
 /* What is left to read, and where its first byte stood. line 0: from the command line. */
@@ -36,6 +37,9 @@ kel_status kel__phrase_temperature(double *out, kel__phrase *phrase, kel_error *
 
 /* A number in a cell or value of its own. A decimal comma is taken only where comma is true, and then no point. text[n] at line, column. */
 kel_status kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line, size_t column, kel_error *err);
+
+/* x for a message or label: at most six significant digits, no zeros behind the last. out: KEL_NUMBER_SIZE bytes. */
+void kel__number_short(char *out, double x);
 
 /* Gives an error of a lower level its place: its column counted within a text that stands at line, column. */
 kel_status kel__error_at(kel_error *err, const kel_error *inner, size_t line, size_t column);

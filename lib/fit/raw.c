@@ -3,10 +3,12 @@
 
        increase of the row's number, then for each cell: line less the row's number (mod 2^64), column, size, bytes
 
-   Counts take 7 bits a byte, the low ones first, with the top bit on all but the last (so 0..127 is one byte). Tables are read forwards only,
-   two or three times; a list of chunks is never copied, as a growing array would be, and its memory is known to be the file's size. */
+   Counts take 7 bits a byte, the low ones first, with the top bit on all but the last (so 0..127 is one byte). Tables
+   are read forwards only, two or three times; a list of chunks is never copied, as a growing array would be, and its
+   memory is known to be the file's size. */
 #include "raw.h"
 
+#include <stdlib.h>
 #include <string.h>
 
 enum { CHUNK = 1 << 15, LONGEST_COUNT = 10 };
@@ -94,7 +96,7 @@ kel_status
 kel__raw_start(kel__cursor *cursor, const kel__raw *raw, kel_error *err)
 {
     *cursor = (kel__cursor){ .raw = raw, .chunk = raw->first };
-    cursor->cells = kel_arena_take(raw->arena, raw->width, sizeof *cursor->cells);
+    cursor->cells = calloc(raw->width, sizeof *cursor->cells);
     return cursor->cells == NULL ? no_memory(err, 1) : KEL_OK;
 }
 
@@ -120,6 +122,13 @@ kel__raw_next(kel__cursor *c)
     return true;
 }
 
+void
+kel__raw_stop(kel__cursor *c)
+{
+    free(c->cells);
+    c->cells = NULL;
+}
+
 kel_status
 kel__raw_transpose(kel__raw *out, const kel__raw *raw, kel_error *err)
 {
@@ -129,11 +138,14 @@ kel__raw_transpose(kel__raw *out, const kel__raw *raw, kel_error *err)
     if (status != KEL_OK)
         return status;
     kel__printed *all = kel_arena_take(raw->arena, raw->rows, raw->width * sizeof *all);
-    if (all == NULL)
+    if (all == NULL) {
+        kel__raw_stop(&cursor);
         return no_memory(err, 1);
+    }
     for (size_t i = 0; kel__raw_next(&cursor); i++)
         for (size_t j = 0; j < raw->width; j++)
             all[j * raw->rows + i] = cursor.cells[j];
+    kel__raw_stop(&cursor);
     for (size_t j = 0; j < raw->width && status == KEL_OK; j++)
         status = kel__raw_add(out, j + 1, all + j * raw->rows, err);
     return status;

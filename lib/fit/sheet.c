@@ -1,9 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Reading a sheet. The header is the first line that is no comment, unless the user says which line it is, or that there is none.
+/* Reading a sheet. The header is the first line that is no comment, unless the user says which line it is, or that
+   there is none.
 
-   In a file whose cells are parted by blanks a head such as `mean coefficient [1e-6/K]` falls apart into words. They are put together again up
-   to the bracket that closes the unit; `source` and `status` have no unit and stand alone. With temperatures across the top every line starts
-   with a head, and the rows are turned into columns once all are read. */
+   In a file whose cells are parted by blanks a head such as `mean coefficient [1e-6/K]` falls apart into words. They
+   are put together again up to the bracket that closes the unit; `source` and `status` have no unit and stand alone.
+   With temperatures across the top every line starts with a head, and the rows are turned into columns once all are
+   read. */
 #include "sheet.h"
 
 #include "blanks.h"
@@ -160,7 +162,8 @@ take_cells(reading *r, const kel__printed *cells, size_t count, kel_error *err)
         return KEL_OK;
     }
     if (!r->has_width && header > 0 && line > (size_t)header)
-        return kel_error_set(err, KEL_E_DATA, (size_t)header, 1, "no header on line %ld: the line is blank or a comment", header);
+        return kel_error_set(err, KEL_E_DATA, (size_t)header, 1,
+                             "no header on line %ld: the line is blank or a comment", header);
     if (!r->has_width && header != 0 && !r->options->transpose)
         return take_heads(r, cells, count, err);
     if (r->options->transpose && header != 0) {
@@ -182,7 +185,8 @@ static kel_status
 take_row(reading *r, const kel_row *row, kel_error *err)
 {
     if (row->comment)
-        return kel__metadata_line(r->metadata, row->cells[0].bytes, row->cells[0].size, row->line, row->cells[0].column, err);
+        return kel__metadata_line(r->metadata, row->cells[0].bytes, row->cells[0].size, row->line,
+                                  row->cells[0].column, err);
     if (row->count > r->capacity) {
         kel__printed *p = realloc(r->cells, 2 * row->count * sizeof *p);
         if (p == NULL)
@@ -204,7 +208,8 @@ finish(reading *r, kel_error *err)
     kel__sheet *s = r->sheet;
     long header = r->options->header;
     if (!r->has_width && header > 0)
-        return kel_error_set(err, KEL_E_DATA, (size_t)header, 1, "the file has no row on line %ld, where its header should be", header);
+        return kel_error_set(err, KEL_E_DATA, (size_t)header, 1,
+                             "the file has no row on line %ld, where its header should be", header);
     if (!r->has_width)
         return kel_error_set(err, KEL_E_DATA, 1, 1, "the file holds no table: neither a header nor a row");
     if (r->options->transpose) {
@@ -212,7 +217,8 @@ finish(reading *r, kel_error *err)
         kel_status status = kel__raw_transpose(&s->raw, &lines, err);
         if (status != KEL_OK)
             return status;
-        s->heads = header == 0 ? NULL : kel_arena_copy(s->raw.arena, r->line_heads, r->line_head_count, sizeof *s->heads);
+        s->heads = header == 0 ? NULL : kel_arena_copy(s->raw.arena, r->line_heads, r->line_head_count,
+                                                       sizeof *s->heads);
         if (header != 0 && s->heads == NULL)
             return no_memory(err);
         s->head_line = header == 0 ? 0 : s->heads[0].line;
@@ -225,14 +231,16 @@ finish(reading *r, kel_error *err)
 }
 
 kel_status
-kel__sheet_read(kel__sheet *out, kel_arena *arena, kel_input input, const kel_table_options *options, kel__metadata_reader *metadata,
-                kel_error *err)
+kel__sheet_read(kel__sheet *out, kel_arena *arena, kel_input input, const kel_table_options *options,
+                kel__metadata_reader *metadata, kel_error *err)
 {
     *out = (kel__sheet){ .raw.arena = arena };
     if (options->transpose && options->header > 0)
-        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "a transposed table has its heads at the start of its lines, not on line %ld",
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0,
+                             "a transposed table has its heads at the start of its lines, not on line %ld",
                              options->header);
-    reading r = { .sheet = out, .options = options, .metadata = metadata, .blanks = options->delimiter == KEL_DELIMITER_BLANKS };
+    reading r = { .sheet = out, .options = options, .metadata = metadata,
+                  .blanks = options->delimiter == KEL_DELIMITER_BLANKS };
     counted bytes = { input, 0 };
     kel_rows *rows;
     kel_status status = kel_rows_new(&rows, (kel_input){ read_counted, &bytes }, options->delimiter, err);

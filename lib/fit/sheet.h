@@ -14,7 +14,8 @@ typedef struct kel__sheet {
     char digest[65];
 } kel__sheet;
 
-/* Reads all of input. Comments go to metadata. Nothing may be ragged; rows without any text in their cells are passed over like blank lines. */
+/* Reads all of input. Comments go to metadata. Nothing may be ragged; rows without any text in their cells are passed
+   over like blank lines. */
 kel_status kel__sheet_read(kel__sheet *out, kel_arena *arena, kel_input input, const kel_table_options *options,
                            kel__metadata_reader *metadata, kel_error *err);
 

@@ -1,14 +1,15 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Validity range and gaps.
 
-   A coefficient supports its T, a mean its Ta to Tb, an expansion its reference to T. The ends of these intervals are the supporting
-   temperatures t_1 < t_2 < ... < t_m; the stretches are d_i = t_(i+1) - t_i. Stretch i is a gap if
+   A coefficient supports its T, a mean its Ta to Tb, an expansion its reference to T. The ends of these intervals are
+   the supporting temperatures t_1 < t_2 < ... < t_m; the stretches are d_i = t_(i+1) - t_i. Stretch i is a gap if
 
        d_i > 4 median(d)   and   d_i > (hi - lo)/10         by the default rule,
        d_i > limit                                          if a limit is given.
 
-   An interval that runs over a stretch does not fill it: a mean from 20 K to 300 K says nothing about where between them alpha rises.
-   The median of an even number of stretches is the mean of the middle two. Time n log n, memory 16 bytes an interval while it works. */
+   An interval that runs over a stretch does not fill it: a mean from 20 K to 300 K says nothing about where between
+   them alpha rises. The median of an even number of stretches is the mean of the middle two. Time n log n, memory 16
+   bytes an interval while it works. */
 #include "support.h"
 
 #include <math.h>
@@ -21,7 +22,8 @@ ascending(const void *a, const void *b)
     return (x > y) - (x < y);
 }
 
-/* The distinct ends in ascending order. Returns their number. Tables are nearly always in order already, and then need no sorting. */
+/* The distinct ends in ascending order. Returns their number. Tables are nearly always in order already, and then
+   need no sorting. */
 static size_t
 distinct_ends(double *t, const kel_interval *support, size_t n)
 {
@@ -79,8 +81,8 @@ kel__support_hull(const kel_interval *support, size_t n)
 }
 
 kel_status
-kel__support_gaps(const kel_interval **gaps, size_t *count, kel_arena *arena, const kel_interval *support, size_t n, kel_interval range,
-                  double limit, kel_error *err)
+kel__support_gaps(const kel_interval **gaps, size_t *count, kel_arena *arena, const kel_interval *support, size_t n,
+                  kel_interval range, double limit, kel_error *err)
 {
     *gaps = NULL;
     *count = 0;

@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The columns of a file: what their heads say, or what the user says instead.
 
-   Without --column every head must be understood. With it, the file is a foreign one: columns that are not named keep what their heads say if
-   that can be understood, else they are passed over, and a warning says so; a column whose head says what another was named as yields. */
+   Without --column every head must be understood. With it, the file is a foreign one: columns that are not named keep
+   what their heads say if that can be understood, else they are passed over, and a warning says so; a column whose
+   head says what another was named as yields. */
 #include "table_inner.h"
 
 #include "blanks.h"
@@ -62,14 +63,16 @@ find_column(size_t *out, const kel_table *t, kel__word name, kel_error *err)
     const struct kel__table *in = t->inner;
     size_t matches = 0, number = 0;
     for (size_t i = 0; i < in->sheet.raw.width; i++)
-        if (in->columns[i].head.size > 0 && kel__same_words(in->columns[i].head.bytes, in->columns[i].head.size, name.p, name.n)) {
+        if (in->columns[i].head.size > 0 && kel__same_words(in->columns[i].head.bytes, in->columns[i].head.size,
+                                                            name.p, name.n)) {
             *out = i;
             matches++;
         }
     if (matches == 1)
         return KEL_OK;
     for (size_t i = 0; i < name.n && number != KEL__NONE; i++)
-        number = name.p[i] < '0' || name.p[i] > '9' || number > in->sheet.raw.width ? KEL__NONE : 10 * number + (size_t)(name.p[i] - '0');
+        number = name.p[i] < '0' || name.p[i] > '9' || number > in->sheet.raw.width ? KEL__NONE
+            : 10 * number + (size_t)(name.p[i] - '0');
     if (matches == 0 && number != KEL__NONE && number >= 1 && number <= in->sheet.raw.width) {
         *out = number - 1;
         return KEL_OK;
@@ -158,8 +161,10 @@ check_duplicates(const struct kel__table *in, kel_error *err)
     for (size_t j = 0; j < in->sheet.raw.width; j++)
         for (size_t i = 0; i < j; i++)
             if (same_meaning(&in->columns[i].heading, &in->columns[j].heading))
-                return at_head(err, KEL_E_DATA, &in->columns[j], "the column ", kel__is_value(in->columns[j].heading.quantity)
-                               ? " repeats the kind of another one: labels tell series apart, as in `coefficient: lot 2 [1e-6/K]`"
+                return at_head(err, KEL_E_DATA, &in->columns[j], "the column ",
+                               kel__is_value(in->columns[j].heading.quantity)
+                               ? " repeats the kind of another one: labels tell series apart, as in `coefficient: "
+                                 "lot 2 [1e-6/K]`"
                                : " repeats another one");
     return KEL_OK;
 }
@@ -173,7 +178,8 @@ check_temperatures(const struct kel__table *in, kel_error *err)
         return at_head(err, KEL_E_DATA, &c[in->from == KEL__NONE ? in->to : in->from], "the column ",
                        in->from == KEL__NONE ? " needs a column `from` beside it" : " needs a column `to` beside it");
     if (in->interval != KEL__NONE && in->from != KEL__NONE)
-        return at_head(err, KEL_E_DATA, &c[in->interval], "the column ", " stands beside `from` and `to`: one of them is too many");
+        return at_head(err, KEL_E_DATA, &c[in->interval], "the column ",
+                       " stands beside `from` and `to`: one of them is too many");
     bool intervals = in->interval != KEL__NONE || in->from != KEL__NONE, any = false;
     for (size_t i = 0; i < in->sheet.raw.width; i++) {
         kel__quantity q = c[i].heading.quantity;
@@ -183,7 +189,8 @@ check_temperatures(const struct kel__table *in, kel_error *err)
         if (in->temperature == KEL__NONE && !(intervals && q == KEL__MEAN))
             return at_head(err, KEL_E_DATA, &c[i], "the column ",
                            intervals ? " needs a column `temperature`: only mean coefficients belong to intervals"
-                                     : " has no column of temperatures beside it: `temperature [K]`, or `from [K]` and `to [K]` for means");
+                                     : " has no column of temperatures beside it: `temperature [K]`, or `from [K]` "
+                                       "and `to [K]` for means");
     }
     if (!any)
         return kel_error_set(err, KEL_E_DATA, in->sheet.head_line, in->sheet.head_line == 0 ? 0 : 1,
@@ -200,7 +207,8 @@ kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *er
     if (in->columns == NULL)
         return kel__no_memory(err);
     if (options->header == 0 && !foreign)
-        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "without a header each column is named by --column 'QUANTITY [UNIT]=NUMBER'");
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0,
+                             "without a header each column is named by --column 'QUANTITY [UNIT]=NUMBER'");
     kel_status status = parse_heads(t, foreign, err);
     for (size_t i = 0; i < options->column_count && status == KEL_OK; i++)
         status = name_column(t, options->columns[i], err);
@@ -212,7 +220,8 @@ kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *er
     if ((status = check_duplicates(in, err)) != KEL_OK)
         return status;
     size_t *const roles[] = { [KEL__TEMPERATURE] = &in->temperature, [KEL__FROM] = &in->from, [KEL__TO] = &in->to,
-                              [KEL__INTERVAL] = &in->interval, [KEL__SOURCE] = &in->source, [KEL__STATUS] = &in->status };
+                              [KEL__INTERVAL] = &in->interval, [KEL__SOURCE] = &in->source,
+                                  [KEL__STATUS] = &in->status };
     for (size_t q = 0; q < sizeof roles / sizeof roles[0]; q++)
         if (roles[q] != NULL)
             *roles[q] = KEL__NONE;

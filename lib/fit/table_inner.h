@@ -36,6 +36,8 @@ struct kel__table {
     kel__metadata metadata;
     kel__sheet sheet;
     kel__file_column *columns; /* sheet.raw.width of them */
+    kel_column *fitted;        /* table->columns, while they can still change */
+    kel_observation *observed; /* table->observations, likewise */
     size_t temperature, from, to, interval, source, status; /* columns, or KEL__NONE */
     kel__leave_out *leave_out; size_t leave_out_count;
     kel_warning *warnings; size_t warning_count, warning_capacity;
@@ -60,28 +62,35 @@ kel_status kel__fail(kel_error *err, kel_status code, size_t line, size_t column
 void kel__temperature_into(kel_text *text, double t);
 void kel__value_into(kel_text *text, kel_kind kind, double value);
 
-/* The steps of reading, in this order. */
-kel_status kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *err);   /* heads and --column */
-kel_status kel__table_series(kel_table *t, const kel_table_options *options, kel_error *err);    /* what belongs together, what is fitted */
-kel_status kel__table_leave_out(kel_table *t, const kel_table_options *options, kel_error *err); /* --leave-out */
-kel_status kel__table_observe(kel_table *t, bool include_marked, kel_error *err);                /* rows to observations */
-kel_status kel__table_check(kel_table *t, kel_error *err);                                       /* physics; also for arrays */
-kel_status kel__table_cross_check(kel_table *t, kel_error *err);                                 /* kinds printed side by side */
-kel_status kel__table_order(kel_table *t, kel_error *err);                                       /* repeated and unsorted rows */
-kel_status kel__table_range(kel_table *t, double gap, kel_error *err);                           /* rows, hull and gaps */
+/* The reason of an expansion printed at its own reference. */
+extern const char kel__zero_reason[];
+
+/* The steps of reading, in this order: heads and --column; what belongs together and what is fitted; --leave-out; rows
+   to observations; physics (for arrays too); kinds printed side by side; repeated and unsorted rows (for arrays too);
+   rows, hull and gaps (likewise). */
+kel_status kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *err);
+kel_status kel__table_series(kel_table *t, const kel_table_options *options, kel_error *err);
+kel_status kel__table_leave_out(kel_table *t, const kel_table_options *options, kel_error *err);
+kel_status kel__table_observe(kel_table *t, bool include_marked, kel_error *err);
+kel_status kel__table_check(kel_table *t, kel_error *err);
+kel_status kel__table_cross_check(kel_table *t, kel_error *err);
+kel_status kel__table_order(kel_table *t, kel_error *err);
+kel_status kel__table_range(kel_table *t, double gap, kel_error *err);
 
 /* Is the row (by its number) left out by hand? Then the reason, else NULL. */
 const char *kel__left_out_by_hand(kel_table *t, size_t row);
 
 /* The independent uncertainty of observation o, whose column of the file is c and whose row is `cells`. */
-kel_status kel__row_uncertainty(kel_observation *o, const kel_table *t, const kel__file_column *c, const kel__printed *cells, unsigned *marks,
+kel_status kel__row_uncertainty(kel_observation *o, const kel_table *t, const kel__file_column *c,
+                                const kel__printed *cells, unsigned *marks,
                                 kel_error *err);
 /* Refuses absolute metadata uncertainties whose dimension is that of no fitted column. */
 kel_status kel__clause_dimensions(const kel_table *t, kel_error *err);
 
 /* The temperatures printed in a row. NaN where there is no such column. */
 typedef struct kel__row_temperatures { double at, from, to; unsigned marks; } kel__row_temperatures;
-kel_status kel__row_temperatures_of(kel__row_temperatures *out, const kel_table *t, const kel__printed *cells, kel_error *err);
+kel_status kel__row_temperatures_of(kel__row_temperatures *out, const kel_table *t, const kel__printed *cells,
+                                    kel_error *err);
 
 /* The cell of observation o in its file, for errors; column 0 for arrays. */
 kel_status kel__place_of(size_t *line, size_t *column, const kel_table *t, const kel_observation *o, kel_error *err);

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Rows left out by hand, FILE:LINE=REASON. FILE may hold colons and signs of equality: the first `:digits=` is the separator. */
+/* Rows left out by hand, FILE:LINE=REASON. FILE may hold colons and signs of equality: the first `:digits=` is the
+   separator. */
 #include "table_inner.h"
 
 #include <string.h>
@@ -43,7 +44,10 @@ kel__table_leave_out(kel_table *t, const kel_table_options *options, kel_error *
         }
         if (strlen(t->name) != name_size || memcmp(t->name, options->leave_out[i], name_size) != 0)
             continue;
-        const char *copy = kel_arena_string(in->memory, reason);
+        kel_text text = KEL_TEXT_INIT;
+        kel_text_quote(&text, reason, strlen(reason)); /* it will stand in files and messages */
+        const char *copy = text.failed ? NULL : kel_arena_string(in->memory, text.bytes);
+        kel_text_free(&text);
         if (copy == NULL)
             return kel__no_memory(err);
         in->leave_out[in->leave_out_count++] = (kel__leave_out){ row, copy, false };

@@ -1,8 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Rows to observations: each printed value of a fitted column with its interval, its uncertainty, and the reason if it is left out.
+/* Rows to observations: each printed value of a fitted column with its interval, its uncertainty, and the reason if
+   it is left out.
 
-   Why a value is left out, the first that holds: by hand (--leave-out, or a status that says `left out: REASON`); the row's status; a mark at
-   one of its temperatures, at the value or at its uncertainty. Marks leave no one out where the user included marked rows. */
+   Why a value is left out, the first that holds: by hand (--leave-out, or a status that says `left out: REASON`); the
+   row's status; a mark at one of its temperatures, at the value or at its uncertainty. Marks leave no one out where
+   the user included marked rows. */
 #include "table_inner.h"
 
 #include "blanks.h"
@@ -14,8 +16,8 @@
 typedef struct pass {
     kel_table *t;
     bool include_marked;
-    kel_observation *list;
     size_t marked, first_marked; /* cells with a mark, and the first row with one */
+    size_t first_empty;
 } pass;
 
 /* What is known of a row before its values are looked at. */
@@ -30,7 +32,8 @@ static kel_status
 temperature(double *out, const kel_table *t, size_t column, const kel__cell *cell, kel_error *err)
 {
     const struct kel__table *in = t->inner;
-    return cell->empty ? KEL_OK : kel__cell_number(out, NULL, cell, &in->columns[column].heading.unit, in->metadata.decimal_comma, err);
+    return cell->empty ? KEL_OK : kel__cell_number(out, NULL, cell, &in->columns[column].heading.unit,
+                                                   in->metadata.decimal_comma, err);
 }
 
 kel_status
@@ -63,7 +66,8 @@ kel__row_temperatures_of(kel__row_temperatures *out, const kel_table *t, const k
         (status = temperature(&out->to, t, second, &to, err)) != KEL_OK)
         return status;
     if (from.empty != to.empty)
-        return kel_error_set(err, KEL_E_DATA, from.line, from.empty ? from.column : to.column, "an interval with one end only");
+        return kel_error_set(err, KEL_E_DATA, from.line, from.empty ? from.column : to.column,
+                             "an interval with one end only");
     if (out->from >= out->to) {
         kel_text text = KEL_TEXT_INIT;
         kel_text_add(&text, "an interval from ");
@@ -160,12 +164,15 @@ static kel_status
 observe(pass *p, const row *r, kel__file_column *c, double value, unsigned marks, size_t column, kel_error *err)
 {
     kel_table *t = p->t;
-    kel_observation *o = &p->list[t->observation_count];
+    kel_observation *o = &t->inner->observed[t->observation_count];
     unsigned u_marks = 0;
-    *o = (kel_observation){ .kind = t->columns[c->slot].kind, .value = c->heading.quantity == KEL__CONTRACTION ? 0 - value : value,
-                            .column = c->slot, .line = r->number, .left_out = r->left_out };
+    *o = (kel_observation){ .kind = t->columns[c->slot].kind, .value = value, .column = c->slot, .line = r->number,
+                            .left_out = r->left_out };
+    if (c->heading.quantity == KEL__CONTRACTION)
+        o->value = 0 - value; /* and never -0 */
     if (!set_temperatures(o, t, r))
-        return kel_error_set(err, KEL_E_DATA, r->cells[column].line, r->cells[column].column, "a value in a row without a temperature");
+        return kel_error_set(err, KEL_E_DATA, r->cells[column].line, r->cells[column].column,
+                             "a value in a row without a temperature");
     kel_status status = kel__row_uncertainty(o, t, c, r->cells, &u_marks, err);
     if (u_marks != 0)
         count_mark(p, r);
@@ -185,12 +192,13 @@ take_value(pass *p, const row *r, size_t i, kel_error *err)
     kel__cell cell = kel__cell_at(r->cells, i);
     double value, resolution;
     if (cell.empty) {
-        t->empty_cells++;
+        p->first_empty = t->empty_cells++ == 0 ? r->number : p->first_empty;
         return KEL_OK;
     }
     if (cell.marks != 0)
         count_mark(p, r);
-    kel_status status = kel__cell_number(&value, &resolution, &cell, &c->heading.unit, t->inner->metadata.decimal_comma, err);
+    kel_status status = kel__cell_number(&value, &resolution, &cell, &c->heading.unit,
+                                         t->inner->metadata.decimal_comma, err);
     if (status != KEL_OK)
         return status;
     if (c->resolution == 0 || resolution < c->resolution)
@@ -216,28 +224,41 @@ take_row(pass *p, const row *r, kel_error *err)
 }
 
 static kel_status
-finish(pass *p, kel_column *columns, kel_error *err)
+warn_about_cells(pass *p, kel_error *err)
+{
+    kel_status status = KEL_OK;
+    kel_text text = KEL_TEXT_INIT;
+    if (p->t->empty_cells > 0) {
+        kel_text_add(&text, "cells without a value");
+        status = kel__warn(p->t, "empty", &text, p->first_empty, p->t->empty_cells, err);
+    }
+    if (p->marked == 0 || status != KEL_OK)
+        return status;
+    kel_text_add(&text, p->include_marked ? "values with a status mark are included"
+                                          : "values with a status mark are left out (--include-marked takes them)");
+    return kel__warn(p->t, "marked", &text, p->first_marked, p->marked, err);
+}
+
+static kel_status
+finish(pass *p, kel_error *err)
 {
     kel_table *t = p->t;
     struct kel__table *in = t->inner;
     for (size_t i = 0; i < in->leave_out_count; i++)
         if (!in->leave_out[i].met)
-            return kel_error_set(err, KEL_E_DATA, in->leave_out[i].row, 1, "no row of data on %s %zu, so it cannot be left out",
+            return kel_error_set(err, KEL_E_DATA, in->leave_out[i].row, 1,
+                                 "no row of data on %s %zu, so it cannot be left out",
                                  t->transposed ? "column" : "line", in->leave_out[i].row);
     if (t->observation_count == 0)
-        return kel_error_set(err, KEL_E_DATA, in->sheet.head_line, in->sheet.head_line == 0 ? 0 : 1, "no value in any row");
+        return kel_error_set(err, KEL_E_DATA, in->sheet.head_line, in->sheet.head_line == 0 ? 0 : 1,
+                             "no value in any row");
     for (size_t i = 0; i < in->sheet.raw.width; i++)
         if (in->columns[i].slot != KEL__NONE)
-            columns[in->columns[i].slot].resolution = in->columns[i].resolution;
-    t->observations = p->list;
+            in->fitted[in->columns[i].slot].resolution = in->columns[i].resolution;
+    t->observations = in->observed;
     t->rows = in->sheet.raw.rows;
     t->marked_cells = p->marked;
-    if (p->marked == 0)
-        return KEL_OK;
-    kel_text text = KEL_TEXT_INIT;
-    kel_text_add(&text, p->include_marked ? "values with a status mark are included" : "values with a status mark are left out "
-                        "(--include-marked takes them)");
-    return kel__warn(t, "marked", &text, p->first_marked, p->marked, err);
+    return warn_about_cells(p, err);
 }
 
 kel_status
@@ -245,8 +266,8 @@ kel__table_observe(kel_table *t, bool include_marked, kel_error *err)
 {
     struct kel__table *in = t->inner;
     pass p = { .t = t, .include_marked = include_marked };
-    p.list = kel_arena_take(in->memory, in->sheet.raw.rows * t->column_count, sizeof *p.list);
-    if (p.list == NULL)
+    in->observed = kel_arena_take(in->memory, in->sheet.raw.rows * t->column_count, sizeof *in->observed);
+    if (in->observed == NULL)
         return kel__no_memory(err);
     kel__cursor cursor;
     kel_status status = kel__raw_start(&cursor, &in->sheet.raw, err);
@@ -256,5 +277,6 @@ kel__table_observe(kel_table *t, bool include_marked, kel_error *err)
         if (status == KEL_OK)
             status = take_row(&p, &r, err);
     }
-    return status == KEL_OK ? finish(&p, (kel_column *)t->columns, err) : status;
+    kel__raw_stop(&cursor);
+    return status == KEL_OK ? finish(&p, err) : status;
 }

@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Which columns belong together, and which of them are fitted.
 
-   Labels make series; a table is read as one of them. An uncertainty belongs to the nearest value column on its left. The kinds of one series
-   are one measurement printed in several ways, so one is fitted, in this order: expansion (what an instrument measures), mean, coefficient. */
+   Labels make series; a table is read as one of them. An uncertainty belongs to the nearest value column on its left.
+   The kinds of one series are one measurement printed in several ways, so one is fitted, in this order: expansion
+   (what an instrument measures), mean, coefficient. */
 #include "table_inner.h"
 
 #include "blanks.h"
@@ -97,7 +98,8 @@ join_uncertainty(struct kel__table *in, size_t i, kel_error *err)
     while (j > 0 && !kel__is_value(in->columns[j - 1].heading.quantity))
         j--;
     if (j == 0)
-        return at_head(err, KEL_E_DATA, c, "the column ", " has no column of values on its left that it could belong to");
+        return at_head(err, KEL_E_DATA, c, "the column ",
+                       " has no column of values on its left that it could belong to");
     kel__file_column *value = &in->columns[j - 1];
     const kel__word *label = &c->heading.label;
     if (label->n > 0 && !is_series(value, label->p, label->n))
@@ -110,7 +112,8 @@ join_uncertainty(struct kel__table *in, size_t i, kel_error *err)
     c->relative = dimension == KEL_DIM_PER_KELVIN && strcmp(c->heading.unit.name, "%") == 0;
     if (!c->relative && c->heading.unit.dimension != dimension)
         return at_head(err, KEL_E_UNIT, c, "the uncertainty ", dimension == KEL_DIM_PER_KELVIN
-                       ? " stands beside a coefficient: its unit is one of coefficients such as 1e-6/K, or % of the value"
+                       ? " stands beside a coefficient: its unit is one of coefficients such as 1e-6/K, or % of the "
+                         "value"
                        : " stands beside an expansion: its unit is one of expansion such as 1e-5 or %");
     return KEL_OK;
 }
@@ -173,11 +176,14 @@ add_column(kel_table *t, kel_column *column, kel__file_column *c, kel_error *err
     bool intervals = q == KEL__MEAN && (in->interval != KEL__NONE || in->from != KEL__NONE);
     if (isnan(t->reference_temperature) && q != KEL__COEFFICIENT && !intervals)
         return at_head(err, KEL_E_DATA, c, "the column ",
-                       " needs the temperature it is counted from: write `# reference temperature: 20 degC`, or whatever the source says");
+                       " needs the temperature it is counted from: write `# reference temperature: 20 degC`, or "
+                       "whatever the source says");
     *column = (kel_column){ .kind = kel__kind_of(q), .contraction = q == KEL__CONTRACTION };
     column->unit = kel_arena_bytes(in->memory, c->heading.unit_text.p, c->heading.unit_text.n);
-    column->label = c->heading.label.n == 0 ? NULL : kel_arena_bytes(in->memory, c->heading.label.p, c->heading.label.n);
-    if (column->unit == NULL || (c->heading.label.n != 0 && column->label == NULL))
+    const kel__word *label = &c->heading.label;
+    if (label->n > 0)
+        column->label = kel_arena_bytes(in->memory, label->p, label->n);
+    if (column->unit == NULL || (label->n > 0 && column->label == NULL))
         return kel__no_memory(err);
     c->slot = t->column_count++;
     return KEL_OK;
@@ -199,17 +205,18 @@ kel__table_series(kel_table *t, const kel_table_options *options, kel_error *err
             present[kel__kind_of(in->columns[i].heading.quantity)] = true;
     if ((status = check_kind(t, present, options->kind, err)) != KEL_OK)
         return status;
-    int best = present[KEL_KIND_EXPANSION] ? KEL_KIND_EXPANSION : present[KEL_KIND_MEAN] ? KEL_KIND_MEAN : KEL_KIND_COEFFICIENT;
+    int best = present[KEL_KIND_EXPANSION] ? KEL_KIND_EXPANSION : present[KEL_KIND_MEAN] ? KEL_KIND_MEAN
+        : KEL_KIND_COEFFICIENT;
     for (int k = 0; k < 3; k++)
-        fitted[k] = present[k] && (options->kind == KEL_CHOOSE_ALL || (int)options->kind == k || (options->kind < 0 && k == best));
-    kel_column *columns = kel_arena_take(in->memory, 3, sizeof *columns);
-    if (columns == NULL)
+        fitted[k] = present[k] && (options->kind == KEL_CHOOSE_ALL || (int)options->kind == k ||
+                                   (options->kind < 0 && k == best));
+    t->columns = in->fitted = kel_arena_take(in->memory, 3, sizeof *in->fitted);
+    if (in->fitted == NULL)
         return kel__no_memory(err);
-    t->columns = columns;
     for (size_t i = 0; i < in->sheet.raw.width && status == KEL_OK; i++) {
         kel__file_column *c = &in->columns[i];
         if (c->used && kel__is_value(c->heading.quantity) && fitted[kel__kind_of(c->heading.quantity)])
-            status = add_column(t, &columns[t->column_count], c, err);
+            status = add_column(t, &in->fitted[t->column_count], c, err);
     }
     if (status == KEL_OK && memcmp(present, fitted, sizeof present) != 0)
         status = warn_kinds(t, present, fitted, err);

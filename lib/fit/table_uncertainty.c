@@ -3,8 +3,9 @@
 
        u^2 = u_column^2 + u_metadata^2,     each with an absolute part and a part relative to the curve's value.
 
-   `uncertainty [%]` beside coefficients is relative; beside expansions it is absolute, an expansion in per cent. The metadata's clause is the one
-   whose range holds the row's temperature (of an interval its upper end); where two ranges meet, the colder one. */
+   `uncertainty [%]` beside coefficients is relative; beside expansions it is absolute, an expansion in per cent. The
+   metadata's clause is the one whose range holds the row's temperature (of an interval its upper end); where two
+   ranges meet, the colder one. */
 #include "table_inner.h"
 
 #include <math.h>
@@ -32,7 +33,8 @@ static kel_status
 from_column(kel_observation *o, const kel_table *t, const kel__file_column *u, kel__cell cell, kel_error *err)
 {
     double printed;
-    kel_status status = kel__cell_number(&printed, NULL, &cell, &u->heading.unit, t->inner->metadata.decimal_comma, err);
+    kel_status status = kel__cell_number(&printed, NULL, &cell, &u->heading.unit, t->inner->metadata.decimal_comma,
+                                         err);
     if (status != KEL_OK)
         return status;
     if (!(printed > 0)) {
@@ -48,7 +50,8 @@ from_column(kel_observation *o, const kel_table *t, const kel__file_column *u, k
 }
 
 kel_status
-kel__row_uncertainty(kel_observation *o, const kel_table *t, const kel__file_column *c, const kel__printed *cells, unsigned *marks,
+kel__row_uncertainty(kel_observation *o, const kel_table *t, const kel__file_column *c, const kel__printed *cells,
+                     unsigned *marks,
                      kel_error *err)
 {
     const struct kel__table *in = t->inner;

@@ -41,7 +41,8 @@ kel__value_into(kel_text *text, kel_kind kind, double value)
 kel_status
 kel__fail(kel_error *err, kel_status code, size_t line, size_t column, kel_text *text)
 {
-    kel_status status = text->failed ? kel__no_memory(err) : kel_error_set(err, code, line, column, "%s", text->bytes == NULL ? "" : text->bytes);
+    kel_status status = text->failed ? kel__no_memory(err)
+        : kel_error_set(err, code, line, column, "%s", text->bytes == NULL ? "" : text->bytes);
     kel_text_free(text);
     return status;
 }

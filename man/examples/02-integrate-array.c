@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Integrates alpha over many intervals in one call: a bar with a temperature for each of its elements is cooled, and every
-   element reports its change of length, with a flag where the answer leaves the validity range.
+/* Integrates alpha over many intervals in one call: a bar with a temperature for each of its elements is cooled, and
+   every element reports its change of length, with a flag where the answer leaves the validity range.
 
        02-integrate-array RECORD.json
 
@@ -52,14 +52,16 @@ main(int argc, char **argv)
         if (flags[i] & KEL_FLAG_EXTRAPOLATED)
             outside++;
     }
-    printf("%d elements, bar of %g m, cooled from %g K to %g K at its cold end\n", ELEMENTS, length * ELEMENTS, range.hi, coldest);
+    printf("%d elements, bar of %g m, cooled from %g K to %g K at its cold end\n", ELEMENTS, length * ELEMENTS, range.hi,
+           coldest);
     printf("change of length %.4g mm\n", change * 1e3);
     printf("coldest element: integral %.6g", integral[ELEMENTS - 1]);
     if (flags[ELEMENTS - 1] & KEL_FLAG_UNKNOWN_U)
         printf(", u not known\n");
     else
         printf(", u %.2g\n", u[ELEMENTS - 1]);
-    printf("extrapolated: %zu elements%s\n", outside, status == KEL_W_EXTRAPOLATED ? ", so the sum is an extrapolation too" : "");
+    printf("extrapolated: %zu elements%s\n", outside,
+           status == KEL_W_EXTRAPOLATED ? ", so the sum is an extrapolation too" : "");
     kel_record_free(record);
     return 0;
 }

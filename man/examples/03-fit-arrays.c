@@ -4,19 +4,20 @@
        03-fit-arrays RECORD.json
 
    The rows are of two kinds, coefficients below room temperature and means above it; both go into the same solve. The
-   material is invented. Needs libkelspan-fit, which links GSL and LAPACKE and is GPL-3.0-or-later, as is what links it. */
+   material is invented. Needs libkelspan-fit, which links GSL and LAPACKE and is GPL-3.0-or-later, as is what links
+   it. */
 #include <stdio.h>
 #include <stdlib.h>
 
 #include <kelspan-fit.h>
 
-/* Values in SI: kelvin and 1/K. */
-static const struct { double t, alpha; } cold[] = {
-    { 80, 9.31e-6 }, { 110, 11.92e-6 }, { 140, 13.47e-6 }, { 170, 14.51e-6 },
-    { 200, 15.19e-6 }, { 230, 15.74e-6 }, { 260, 16.13e-6 }, { 290, 16.47e-6 },
+/* Values in SI: kelvin and 1/K. The standard uncertainties are independent from row to row. */
+static const struct { double t, alpha, u; } cold[] = {
+    { 80, 8.11e-6, 0.02e-6 },  { 110, 11.19e-6, 0.02e-6 }, { 140, 13.07e-6, 0.02e-6 }, { 170, 14.28e-6, 0.02e-6 },
+    { 200, 15.10e-6, 0.02e-6 }, { 230, 15.71e-6, 0.02e-6 }, { 260, 16.20e-6, 0.02e-6 }, { 290, 16.55e-6, 0.02e-6 },
 };
-static const struct { double from, to, mean; } warm[] = {
-    { 293.15, 323.15, 16.68e-6 }, { 293.15, 373.15, 16.93e-6 }, { 293.15, 423.15, 17.19e-6 },
+static const struct { double from, to, mean, u; } warm[] = {
+    { 293.15, 323.15, 16.75e-6, 0.02e-6 }, { 293.15, 373.15, 16.97e-6, 0.01e-6 }, { 293.15, 423.15, 17.17e-6, 0.01e-6 },
 };
 enum { COLD = sizeof cold / sizeof cold[0], WARM = sizeof warm / sizeof warm[0], ROWS = COLD + WARM };
 
@@ -35,12 +36,16 @@ main(int argc, char **argv)
     };
     kel_observation rows[ROWS] = { { .kind = KEL_KIND_COEFFICIENT } };
     for (size_t i = 0; i < COLD; i++)
-        rows[i] = (kel_observation){ .kind = KEL_KIND_COEFFICIENT, .from = cold[i].t, .to = cold[i].t, .value = cold[i].alpha,
-                                     .column = 0, .line = i + 1, .printed_lo = cold[i].t, .printed_hi = cold[i].t };
+        rows[i] = (kel_observation){
+            .kind = KEL_KIND_COEFFICIENT, .from = cold[i].t, .to = cold[i].t, .value = cold[i].alpha, .column = 0,
+            .u_absolute = cold[i].u, .u_stated = true, .line = i + 1, .printed_lo = cold[i].t, .printed_hi = cold[i].t,
+        };
     for (size_t i = 0; i < WARM; i++)
-        rows[COLD + i] = (kel_observation){ .kind = KEL_KIND_MEAN, .from = warm[i].from, .to = warm[i].to, .value = warm[i].mean,
-                                            .column = 1, .line = COLD + i + 1,
-                                            .printed_lo = warm[i].from, .printed_hi = warm[i].to };
+        rows[COLD + i] = (kel_observation){
+            .kind = KEL_KIND_MEAN, .from = warm[i].from, .to = warm[i].to, .value = warm[i].mean, .column = 1,
+            .u_absolute = warm[i].u, .u_stated = true, .line = COLD + i + 1, .printed_lo = warm[i].from,
+            .printed_hi = warm[i].to,
+        };
 
     kel_error err;
     kel_table *table;
@@ -59,12 +64,13 @@ main(int argc, char **argv)
         fprintf(stderr, "%s\n", err.message);
     } else {
         const kel_content *c = kel_record_content(record);
-        printf("%zu observations, %zu parameters, valid from %g K to %g K\n", c->observations, c->parameters, c->range.lo, c->range.hi);
+        printf("%zu observations, %zu parameters, chi2 %.1f, valid from %g K to %g K\n", c->observations, c->parameters,
+               c->chi2, c->range.lo, c->range.hi);
         for (size_t i = 0; i < report->warning_count; i++)
             printf("warning: %s\n", report->warnings[i].text);
         for (size_t i = 0; i < c->row_count; i++)
-            printf("%7.2f K %7.2f K  observed %6.2f  fitted %6.2f  residual %6.3f  (1e-6/K)\n", c->rows[i].from, c->rows[i].to,
-                   c->rows[i].observed * 1e6, c->rows[i].fitted * 1e6, c->rows[i].residual * 1e6);
+            printf("%7.2f K %7.2f K  observed %6.2f  fitted %6.2f  residual %6.3f  (1e-6/K)\n", c->rows[i].from,
+                   c->rows[i].to, c->rows[i].observed * 1e6, c->rows[i].fitted * 1e6, c->rows[i].residual * 1e6);
         printf("saved as %s\n", argv[1]);
     }
     kel_fit_report_free(report);

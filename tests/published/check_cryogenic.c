@@ -104,8 +104,8 @@ hold_rows(const kel_record *record, const solid *s, const figures *values, doubl
             continue;
         kel_answer e, a;
         kel_status status = kel_record_expansion(&e, record, t, NULL);
-        ck_assert_int_eq(kel_record_coefficient(&a, record, t, NULL), status);
         bool out = t < from || strcmp(figures_text(values, i, "range"), "OUT") == 0;
+        ck_assert_int_eq(kel_record_coefficient(&a, record, t, NULL), out ? KEL_W_EXTRAPOLATED : KEL_OK);
         ck_assert_msg(out == (status == KEL_W_EXTRAPOLATED), "%s at %g K: %s", s->name, t, kel_status_text(status));
         if (t < from && s->two_pieces)
             continue; /* the polynomial alone does not answer for the plateau */

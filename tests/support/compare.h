@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Four ways to compare a double with what it should be, for Check tests. A failure prints label, got, expected, distance and limit.
-   The plain forms use the text of `got` as label; the `_for` forms take one, for rows of a table. Arguments are evaluated once.
+/* Four ways to compare a double with what it should be, for Check tests. A failure prints label, got, expected,
+   distance and limit. The plain forms use the text of `got` as label; the `_for` forms take one, for rows of a table.
+   Arguments are evaluated once.
 
    NaN equals NaN only, an infinity itself only; 0 and -0 are equal (compare signbit where the sign matters). */
 #ifndef KEL_TEST_COMPARE_H
@@ -28,12 +29,13 @@ bool kel_compare_abs(char *message, const char *label, double got, double want, 
 #define ck_assert_ulp_for(label, got, want, n) KEL_COMPARE(kel_compare_ulp, label, got, want, n)
 #define ck_assert_ulp(got, want, n) ck_assert_ulp_for(#got, got, want, n)
 
-/* At least that many digits right: -log10 |got - want|/|want|; for want = 0, -log10 |got|. Equal values are right to 17 digits. */
+/* At least that many digits right: -log10 |got - want|/|want|; for want = 0, -log10 |got|. Equal values are right to 17
+   digits. */
 #define ck_assert_lre_for(label, got, want, digits) KEL_COMPARE(kel_compare_lre, label, got, want, digits)
 #define ck_assert_lre(got, want, digits) ck_assert_lre_for(#got, got, want, digits)
 
-/* want as printed in the source, "16.7e-6" or "-0.360": within half a unit of its last digit, the half included. got may miss an exact
-   half by its own rounding to a double, no more. */
+/* want as printed in the source, "16.7e-6" or "-0.360": within half a unit of its last digit, the half included. got
+   may miss an exact half by its own rounding to a double, no more. */
 #define ck_assert_published_for(label, got, want) KEL_COMPARE(kel_compare_published, label, got, want)
 #define ck_assert_published(got, want) ck_assert_published_for(#got, got, want)
 

@@ -4,9 +4,9 @@
    A test program is
        START_TEST(one) { ... } END_TEST
        KEL_TCASE(basics, one, two)
-       static TCase *loops(void) { TCase *c = tcase_create("loops"); tcase_add_loop_test(c, three, 0, KEL_LENGTH(rows)); return c; }
-       KEL_TEST_MAIN("integrate", basics, loops)
-   and prints Check's usual summary. Link tests/support/compare.c and Check. */
+       static TCase *loops(void) { TCase *c = tcase_create("loops"); tcase_add_loop_test(c, three, 0, KEL_LENGTH(rows));
+   return c; } KEL_TEST_MAIN("integrate", basics, loops) and prints Check's usual summary. Link tests/support/compare.c
+   and Check. */
 #ifndef KEL_TEST_UNIT_H
 #define KEL_TEST_UNIT_H
 
@@ -18,7 +18,24 @@
 
 #define KEL_LENGTH(array) ((int)(sizeof(array) / sizeof(array)[0]))
 
-/* Where the source tree lies. The environment wins, so that a build outside the tree and an installed test both work. */
+/* ck_assert_msg for loops of a million turns: Check writes a line to a file for each of its own assertions, this only
+   on failure. */
+#define KEL_REQUIRE(condition, ...)                                                       \
+    do {                                                                                  \
+        if (!(condition))                                                                 \
+            ck_abort_msg(__VA_ARGS__);                                                    \
+    } while (0)
+
+/* Under AddressSanitizer: a request that is too large gives NULL, as without it. */
+const char *__asan_default_options(void);
+const char *
+__asan_default_options(void)
+{
+    return "allocator_may_return_null=1";
+}
+
+/* Where the source tree lies. The environment wins, so that a build outside the tree and an installed test both
+   work. */
 #ifndef KEL_SOURCE_DIR
 #define KEL_SOURCE_DIR "."
 #endif

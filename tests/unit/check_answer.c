@@ -215,7 +215,7 @@ static const struct bad_row {
     { "unknown base", { KEL_MEAN, 300, 310, ANY, NAN, 2 }, KEL_E_ARGUMENT, "base 2" },
     { "unknown base below", { KEL_MEAN, 300, 310, ANY, NAN, -2 }, KEL_E_ARGUMENT, "base -2" },
     { "unknown quantity", { (kel_quantity)6, 300, 310, ANY, NAN, -1 }, KEL_E_ARGUMENT, "quantity 6" },
-    { "beyond a double", { KEL_INTEGRAL, 300, 1e300, ANY, NAN, -1 }, KEL_E_RANGE, "1e+300" },
+    { "beyond a double", { KEL_INTEGRAL, 300, 1e300, ANY, NAN, -1 }, KEL_E_RANGE, "1e300" },
     { "0 K", { KEL_COEFFICIENT, ANY, 0, ANY, NAN, -1 }, KEL_W_EXTRAPOLATED, NULL },
     { "minus 0 K", { KEL_COEFFICIENT, ANY, -0.0, ANY, NAN, -1 }, KEL_W_EXTRAPOLATED, NULL },
     { "0 K to 0 K", { KEL_CHANGE, 0, 0, 0, 0, KEL_BASE_CURRENT }, KEL_W_EXTRAPOLATED, NULL },

@@ -102,7 +102,7 @@ START_TEST(a_failing_element)
         { "NaN", (double)NAN, KEL_E_ARGUMENT, "nan K" },
         { "infinity", HUGE_VAL, KEL_E_ARGUMENT, "inf K" },
         { "below 0 K", -1.0, KEL_E_RANGE, "-1 K" },
-        { "beyond a double", 1e300, KEL_E_RANGE, "1e+300" },
+        { "beyond a double", 1e300, KEL_E_RANGE, "1e300" },
     };
     static const size_t places[] = { 0, 63, 64, LENGTH - 1 };
     uint64_t state = 30 + (uint64_t)_i;

@@ -10,7 +10,8 @@
 START_TEST(zeroed_aligned_disjoint)
 {
     /* Around the first block's size, the largest block's, and far beyond. */
-    static const size_t sizes[] = { 0, 1, 2, 7, 8, 15, 16, 17, 100, 1008, 1023, 1024, 1025, 4096, 262143, 262144, 262145, 1000000 };
+    static const size_t sizes[] = { 0,    1,    2,    7,    8,    15,     16,     17,     100,
+                                    1008, 1023, 1024, 1025, 4096, 262143, 262144, 262145, 1000000 };
     enum { N = 400 };
     unsigned char *p[N];
     size_t size[N];
@@ -22,13 +23,13 @@ START_TEST(zeroed_aligned_disjoint)
         ck_assert_ptr_nonnull(p[i]);
         ck_assert_msg((uintptr_t)p[i] % alignof(max_align_t) == 0, "take %d of %zu bytes is not aligned", i, size[i]);
         for (size_t j = 0; j < size[i]; j++)
-            ck_assert_msg(p[i][j] == 0, "take %d: byte %zu is not zero", i, j);
+            KEL_REQUIRE(p[i][j] == 0, "take %d: byte %zu is not zero", i, j);
         memset(p[i], i % 251 + 1, size[i]);
     }
     /* Had two of them overlapped, one would have lost its bytes. */
     for (int i = 0; i < N; i++)
         for (size_t j = 0; j < size[i]; j++)
-            ck_assert_msg(p[i][j] == i % 251 + 1, "take %d: byte %zu was overwritten", i, j);
+            KEL_REQUIRE(p[i][j] == i % 251 + 1, "take %d: byte %zu was overwritten", i, j);
     kel_arena_free(arena);
 }
 END_TEST
@@ -59,7 +60,8 @@ START_TEST(copies)
     ck_assert(y != NULL && y != x && memcmp(x, y, sizeof x) == 0);
     ck_assert_ptr_nonnull(kel_arena_copy(arena, NULL, 0, 8));
     char text[] = "invar";
-    char *s = kel_arena_string(arena, text), *b = kel_arena_bytes(arena, text, 2), *none = kel_arena_bytes(arena, NULL, 0);
+    char *s = kel_arena_string(arena, text), *b = kel_arena_bytes(arena, text, 2),
+         *none = kel_arena_bytes(arena, NULL, 0);
     text[0] = 'X';
     ck_assert_str_eq(s, "invar");
     ck_assert_str_eq(b, "in");

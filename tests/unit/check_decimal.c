@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Exact decimals: text taken apart, and one rounding through a unit's factor, in all three ways and at the exact ties between doubles. */
+/* Exact decimals: text taken apart, and one rounding through a unit's factor, in all three ways and at the exact ties
+   between doubles. */
 #include "unit.h"
 
 #include <float.h>
@@ -11,13 +12,23 @@
 
 __extension__ typedef unsigned __int128 u128;
 
-static const struct { const char *text; size_t used; bool negative; uint64_t head; size_t count; int64_t exponent; } scans[] = {
+static const struct {
+    const char *text;
+    size_t used;
+    bool negative;
+    uint64_t head;
+    size_t count;
+    int64_t exponent;
+} scans[] = {
     { "0", 1, false, 0, 0, 0 },
     { "-0.0", 4, true, 0, 0, -1 },
     { "12.50", 5, false, 1250, 4, -2 },
     { "+.5", 3, false, 5, 1, -1 },
     { "5.", 2, false, 5, 1, 0 },
-    { "\xE2\x88\x92" "7e\xE2\x88\x92" "3", 9, true, 7, 1, -3 },
+    { "\xE2\x88\x92"
+      "7e\xE2\x88\x92"
+      "3",
+      9, true, 7, 1, -3 },
     { "1.25e-3", 7, false, 125, 3, -5 },
     { "1E+2", 4, false, 1, 1, 2 },
     { "20e", 2, false, 20, 2, 0 },
@@ -53,15 +64,15 @@ rounded(kel_status *status, const char *text, kel__factor f)
 {
     kel__decimal d;
     double x;
-    ck_assert_uint_eq(kel__decimal_scan(&d, text, strlen(text)), strlen(text));
+    KEL_REQUIRE(kel__decimal_scan(&d, text, strlen(text)) == strlen(text), "'%.60s' is no number", text);
     *status = kel__decimal_round(&x, &d, &f);
     return x;
 }
 
 static const kel__factor one = { 0, 1, 1, 0 }, degF = { 45967, 5, 9, 0 }, inch = { 0, 254, 1, -4 };
 
-/* Temperatures in degF whose value in kelvin is exactly halfway between x and the next double: 9/5 of the tie less 459.67 is a finite
-   decimal, computed with rational numbers in another language. */
+/* Temperatures in degF whose value in kelvin is exactly halfway between x and the next double: 9/5 of the tie less
+   459.67 is a finite decimal, computed with rational numbers in another language. */
 static const struct { const char *tie; double x; } ties[] = {
     { "68.000000000000010231815394945442676544189453125", 0x1.2526666666666p+8 },
     { "0.2300000000000255795384873636066913604736328125", 0x1.ff00000000000p+7 },
@@ -75,7 +86,8 @@ START_TEST(halfway_with_offset)
     kel_status status;
     double x = ties[_i].x, next = nextafter(x, INFINITY);
     const char *tie = ties[_i].tie;
-    /* All x of the table have an even last bit. Away from the kelvin's zero the tie's last digit may be lowered or followed by others. */
+    /* All x of the table have an even last bit. Away from the kelvin's zero the tie's last digit may be lowered or
+     * followed by others. */
     ck_assert_ulp_for(tie, rounded(&status, tie, degF), x, 0);
     bool negative = tie[0] == '-';
     strcpy(text, tie);
@@ -90,7 +102,8 @@ START_TEST(halfway_with_offset)
 }
 END_TEST
 
-/* x/0.0254 for a tie between doubles is periodic: text that follows it for any number of digits. x = m/2^45, m < 2^54. */
+/* x/0.0254 for a tie between doubles is periodic: text that follows it for any number of digits. x = m/2^45, m <
+   2^54. */
 static void
 follow(char *text, uint64_t m, int digits)
 {
@@ -109,7 +122,8 @@ START_TEST(halfway_with_periodic_tie)
 {
     static char text[8000];
     static const int digits[] = { 20, 60, 760, 1200, 5000 };
-    const uint64_t m = ((uint64_t)5404319552844595 << 1) + 1; /* halfway between an odd and an even double, near 307 m */
+    const uint64_t m =
+        ((uint64_t)5404319552844595 << 1) + 1; /* halfway between an odd and an even double, near 307 m */
     const double below = ldexp((double)(m - 1), -45), above = nextafter(below, INFINITY);
     kel_status status;
     follow(text, m, digits[_i]);
@@ -164,8 +178,8 @@ START_TEST(extremes_with_factor)
 }
 END_TEST
 
-/* Against long double arithmetic: with 64 bits its error is below 4 units in the last place, so where both ends of that band round to
-   one double, it is the nearest. The band straddles a tie in about one case of 500. */
+/* Against long double arithmetic: with 64 bits its error is below 4 units in the last place, so where both ends of that
+   band round to one double, it is the nearest. The band straddles a tie in about one case of 500. */
 START_TEST(random_factors)
 {
     uint64_t s = 88172645463325252u;
@@ -176,8 +190,8 @@ START_TEST(random_factors)
         char text[64];
         int e = (int)(s >> 8 & 31) - 25;
         uint64_t m = s >> (1 + (s & 31));
-        kel__factor f = { (s >> 20 & 1) != 0 ? (int64_t)(s >> 21 & 0xFFFF) : 0, (int64_t)(s >> 37 & 0xFFFFF) + 1, (int64_t)(s >> 13 & 0x3FFF) + 1,
-                          (int)(s >> 45 & 7) - 4 };
+        kel__factor f = { (s >> 20 & 1) != 0 ? (int64_t)(s >> 21 & 0xFFFF) : 0, (int64_t)(s >> 37 & 0xFFFFF) + 1,
+                          (int64_t)(s >> 13 & 0x3FFF) + 1, (int)(s >> 45 & 7) - 4 };
         snprintf(text, sizeof text, "%llue%d", (unsigned long long)m, e);
         long double v = (long double)m;
         v = e < 0 ? v / powl(10.0L, (long double)-e) : v * powl(10.0L, (long double)e);
@@ -187,19 +201,19 @@ START_TEST(random_factors)
         double low = (double)(v * (1.0L - 4.0L * LDBL_EPSILON)), high = (double)(v * (1.0L + 4.0L * LDBL_EPSILON));
         kel_status status;
         double got = rounded(&status, text, f);
-        ck_assert_int_eq(status, KEL_OK);
+        KEL_REQUIRE(status == KEL_OK, "%s: status %d", text, status);
         if (low == high) {
             decided++;
             ck_assert_ulp_for(text, got, low, 0);
         } else
-            ck_assert_msg(got == low || got == high, "%s: got %a, expected %a or %a", text, got, low, high);
+            KEL_REQUIRE(got == low || got == high, "%s: got %a, expected %a or %a", text, got, low, high);
     }
     ck_assert_int_gt(decided, CASES * 98 / 100);
 }
 END_TEST
 
-/* Doubles through a factor and back, each way rounded once. Expected values from exact rational arithmetic on the doubles as they are:
-   293.15 is not a double, and the nearest one is 68 degF less 4e-14. */
+/* Doubles through a factor and back, each way rounded once. Expected values from exact rational arithmetic on the
+   doubles as they are: 293.15 is not a double, and the nearest one is 68 degF less 4e-14. */
 static const struct { const char *label; kel__factor f; double x, si, back; } doubles[] = {
     { "68 degF", { 45967, 5, 9, 0 }, 68.0, 0x1.2526666666666p+8, 0x1.0fffffffffffdp+6 },
     { "32 degF", { 45967, 5, 9, 0 }, 32.0, 0x1.1126666666666p+8, 0x1.ffffffffffff4p+4 },

@@ -40,7 +40,7 @@ START_TEST(lays_out_members)
                   "  \"nothing\": null,\n"
                   "  \"text\": \"NT-40\",\n"
                   "  \"none\": null,\n"
-                  "  \"x\": [1, -0, 0.0000025],\n"
+                  "  \"x\": [1, -0, 2.5e-6],\n"
                   "  \"empty\": [],\n"
                   "  \"raw\": {\"a\":1}\n"
                   "}\n");

@@ -42,10 +42,11 @@ KEL_API void kel_text_quote(kel_text *text, const char *bytes, size_t n);
 #define KEL_NUMBER_SIZE 32
 KEL_API size_t kel_number_format(char *out, double x);
 
-/* x with `digits` significant digits (1 to 17) correctly rounded, plain notation where it is short, locale-free. */
+/* x with `digits` significant digits (1 to 17) correctly rounded, trailing zeros kept, locale-free. Plain notation from 1e-4 up to
+   10^digits, at least 1e6 ("12300" where only three digits count); "0" for both zeros. out: KEL_NUMBER_SIZE bytes. */
 KEL_API size_t kel_number_format_digits(char *out, double x, int digits);
 /* x with `decimals` digits behind the point (0 to 30), correctly rounded, locale-free. out: KEL_NUMBER_FIXED_SIZE bytes;
-   |x| >= 1e22 falls back to 17 significant digits. */
+   |x| >= 1e22 falls back to 17 significant digits. What rounds to zero has no sign. */
 #define KEL_NUMBER_FIXED_SIZE 64
 KEL_API size_t kel_number_format_fixed(char *out, double x, int decimals);
 

@@ -1,0 +1,159 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* What was understood of a table, for people, before and after it is fitted. */
+#include "report.h"
+
+#include "messages.h"
+
+#include <string.h>
+
+static void
+text_columns(kel_text *out, const kel_table *t)
+{
+    const char *before = "";
+    for (size_t i = 0; i < t->column_count; i++) {
+        const kel_column *c = &t->columns[i];
+        size_t n = 0;
+        for (size_t k = 0; k < t->observation_count; k++)
+            n += t->observations[k].column == i && t->observations[k].left_out == NULL;
+        kel_text_printf(out, "%s%s", before, c->contraction ? "contraction" : kel_kind_name(c->kind));
+        if (c->unit != NULL) {
+            kel_text_add(out, " [");
+            kel_text_quote(out, c->unit, strlen(c->unit));
+            kel_text_add(out, "]");
+        }
+        add_quoted(out, " of ", c->label);
+        kel_text_printf(out, ", %zu value%s", n, n == 1 ? "" : "s");
+        before = "; ";
+    }
+}
+
+/* Lines of observations that were left out, each reason once with its lines. */
+static void
+text_left_out(kel_text *out, const kel_table *t)
+{
+    enum { MOST_LINES = 12 };
+    bool first = true;
+    for (size_t i = 0; i < t->observation_count; i++) {
+        const char *reason = t->observations[i].left_out;
+        bool seen = reason == NULL;
+        for (size_t k = 0; k < i && !seen; k++)
+            seen = t->observations[k].left_out != NULL && strcmp(t->observations[k].left_out, reason) == 0;
+        if (seen)
+            continue;
+        add_label(out, first ? "left out" : "");
+        first = false;
+        size_t n = 0, last = 0;
+        for (size_t k = i; k < t->observation_count; k++) {
+            const kel_observation *o = &t->observations[k];
+            if (o->left_out == NULL || strcmp(o->left_out, reason) != 0 || o->line == last)
+                continue;
+            last = o->line;
+            if (n < MOST_LINES)
+                kel_text_printf(out, n == 0 ? "line %zu" : ", %zu", o->line);
+            n++;
+        }
+        if (n > MOST_LINES)
+            kel_text_printf(out, " and %zu more", n - MOST_LINES);
+        add_quoted(out, ": ", reason);
+        kel_text_add(out, "\n");
+    }
+}
+
+static void
+text_stated(kel_text *out, const kel_table *t)
+{
+    size_t stated = 0, fitted = 0;
+    for (size_t i = 0; i < t->observation_count; i++)
+        if (t->observations[i].left_out == NULL) {
+            fitted++;
+            stated += t->observations[i].u_stated;
+        }
+    add_label(out, "uncertainty");
+    if (stated == 0)
+        kel_text_add(out, "none stated that is independent from row to row");
+    else if (stated == fitted)
+        kel_text_add(out, "stated for every value");
+    else
+        kel_text_printf(out, "stated for %zu of %zu values", stated, fitted);
+    for (size_t i = 0; i < t->uncertainty_count; i++)
+        add_quoted(out, i == 0 ? "; metadata: " : "; ", t->uncertainty[i]);
+    if (t->shared_count > 0)
+        kel_text_printf(out, "; %zu shared error%s", t->shared_count, t->shared_count == 1 ? "" : "s");
+    add_quoted(out, "; lot spread ", t->lot_text);
+    kel_text_add(out, "\n");
+}
+
+void
+text_table(kel_text *out, const kel_table *t, const units *in)
+{
+    add_file_name(out, t->name);
+    kel_text_add(out, "\n");
+    if (t->material != NULL || t->condition != NULL || t->direction != NULL || t->product_form != NULL) {
+        add_label(out, "material");
+        add_quoted(out, "", t->material != NULL ? t->material : "not named");
+        add_quoted(out, ", ", t->condition);
+        add_quoted(out, ", ", t->product_form);
+        add_quoted(out, ", direction ", t->direction);
+        kel_text_add(out, "\n");
+    }
+    if (t->source != NULL || t->lineage != NULL) {
+        add_label(out, "source");
+        add_quoted(out, "", t->source != NULL ? t->source : "not named");
+        add_quoted(out, ", lineage ", t->lineage);
+        kel_text_add(out, "\n");
+    }
+    add_label(out, "values");
+    text_columns(out, t);
+    kel_text_add(out, "\n");
+    add_label(out, "rows");
+    kel_text_printf(out, "%zu", t->rows);
+    if (t->rows_left_out > 0)
+        kel_text_printf(out, ", %zu left out", t->rows_left_out);
+    if (t->empty_cells > 0)
+        kel_text_printf(out, ", %zu cell%s without a value", t->empty_cells, t->empty_cells == 1 ? "" : "s");
+    if (t->marked_cells > 0)
+        kel_text_printf(out, ", %zu with a status mark", t->marked_cells);
+    if (t->transposed)
+        kel_text_add(out, ", temperatures across the top");
+    kel_text_add(out, "\n");
+    text_left_out(out, t);
+    add_label(out, "reference temperature");
+    if (isnan(t->reference_temperature))
+        kel_text_add(out, "none stated");
+    else
+        add_temperature(out, &in->temperature, t->reference_temperature);
+    if (t->reference_printed != NULL && !isnan(t->reference_temperature))
+        add_quoted(out, ", printed as ", t->reference_printed);
+    kel_text_printf(out, "; base %s%s\n", kel_base_name(t->base), t->base_stated ? "" : " (not stated)");
+    if (t->shift != 0) {
+        add_label(out, "shifted by");
+        add_digits(out, 1e6 * t->shift, 6);
+        kel_text_add(out, "e-6, so that the expansion is 0 at its reference\n");
+    }
+    if (t->scale != NULL || t->branch != NULL) {
+        add_label(out, "scale, branch");
+        add_quoted(out, "", t->scale != NULL ? t->scale : "ITS-90");
+        add_quoted(out, ", ", t->branch);
+        kel_text_add(out, "\n");
+    }
+    if (!isnan(t->range.lo)) {
+        add_label(out, "range");
+        add_interval(out, &in->temperature, t->range.lo, t->range.hi);
+        for (size_t i = 0; i < t->gap_count; i++) {
+            kel_text_add(out, i == 0 ? "; gap " : ", ");
+            add_interval(out, &in->temperature, t->gaps[i].lo, t->gaps[i].hi);
+        }
+        kel_text_add(out, "\n");
+    }
+    for (size_t i = 0; i < t->transition_count; i++) {
+        add_label(out, i == 0 ? "transition" : "");
+        add_quoted(out, "", t->transitions[i].text);
+        kel_text_add(out, "\n");
+    }
+    text_stated(out, t);
+    for (size_t i = 0; i < t->note_count; i++) {
+        add_label(out, i == 0 ? "note" : "");
+        add_quoted(out, "", t->notes[i]);
+        kel_text_add(out, "\n");
+    }
+}
