@@ -15,14 +15,19 @@ cp "$2"/datasets/*.csv "$3"
 kelspan=$(cd "$(dirname "$1")" && pwd)/$(basename "$1")
 cd "$3"
 folder=$(pwd)
-rm -f spacer.json bush.json cold-plate.json mirror.json
+rm -f spacer.json bush.json cold-plate.json latch.json mirror.json
 
-say() { printf '\n%s\n' "$*" | fold -s -w 100; }
+say() { printf '\n%s\n' "$*" | fold -s -w 100 | sed 's/ *$//'; }
 
-# One command as typed, with its answer. Stops unless the exit status is the one that belongs to the story.
+# One command as typed, with its answer. Stops unless the exit status is the one that belongs to the story. What goes to
+# stdout is put into a file if one is named.
 kel_for() {
-    expected=$1
+    expected=$1 file=
     shift
+    if test "$1" = into; then
+        file=$2
+        shift 2
+    fi
     printf '\n    $ kelspan'
     for word in "$@"; do
         case $word in
@@ -30,9 +35,14 @@ kel_for() {
         *) printf ' %s' "$word" ;;
         esac
     done
-    printf '\n\n'
+    printf '%s\n' "${file:+ >$file}"
     status=0
-    "$kelspan" "$@" 2>&1 || status=$?
+    if test -n "$file"; then
+        "$kelspan" "$@" >"$file" || status=$?
+    else
+        echo
+        "$kelspan" "$@" 2>&1 || status=$?
+    fi
     if test "$status" -ne "$expected"; then
         echo "demo: kelspan $1 ended with status $status instead of $expected" >&2
         exit 1
@@ -48,9 +58,8 @@ fitted before it is clear what was understood:"
 kel read stock-list.csv --series 'NT-40 lot 3'
 
 say "2. THE SPACER has a clean table of coefficients with their uncertainty. The fit chooses its degree, says how well it \
-fits and from where to where it is valid; -o keeps the record that everything below is answered from:"
+fits, row by row, and from where to where it is valid; -o keeps the record that everything below is answered from:"
 kel fit spacer.csv -o spacer.json
-kel residuals spacer.json
 
 say "3. HOW MUCH DOES A SPACER OF 250 mm SHRINK? The integral of the fitted curve between any two temperatures, with its \
 standard uncertainty from the full covariance of the fit:"
@@ -68,15 +77,16 @@ kel_for 1 integrate spacer.json --from 293K --to 4K --length 250mm --within-rang
 
 say "6. DOES THE BUSH STAY IN THE PLATE? The bush was measured as an expansion in %, the plate as mean coefficients from \
 20 degC; both become curves of the same kind. A seat of 40 mm in each, cooled to 77 K:"
-kel fit bush.csv -o bush.json
+kel into bush.txt fit bush.csv -o bush.json
 kel integrate bush.json --from 20degC --to 77K --length 40mm
-kel fit cold-plate.csv -o cold-plate.json
+kel into cold-plate.txt fit cold-plate.csv -o cold-plate.json
 kel integrate cold-plate.json --from 20degC --to 77K --length 40mm
 say "The plate shrinks more than the bush: its bore closes upon it, and the fit gets tighter by the difference of the two changes."
 
-say "7. THE LATCH changes its structure at -35 degC and its length steps there. The step is declared in the table, fitted with the \
-rest, and an integral across it says that it was crossed:"
-kel fit latch.csv -o latch.json
+say "7. THE LATCH changes its structure at -35 degC and its length steps there. The step is declared in the table and fitted \
+with the rest. The residuals on both sides of it show no trace of a step, and an integral across it says that it was crossed:"
+kel into latch.txt fit latch.csv -o latch.json
+kel residuals latch.json
 kel_for 3 integrate latch.json --from 20degC --to 77K --length 30mm
 
 say "8. THE MIRROR comes with published coefficients instead of a table. They are adopted as they are, with the uncertainty that \
@@ -84,4 +94,4 @@ was stated for them:"
 kel adopt mirror.csv -o mirror.json
 kel integrate mirror.json --from 293K --to 77K --length 120mm
 
-say "Records and tables of this story are in $folder."
+say "Tables, records and reports of this story are in $folder."

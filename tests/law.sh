@@ -161,7 +161,7 @@ forbid '(^|[^A-Za-z0-9_.>])(getenv|secure_getenv|setenv|putenv|setlocale|system|
 verdict "libraries look at no environment and change no state of the process"
 forbid '^[[:space:]]*static[[:space:]]+[^(=;]*(=[^=]|;)'
 # No state: what is const itself, a pointer that is const, a table of a const struct. A declared function has a bracket first.
-sed -E -i '/:[[:space:]]*static[[:space:]]+const[[:space:]][^*]*$|\*[[:space:]]*const[[:space:]]|static[[:space:]]+const[[:space:]]+struct/d' "$offences"
+sed -E -i '/:[[:space:]]*static[[:space:]]+const[[:space:]][^*=]*(=|;)|\*[[:space:]]*const[[:space:]]|static[[:space:]]+const[[:space:]]+struct/d' "$offences"
 verdict "libraries hold no static mutable state"
 
 # Numbers through printf follow the locale.

@@ -43,7 +43,8 @@ kel__check_number(kel__checker *checker, kel__place place, double x, kel__rule r
         return;
     kel_number_format(got, x);
     kel_error_set(&what, KEL_OK, 0, 0, "= %s %s", got, isfinite(x) ? "must not be negative" : "must be a finite number");
-    kel__breach(checker, place, what.message);
+    /* NaN is how null was read. */
+    kel__breach(checker, place, isnan(x) ? "must be a finite number" : what.message);
 }
 
 void

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Blanks. Text copied out of documents brings the no-break space U+00A0 (C2 A0), the thin space U+2009 (E2 80 89) and the narrow
-   no-break space U+202F (E2 80 AF) where a keyboard gives 20; none of them may become part of a number or a name. */
+/* Blanks. Text copied out of documents brings the no-break space U+00A0 (C2 A0), the thin space U+2009 (E2 80 89) and
+   the narrow no-break space U+202F (E2 80 AF) where a keyboard gives 20; none of them may become part of a number or
+   a name. */
 #include "blanks.h"
 
 #include <string.h>

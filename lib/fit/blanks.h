@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What counts as a blank in tables and metadata: space, tab, and the spaces that documents put between columns and digits. */
+/* What counts as a blank in tables and metadata: space, tab, and the spaces that documents put between columns and
+   digits. */
 #ifndef KELSPAN_BLANKS_H
 #define KELSPAN_BLANKS_H
 
@@ -12,7 +13,8 @@ size_t kel__blank(const char *p, const char *end);
 /* Moves *p and *n so that blanks at both ends are left out. */
 void kel__trim(const char **p, size_t *n);
 
-/* Are the texts equal when trimmed, with each run of blanks as one and the case of ASCII letters folded? "Product  Form" = "product form". */
+/* Are the texts equal when trimmed, with each run of blanks as one and the case of ASCII letters folded? "Product
+   Form" = "product form". */
 bool kel__same_words(const char *a, size_t n, const char *b, size_t m);
 bool kel__is_word(const char *p, size_t n, const char *word);
 

@@ -1,12 +1,15 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* A line split into cells. The comma-separated forms are split by libcsv in strict mode, which gets one physical line at a time
-   and is told that it is the last one: so a quote left open is found on its own line, and cells cannot run over lines. libcsv does
-   not say where a cell stood; a second, cheaper scan of the same line keeps step with it and finds the column of each cell.
+/* A line split into cells. The comma-separated forms are split by libcsv in strict mode, which gets one physical line
+   at a time and is told that it is the last one: so a quote left open is found on its own line, and cells cannot run
+   over lines. libcsv does not say where a cell stood; a second, cheaper scan of the same line keeps step with it and
+   finds the column of each cell.
 
-   An unquoted cell points into the line; a quoted one is copied, because doubled quotes in it stand for one. Its column is that of
-   the first byte behind the quote, and is too small by the number of doubled quotes before it for a byte further in.
+   An unquoted cell points into the line; a quoted one is copied, because doubled quotes in it stand for one. Its
+   column is that of the first byte behind the quote, and is too small by the number of doubled quotes before it for a
+   byte further in.
 
-   Blanks as delimiter (a table copied out of a document) are split here: libcsv knows delimiters of one byte, not runs. */
+   Blanks as delimiter (a table copied out of a document) are split here: libcsv knows delimiters of one byte, not
+   runs. */
 #include "cells.h"
 
 #include "blanks.h"
@@ -27,7 +30,8 @@ struct kel__cells {
     size_t number;             /* of the line */
 };
 
-static const char marks[] = { [KEL_DELIMITER_COMMA] = ',', [KEL_DELIMITER_SEMICOLON] = ';', [KEL_DELIMITER_TAB] = '\t' };
+static const char marks[] = { [KEL_DELIMITER_COMMA] = ',', [KEL_DELIMITER_SEMICOLON] = ';',
+                              [KEL_DELIMITER_TAB] = '\t' };
 
 static size_t
 column_of(const kel__cells *cells, const char *p)
@@ -104,14 +108,16 @@ no_memory(const kel__cells *cells, kel_error *err)
 static kel_status
 open_quote(const kel__cells *cells, const char *quote, kel_error *err)
 {
-    return kel_error_set(err, KEL_E_SYNTAX, cells->number, column_of(cells, quote), "the quote is not closed on its line");
+    return kel_error_set(err, KEL_E_SYNTAX, cells->number, column_of(cells, quote),
+                         "the quote is not closed on its line");
 }
 
 static kel_status
 stray(const kel__cells *cells, const char *at, bool quoted, kel_error *err)
 {
     return kel_error_set(err, KEL_E_SYNTAX, cells->number, column_of(cells, at),
-                         quoted ? "text behind the closing quote of a cell (a quote inside a quoted cell is written twice)"
+                         quoted ? "text behind the closing quote of a cell (a quote inside a quoted cell is written "
+                                  "twice)"
                                 : "a quote inside a cell that does not start with one");
 }
 
@@ -125,7 +131,8 @@ split_delimited(kel__cells *cells, kel_error *err)
     csv_set_delim(&cells->parser, (unsigned char)cells->mark);
     csv_set_blk_size(&cells->parser, 4096);
     size_t done = csv_parse(&cells->parser, cells->line, n, take_cell, NULL, cells);
-    int failed = done < n || csv_fini(&cells->parser, take_cell, NULL, cells) != 0 ? csv_error(&cells->parser) : CSV_SUCCESS;
+    int failed = done < n || csv_fini(&cells->parser, take_cell, NULL, cells) != 0 ? csv_error(&cells->parser)
+        : CSV_SUCCESS;
     if (cells->no_memory || (failed != CSV_SUCCESS && failed != CSV_EPARSE))
         return no_memory(cells, err);
     if (failed == CSV_EPARSE) {

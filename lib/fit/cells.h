@@ -12,8 +12,8 @@ typedef struct kel__cells kel__cells;
 kel__cells *kel__cells_new(void);
 void kel__cells_free(kel__cells *cells);
 
-/* The cells of line[n], which is line `number` of its file; they are valid until the next call and as long as the line. The delimiter
-   must be a known one, and the same in every call. */
+/* The cells of line[n], which is line `number` of its file; they are valid until the next call and as long as the
+   line. The delimiter must be a known one, and the same in every call. */
 kel_status kel__cells_split(const kel_cell **out, size_t *count, kel__cells *cells, kel_delimiter delimiter,
                             const char *line, size_t n, size_t number, kel_error *err);
 

@@ -4,8 +4,9 @@
        size [option]...    size:   A %  |  B [UNIT]  |  A % + B [UNIT]          (two parts add in quadrature)
                            option: k=NUMBER | limits | from T to T | shared | independent
 
-   The result is standard (k = 1): an expanded uncertainty is divided by its k, limits are the half-width of a rectangle and divided by
-   sqrt 3 (JCGM 100:2008, 4.3.7). Options may stand in any order behind the size, each once. */
+   The result is standard (k = 1): an expanded uncertainty is divided by its k, limits are the half-width of a
+   rectangle and divided by sqrt 3 (JCGM 100:2008, 4.3.7). Options may stand in any order behind the size, each once.
+   */
 #include "clause.h"
 
 #include <math.h>
@@ -18,7 +19,8 @@ enum { HAS_FACTOR = 1, HAS_RANGE = 2, HAS_SORT = 4 };
 static kel_status
 fail_at(const kel__phrase *phrase, const char *p, kel_status code, const char *message, kel_error *err)
 {
-    return kel_error_set(err, code, phrase->line, phrase->line == 0 ? 0 : phrase->column + (size_t)(p - phrase->start), "%s", message);
+    return kel_error_set(err, code, phrase->line, phrase->line == 0 ? 0
+                         : phrase->column + (size_t)(p - phrase->start), "%s", message);
 }
 
 /* A number above zero; `begin` is where it stood. */
@@ -53,7 +55,8 @@ absolute_part(kel__clause *out, kel__phrase *phrase, kel_error *err)
     if (kel_unit_parse_any(&unit, name.p, name.n, &inner) != KEL_OK)
         return kel__error_at(err, &inner, phrase->line, phrase->column + (size_t)(name.p - phrase->start));
     if (unit.dimension != KEL_DIM_PER_KELVIN && unit.dimension != KEL_DIM_ONE)
-        return fail_at(phrase, name.p, KEL_E_UNIT, "an uncertainty is in a unit of coefficients (1e-6/K) or of expansion (1e-5, %)", err);
+        return fail_at(phrase, name.p, KEL_E_UNIT, "an uncertainty is in a unit of coefficients (1e-6/K) or of "
+                                                   "expansion (1e-5, %)", err);
     if ((status = kel__phrase_number(&out->absolute, phrase, &unit, "a number", err)) != KEL_OK)
         return status;
     out->dimension = unit.dimension;
@@ -118,14 +121,17 @@ option(kel__clause *out, double *factor, unsigned *has, bool lot, kel__phrase *p
         *has |= HAS_RANGE;
     } else if (kel__phrase_take(phrase, "shared") || kel__phrase_take(phrase, "independent")) {
         if (lot)
-            return fail_at(phrase, word, KEL_E_SYNTAX, "a lot spread is neither shared nor independent: leave the word out", err);
+            return fail_at(phrase, word, KEL_E_SYNTAX, "a lot spread is neither shared nor independent: leave the "
+                                                       "word out", err);
         out->independent = *word == 'i' || *word == 'I';
         *has |= HAS_SORT;
     } else {
-        return kel__phrase_expected(phrase, lot ? "k=2, limits, or from T to T" : "k=2, limits, from T to T, shared or independent", err);
+        return kel__phrase_expected(phrase, lot ? "k=2, limits, or from T to T"
+                                    : "k=2, limits, from T to T, shared or independent", err);
     }
     if (status == KEL_OK && *has == had)
-        status = fail_at(phrase, word, KEL_E_SYNTAX, "a second word of the same sort (one of k=2 and limits, one of shared and independent, "
+        status = fail_at(phrase, word, KEL_E_SYNTAX, "a second word of the same sort (one of k=2 and limits, one of "
+                                                     "shared and independent, "
                          "one range)", err);
     return status;
 }
@@ -133,7 +139,8 @@ option(kel__clause *out, double *factor, unsigned *has, bool lot, kel__phrase *p
 kel_status
 kel__clause_parse(kel__clause *out, const kel__entry *entry, bool lot, bool comma, kel_error *err)
 {
-    *out = (kel__clause){ .lo = -INFINITY, .hi = INFINITY, .text = entry->value, .line = entry->line, .column = entry->column,
+    *out = (kel__clause){ .lo = -INFINITY, .hi = INFINITY, .text = entry->value, .line = entry->line,
+                          .column = entry->column,
                           .dimension = KEL_DIM_PER_KELVIN };
     kel__phrase phrase = kel__phrase_of(entry->value, strlen(entry->value), comma, entry->line, entry->column);
     double factor = 1;
@@ -162,7 +169,8 @@ kel__transition_parse(kel_declared_transition *out, const kel__entry *entry, boo
     out->step = KEL_STEP_STATED;
     before = phrase;
     const char *begin = phrase.p;
-    if ((status = kel__phrase_number(&out->length, &phrase, NULL, "the step of the length, L/L0, for example -8.4e-6", err)) != KEL_OK)
+    if ((status = kel__phrase_number(&out->length, &phrase, NULL, "the step of the length, L/L0, for example -8.4e-6",
+                                     err)) != KEL_OK)
         return status;
     if (kel__phrase_left(&phrase)) {
         kel__word name;

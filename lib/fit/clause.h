@@ -5,7 +5,8 @@
 
 #include "metadata.h"
 
-/* `uncertainty:` (and `lot spread:`, where `shared` and `independent` have no place). entry->value must outlive the clause. */
+/* `uncertainty:` (and `lot spread:`, where `shared` and `independent` have no place). entry->value must outlive the
+   clause. */
 kel_status kel__clause_parse(kel__clause *out, const kel__entry *entry, bool lot, bool comma, kel_error *err);
 
 /* `transition:` T | T step | T step VALUE | T step VALUE [UNIT]. */

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* From a published polynomial to a record. alpha is what is printed, or the derivative of a printed expansion. Declared transitions and the ends
-   of ranges of uncertainty cut pieces in two: each part carries the same polynomial, rewritten on its own interval. */
+/* From a published polynomial to a record. alpha is what is printed, or the derivative of a printed expansion.
+   Declared transitions and the ends of ranges of uncertainty cut pieces in two: each part carries the same
+   polynomial, rewritten on its own interval. */
 #include <float.h>
 #include <math.h>
 #include <stdlib.h>
@@ -30,7 +31,8 @@ by_number(const void *a, const void *b)
 
 /* Ends of pieces and cuts between them, sorted; each stretch between two neighbours lies in one published piece. */
 static kel_status
-cut(part **out, size_t *count, const kel__published *p, const kel_declared_transition *transitions, size_t transition_count, kel_error *err)
+cut(part **out, size_t *count, const kel__published *p, const kel_declared_transition *transitions,
+    size_t transition_count, kel_error *err)
 {
     size_t clauses = p->metadata.uncertainty_count + p->metadata.lot_count, n = 0;
     double *at = kel_arena_take(p->arena, p->piece_count + 1 + transition_count + 2 * clauses, sizeof *at);
@@ -72,14 +74,15 @@ check_size(const kel__published *p, const kel__published_piece *piece, kel_error
         char value[KEL_NUMBER_SIZE], at[KEL_NUMBER_SIZE];
         kel__number_short(value, alpha);
         kel__number_short(at, t);
-        return kel_error_set(err, KEL_E_DATA, piece->line, piece->column, "the coefficient would be %s 1/K at %s K, beyond 0.001 1/K: check the unit "
+        return kel_error_set(err, KEL_E_DATA, piece->line, piece->column,
+                             "the coefficient would be %s 1/K at %s K, beyond 0.001 1/K: check the unit "
                              "[%s] of `curve` and the unit and scale of `variable`", value, at, p->unit.name);
     }
     return KEL_OK;
 }
 
-/* How many derivatives of alpha agree where two parts meet, to the rounding of their terms: -1 none, 0 the value, 1 the slope, 2 the
-   curvature. Two parts of one polynomial agree in all. */
+/* How many derivatives of alpha agree where two parts meet, to the rounding of their terms: -1 none, 0 the value, 1
+   the slope, 2 the curvature. Two parts of one polynomial agree in all. */
 static int
 continuity(const kel__published *p, const part *below, const part *above, kel__twofold *work)
 {
@@ -115,7 +118,8 @@ fill_pieces(kel_content *content, const kel__published *p, const part *parts, si
     size_t first = 0;
     for (size_t i = 0; i < count; i++) {
         const kel__published_piece *origin = parts[i].origin;
-        kel__poly_chebyshev(coefficients + first, origin->c, origin->count, &p->variable, parts[i].from, parts[i].to, work);
+        kel__poly_chebyshev(coefficients + first, origin->c, origin->count, &p->variable, parts[i].from, parts[i].to,
+                            work);
         pieces[i] = (kel_piece){ parts[i].from, parts[i].to, first, origin->count };
         first += origin->count;
         if (i == 0)
@@ -136,7 +140,8 @@ fill_pieces(kel_content *content, const kel__published *p, const part *parts, si
 }
 
 static kel_status
-fill_transitions(kel_content *content, const kel__published *p, const kel_declared_transition *list, size_t count, kel_error *err)
+fill_transitions(kel_content *content, const kel__published *p, const kel_declared_transition *list, size_t count,
+                 kel_error *err)
 {
     kel_transition *transitions = kel_arena_take(p->arena, count, sizeof *transitions);
     double *steps = kel_arena_take(p->arena, count, sizeof *steps);
@@ -159,9 +164,11 @@ check_expansion(const kel__published *p, kel_error *err)
     const kel__entry *curve = p->metadata.curve;
     size_t column = curve->line == 0 ? 0 : curve->column;
     if (isnan(p->metadata.reference_temperature))
-        return kel_error_set(err, KEL_E_DATA, curve->line, column, "an expansion curve needs a line '# reference temperature: ...', for example 293.15 K");
+        return kel_error_set(err, KEL_E_DATA, curve->line, column, "an expansion curve needs a line '# reference "
+                                                                   "temperature: ...', for example 293.15 K");
     if (p->metadata.base_stated && p->metadata.base == KEL_BASE_CURRENT)
-        return kel_error_set(err, KEL_E_DATA, curve->line, column, "an expansion curve counts from the length at its reference: the base `current length` "
+        return kel_error_set(err, KEL_E_DATA, curve->line, column, "an expansion curve counts from the length at its "
+                                                                   "reference: the base `current length` "
                              "belongs to coefficients");
     return KEL_OK;
 }
@@ -171,8 +178,10 @@ source_of(const kel__published *p)
 {
     const kel__metadata *m = &p->metadata;
     return (kel_source){
-        .name = p->name, .digest = p->digest, .material = m->material, .condition = m->condition, .direction = m->direction,
-        .product_form = m->product_form, .source = m->source, .lineage = m->lineage, .scale = m->scale, .branch = m->branch,
+        .name = p->name, .digest = p->digest, .material = m->material, .condition = m->condition,
+            .direction = m->direction,
+        .product_form = m->product_form, .source = m->source, .lineage = m->lineage, .scale = m->scale,
+            .branch = m->branch,
         .reference_temperature = m->reference_temperature, .base = m->base, .rows = p->piece_count,
         .notes = m->notes, .note_count = m->note_count,
     };
@@ -187,7 +196,8 @@ kel__published_curve(kel_record **out, kel__adopt_warnings *warnings, kel__publi
     size_t transition_count, count = 0;
     part *parts = NULL;
     kel_status status = published->kind == KEL_KIND_EXPANSION ? check_expansion(published, err) : KEL_OK;
-    if (status != KEL_OK || (status = kel__published_steps(&transitions, &transition_count, warnings, published, err)) != KEL_OK)
+    if (status != KEL_OK || (status = kel__published_steps(&transitions, &transition_count, warnings, published,
+                                                           err)) != KEL_OK)
         return status;
     for (size_t i = 0; i < published->piece_count; i++) {
         kel__published_piece *piece = &published->pieces[i];
@@ -207,7 +217,8 @@ kel__published_curve(kel_record **out, kel__adopt_warnings *warnings, kel__publi
     kel_content content = {
         .form = "adopted", .base = m->base, .reference_temperature = defaulted ? 293.15 : m->reference_temperature,
         .reference_defaulted = defaulted, .parameters = published->numbers, .degrees_of_freedom = NAN,
-        .residual_standard_deviation = NAN, .chi2 = NAN, .sources = &source, .source_count = 1, .lot_spread = m->lot_text,
+        .residual_standard_deviation = NAN, .chi2 = NAN, .sources = &source, .source_count = 1,
+            .lot_spread = m->lot_text,
     };
     if ((status = cut(&parts, &count, published, transitions, transition_count, err)) != KEL_OK ||
         (status = fill_transitions(&content, published, transitions, transition_count, err)) != KEL_OK ||

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* A record's alpha as a coefficient file: powers of T in a unit of choice, ends of pieces and transitions in kelvin, so that they read back as
-   the same doubles. Of the uncertainty, the file can carry what was stated for the whole curve; the scatter and the shared errors of a fit are
-   several curves of their own and stay behind, which a note says. */
+/* A record's alpha as a coefficient file: powers of T in a unit of choice, ends of pieces and transitions in kelvin,
+   so that they read back as the same doubles. Of the uncertainty, the file can carry what was stated for the whole
+   curve; the scatter and the shared errors of a fit are several curves of their own and stay behind, which a note
+   says. */
 #include <string.h>
 
 #include "clause.h"
@@ -56,7 +57,8 @@ add_field(kel_text *out, const kel_content *content, const struct field *field)
     kel_text_free(&joined);
 }
 
-/* A clause as it was printed, with decimal points; false if a coefficient file cannot state it. The grammar has no other commas. */
+/* A clause as it was printed, with decimal points; false if a coefficient file cannot state it. The grammar has no
+   other commas. */
 static bool
 add_clause(kel_text *out, const char *key, const char *printed, size_t n, bool lot)
 {
@@ -85,6 +87,7 @@ add_lot(kel_text *out, const char *printed)
 {
     bool carried = true;
     while (*printed != '\0') {
+        printed += strspn(printed, " ");
         size_t n = strcspn(printed, ";");
         carried = add_clause(out, "lot spread", printed, n, true) && carried;
         printed += n + (printed[n] == ';');
@@ -102,12 +105,14 @@ add_uncertainty(kel_text *out, const kel_content *content)
     if (adopted) {
         const kel_source *source = &content->sources[0];
         for (size_t i = 0; i < source->uncertainty_count; i++)
-            carried = add_clause(out, "uncertainty", source->uncertainty[i], strlen(source->uncertainty[i]), false) && carried;
+            carried = add_clause(out, "uncertainty", source->uncertainty[i], strlen(source->uncertainty[i]), false) &&
+                carried;
     }
     if (content->lot_spread != NULL)
         carried = add_lot(out, content->lot_spread) && carried;
     if (!carried)
-        add_line(out, "note", "the record knows an uncertainty (scatter of the fit, errors shared by rows) that this file cannot carry");
+        add_line(out, "note", "the record knows an uncertainty (scatter of the fit, errors shared by rows) that this "
+                              "file cannot carry");
 }
 
 static void
@@ -147,7 +152,8 @@ add_pieces(kel_text *out, const kel_record *record, const kel_unit *temperature,
     for (size_t i = 0; i < content->piece_count; i++)
         powers = content->pieces[i].count > powers ? content->pieces[i].count : powers;
     if (powers > KEL__LARGEST_POWER + 1)
-        return kel_error_set(err, KEL_E_DATA, 0, 0, "a piece of %zu coefficients; a coefficient file has at most %d", powers, KEL__LARGEST_POWER + 1);
+        return kel_error_set(err, KEL_E_DATA, 0, 0, "a piece of %zu coefficients; a coefficient file has at most %d",
+                             powers, KEL__LARGEST_POWER + 1);
     kel_text_add(out, "from [K],to [K]");
     for (size_t k = 0; k < powers; k++)
         kel_text_printf(out, ",power %zu", k);
@@ -172,11 +178,14 @@ add_pieces(kel_text *out, const kel_record *record, const kel_unit *temperature,
 }
 
 kel_status
-kel_coefficients_format(kel_text *out, const kel_record *record, const kel_unit *temperature, const kel_unit *value, kel_error *err)
+kel_coefficients_format(kel_text *out, const kel_record *record, const kel_unit *temperature, const kel_unit *value,
+                        kel_error *err)
 {
-    if (out == NULL || record == NULL || temperature == NULL || value == NULL || temperature->dimension != KEL_DIM_TEMPERATURE ||
+    if (out == NULL || record == NULL || temperature == NULL || value == NULL ||
+        temperature->dimension != KEL_DIM_TEMPERATURE ||
         value->dimension != KEL_DIM_PER_KELVIN)
-        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "coefficients are written from a record, in a unit of temperature and one of coefficients");
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "coefficients are written from a record, in a unit of "
+                                                        "temperature and one of coefficients");
     add_head(out, kel_record_content(record), temperature, value);
     kel_status status = add_pieces(out, record, temperature, value, err);
     if (status == KEL_OK && out->failed)

@@ -9,7 +9,8 @@
 static kel_status
 missing(const kel__published *out, const char *what, kel_error *err)
 {
-    return kel_error_set(err, KEL_E_DATA, out->header_line, 1, "a coefficient file needs a line '# %s' before its pieces", what);
+    return kel_error_set(err, KEL_E_DATA, out->header_line, 1, "a coefficient file needs a line '# %s' before its "
+                                                               "pieces", what);
 }
 
 /* NAME [UNIT] behind words that were read. */
@@ -19,8 +20,10 @@ unit_behind(kel_unit *unit, kel_dimension dimension, kel__phrase *phrase, kel_er
     kel__word name;
     kel_error inner;
     if (!kel__phrase_left(phrase))
-        return kel_error_set(err, KEL_E_UNIT, phrase->line, phrase->column, "a unit in brackets is missing, for example %s",
-                             dimension == KEL_DIM_TEMPERATURE ? "[K]" : dimension == KEL_DIM_ONE ? "[1e-5]" : "[1e-6/K]");
+        return kel_error_set(err, KEL_E_UNIT, phrase->line, phrase->column,
+                             "a unit in brackets is missing, for example %s",
+                             dimension == KEL_DIM_TEMPERATURE ? "[K]" : dimension == KEL_DIM_ONE ? "[1e-5]"
+                                 : "[1e-6/K]");
     kel_status status = kel__phrase_bracket(&name, phrase, err);
     if (status != KEL_OK)
         return status;
@@ -68,7 +71,8 @@ kel__published_variable(kel__published *out, kel_error *err)
     if (status == KEL_OK && s != NULL) {
         status = kel__two_read(&scale, NULL, s->value, strlen(s->value), m->decimal_comma, s->line, s->column, err);
         if (status == KEL_OK && !(scale.hi > 0))
-            status = kel_error_set(err, KEL_E_RANGE, s->line, s->line == 0 ? 0 : s->column, "the variable's scale must be above zero");
+            status = kel_error_set(err, KEL_E_RANGE, s->line, s->line == 0 ? 0 : s->column,
+                                   "the variable's scale must be above zero");
     }
     out->variable = (kel__variable){ kel__two_in_unit(centre, &unit), kel__two_mul(scale, kel__two_unit(&unit)) };
     return status;
@@ -84,7 +88,8 @@ header_power(kel__layout *layout, size_t column, kel__phrase *phrase, const kel_
     if (kel__phrase_left(phrase))
         return kel__phrase_expected(phrase, "nothing behind the power's number (the unit stands in `curve`)", err);
     if (!(power >= 0 && power <= KEL__LARGEST_POWER) || power != floor(power))
-        return kel_error_set(err, KEL_E_DATA, line, cell->column, "a power is a whole number from 0 to %d", KEL__LARGEST_POWER);
+        return kel_error_set(err, KEL_E_DATA, line, cell->column, "a power is a whole number from 0 to %d",
+                             KEL__LARGEST_POWER);
     size_t k = (size_t)power;
     if (layout->power[k] != SIZE_MAX)
         return kel_error_set(err, KEL_E_DATA, line, cell->column, "a second column 'power %zu'", k);
@@ -94,7 +99,8 @@ header_power(kel__layout *layout, size_t column, kel__phrase *phrase, const kel_
 }
 
 static kel_status
-header_bound(size_t *column, kel_unit *unit, size_t i, kel__phrase *phrase, const kel_cell *cell, size_t line, kel_error *err)
+header_bound(size_t *column, kel_unit *unit, size_t i, kel__phrase *phrase, const kel_cell *cell, size_t line,
+             kel_error *err)
 {
     if (*column != SIZE_MAX)
         return kel_error_set(err, KEL_E_DATA, line, cell->column, "a second column of the same name");
@@ -128,6 +134,7 @@ kel__published_header(kel__layout *layout, const kel__sheet_row *header, kel_err
         return kel_error_set(err, KEL_E_DATA, header->line, 1, "the header needs the columns 'from [K]' and 'to [K]'");
     for (size_t k = 0; k < layout->powers || k == 0; k++)
         if (layout->power[k] == SIZE_MAX)
-            return kel_error_set(err, KEL_E_DATA, header->line, 1, "the header lacks 'power %zu' (a power that is not used is a column of 0)", k);
+            return kel_error_set(err, KEL_E_DATA, header->line, 1, "the header lacks 'power %zu' (a power that is "
+                                                                   "not used is a column of 0)", k);
     return KEL_OK;
 }

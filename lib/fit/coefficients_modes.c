@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The stated uncertainty of published coefficients as modes. A percentage is one error common to the whole curve, its size stated by range:
-   m(T) = r(T) alpha(T), and r times the steps; an absolute part is m(T) = s(T), a constant by range. Each is a single mode, because ranges
-   state the size of one error, not several errors. Lot spread likewise, marked as such. Where no range reaches, a mode is zero: that
-   stretch has nothing stated, and it is said. */
+/* The stated uncertainty of published coefficients as modes. A percentage is one error common to the whole curve, its
+   size stated by range: m(T) = r(T) alpha(T), and r times the steps; an absolute part is m(T) = s(T), a constant by
+   range. Each is a single mode, because ranges state the size of one error, not several errors. Lot spread likewise,
+   marked as such. Where no range reaches, a mode is zero: that stretch has nothing stated, and it is said. */
 #include <math.h>
 #include <string.h>
 
@@ -36,10 +36,12 @@ check_clause(const kel__clause *c, kel_error *err)
 {
     size_t column = c->line == 0 ? 0 : c->column;
     if (c->independent)
-        return kel_error_set(err, KEL_E_DATA, c->line, column, "coefficients have no rows that could err independently: leave the word "
+        return kel_error_set(err, KEL_E_DATA, c->line, column, "coefficients have no rows that could err "
+                                                               "independently: leave the word "
                              "`independent` out, the error is shared by the whole curve");
     if (c->absolute > 0 && c->dimension != KEL_DIM_PER_KELVIN)
-        return kel_error_set(err, KEL_E_UNIT, c->line, column, "an absolute uncertainty of coefficients is stated in 1/K, for example "
+        return kel_error_set(err, KEL_E_UNIT, c->line, column, "an absolute uncertainty of coefficients is stated in "
+                                                               "1/K, for example "
                              "0.1 [1e-6/K], not in a unit of expansion");
     return KEL_OK;
 }
@@ -85,7 +87,8 @@ label_of(const kel__published *p, const kel__clause *clauses, size_t count, bool
 }
 
 static kel_status
-add_mode(kel_mode *modes, size_t *n, const kel_content *content, const kel__published *p, const kel__clause *clauses, size_t count,
+add_mode(kel_mode *modes, size_t *n, const kel_content *content, const kel__published *p, const kel__clause *clauses,
+         size_t count,
          bool relative, bool lot, kel_error *err)
 {
     bool any = false;
@@ -120,7 +123,8 @@ add_mode(kel_mode *modes, size_t *n, const kel_content *content, const kel__publ
 static kel_status
 unreached(const kel__clause *c, kel_error *err)
 {
-    return kel_error_set(err, KEL_E_DATA, c->line, c->line == 0 ? 0 : c->column, "the range of this uncertainty lies outside the pieces");
+    return kel_error_set(err, KEL_E_DATA, c->line, c->line == 0 ? 0 : c->column,
+                         "the range of this uncertainty lies outside the pieces");
 }
 
 /* A piece for whose temperatures nothing is stated while other pieces have something. */
@@ -131,7 +135,9 @@ note_unstated(kel__adopt_warnings *warnings, const kel_content *content, const k
     for (size_t i = 0; i < content->piece_count; i++) {
         const kel_piece *piece = &content->pieces[i];
         double middle = piece->from + (piece->to - piece->from) / 2;
-        if (size_at(m->uncertainty, m->uncertainty_count, true, middle) > 0 || size_at(m->uncertainty, m->uncertainty_count, false, middle) > 0)
+        if (size_at(m->uncertainty, m->uncertainty_count, true, middle) > 0 || size_at(m->uncertainty,
+                                                                                       m->uncertainty_count, false,
+                                                                                       middle) > 0)
             continue;
         kel_text text = KEL_TEXT_INIT;
         kel_text_add(&text, "no uncertainty is stated from ");
@@ -139,7 +145,8 @@ note_unstated(kel__adopt_warnings *warnings, const kel_content *content, const k
         kel_text_add(&text, " K to ");
         kel_text_number(&text, piece->to);
         kel_text_add(&text, " K: u counts nothing for this stretch");
-        kel_status status = kel__adopt_warn(warnings, p->arena, "uncertainty-range", m->uncertainty[0].line, &text, err);
+        kel_status status = kel__adopt_warn(warnings, p->arena, "uncertainty-range", m->uncertainty[0].line, &text,
+                                            err);
         kel_text_free(&text);
         if (status != KEL_OK)
             return status;
@@ -148,7 +155,8 @@ note_unstated(kel__adopt_warnings *warnings, const kel_content *content, const k
 }
 
 kel_status
-kel__published_modes(kel_content *content, kel__adopt_warnings *warnings, const kel__published *published, kel_error *err)
+kel__published_modes(kel_content *content, kel__adopt_warnings *warnings, const kel__published *published,
+                     kel_error *err)
 {
     const kel__metadata *m = &published->metadata;
     kel_mode *modes = kel_arena_take(published->arena, 4, sizeof *modes);

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The coefficient file (kelspan-coefficients(5)): what its lines say, checked as far as the text goes. Rows are kept until all metadata were
-   seen, since `curve`, `variable` and `decimal` decide how their numbers are read. */
+/* The coefficient file (kelspan-coefficients(5)): what its lines say, checked as far as the text goes. Rows are kept
+   until all metadata were seen, since `curve`, `variable` and `decimal` decide how their numbers are read. */
 #include <stdlib.h>
 #include <string.h>
 
@@ -25,7 +25,8 @@ static kel_status
 keep_row(struct sheet *sheet, const kel_row *from, kel_arena *arena, kel_error *err)
 {
     if (from->count > MOST_CELLS)
-        return kel_error_set(err, KEL_E_DATA, from->line, from->cells[MOST_CELLS].column, "a row of %zu cells; %d are the limit", from->count,
+        return kel_error_set(err, KEL_E_DATA, from->line, from->cells[MOST_CELLS].column,
+                             "a row of %zu cells; %d are the limit", from->count,
                              MOST_CELLS);
     if (sheet->count > MOST_PIECES)
         return kel_error_set(err, KEL_E_DATA, from->line, 1, "more than %d pieces", MOST_PIECES);
@@ -75,13 +76,15 @@ read_bound(double *out, const kel_unit *unit, size_t column, const kel__sheet_ro
 {
     const kel_cell *cell = &row->cells[column];
     if (cell->size == 0)
-        return kel_error_set(err, KEL_E_SYNTAX, row->line, cell->column, "the temperature where the piece starts or ends is missing");
+        return kel_error_set(err, KEL_E_SYNTAX, row->line, cell->column, "the temperature where the piece starts or "
+                                                                         "ends is missing");
     return kel__number_text(out, unit, cell->bytes, cell->size, comma, row->line, cell->column, err);
 }
 
 /* Cells left empty at the end of a row are powers that this piece does not have. */
 static kel_status
-read_powers(kel__published *out, kel__published_piece *piece, const kel__layout *layout, const kel__sheet_row *row, kel_error *err)
+read_powers(kel__published *out, kel__published_piece *piece, const kel__layout *layout, const kel__sheet_row *row,
+            kel_error *err)
 {
     size_t n = layout->powers;
     while (n > 0 && row->cells[layout->power[n - 1]].size == 0)
@@ -94,8 +97,10 @@ read_powers(kel__published *out, kel__published_piece *piece, const kel__layout 
     for (size_t k = 0; k < last; k++) {
         const kel_cell *cell = &row->cells[layout->power[k]];
         if (cell->size == 0)
-            return kel_error_set(err, KEL_E_SYNTAX, row->line, cell->column, "the coefficient of power %zu is missing (0 where it is not used)", k);
-        kel_status status = kel__two_read(&piece->c[k], &out->unit, cell->bytes, cell->size, out->metadata.decimal_comma, row->line,
+            return kel_error_set(err, KEL_E_SYNTAX, row->line, cell->column,
+                                 "the coefficient of power %zu is missing (0 where it is not used)", k);
+        kel_status status = kel__two_read(&piece->c[k], &out->unit, cell->bytes, cell->size,
+                                          out->metadata.decimal_comma, row->line,
                                           cell->column, err);
         if (status != KEL_OK)
             return status;
@@ -105,13 +110,15 @@ read_powers(kel__published *out, kel__published_piece *piece, const kel__layout 
 }
 
 static kel_status
-read_piece(kel__published *out, const kel__layout *layout, const kel__sheet_row *header, const kel__sheet_row *row, kel_error *err)
+read_piece(kel__published *out, const kel__layout *layout, const kel__sheet_row *header, const kel__sheet_row *row,
+           kel_error *err)
 {
     kel__published_piece *piece = &out->pieces[out->piece_count++];
     const kel_cell *end = &row->cells[row->count < header->count ? row->count - 1 : header->count];
     bool comma = out->metadata.decimal_comma;
     if (row->count != header->count)
-        return kel_error_set(err, KEL_E_SYNTAX, row->line, end->column, "%zu cells in a row under a header of %zu", row->count, header->count);
+        return kel_error_set(err, KEL_E_SYNTAX, row->line, end->column, "%zu cells in a row under a header of %zu",
+                             row->count, header->count);
     piece->line = row->line;
     piece->column = row->cells[layout->from].column;
     kel_status status;
@@ -121,7 +128,8 @@ read_piece(kel__published *out, const kel__layout *layout, const kel__sheet_row 
     /* A record made of one temperature is written as one piece of no width. */
     bool point = piece->from == piece->to && out->only_piece && layout->powers == 1;
     if (!(piece->from < piece->to) && !point)
-        return kel_error_set(err, KEL_E_DATA, row->line, piece->column, "the piece must run from the lower to the higher temperature");
+        return kel_error_set(err, KEL_E_DATA, row->line, piece->column, "the piece must run from the lower to the "
+                                                                        "higher temperature");
     return read_powers(out, piece, layout, row, err);
 }
 
@@ -132,7 +140,8 @@ by_temperature(const void *a, const void *b)
     return (p->from > q->from) - (p->from < q->from);
 }
 
-/* One piece must start where the one before ends. The numbers come from decimal text by one rounding each, so 20 degC and 68 degF meet. */
+/* One piece must start where the one before ends. The numbers come from decimal text by one rounding each, so 20 degC
+   and 68 degF meet. */
 static kel_status
 check_joins(const kel__published *out, kel_error *err)
 {
@@ -143,7 +152,8 @@ check_joins(const kel__published *out, kel_error *err)
             continue;
         kel_number_format(to, before->to);
         kel_number_format(from, piece->from);
-        return kel_error_set(err, KEL_E_DATA, piece->line, piece->column, "%s between the piece of line %zu, which ends at %s K, and this one from %s K",
+        return kel_error_set(err, KEL_E_DATA, piece->line, piece->column,
+                             "%s between the piece of line %zu, which ends at %s K, and this one from %s K",
                              before->to < piece->from ? "a gap" : "an overlap", before->line, to, from);
     }
     return KEL_OK;
@@ -154,7 +164,8 @@ read_pieces(kel__published *out, const struct sheet *sheet, kel_error *err)
 {
     const kel__sheet_row *header = sheet->rows;
     if (sheet->count == 0)
-        return kel_error_set(err, KEL_E_SYNTAX, 1, 1, "no header: a coefficient file has a row 'from [K],to [K],power 0,...'");
+        return kel_error_set(err, KEL_E_SYNTAX, 1, 1, "no header: a coefficient file has a row 'from [K],to "
+                                                      "[K],power 0,...'");
     out->header_line = header->line;
     kel__layout layout;
     kel_status status;
@@ -176,7 +187,8 @@ read_pieces(kel__published *out, const struct sheet *sheet, kel_error *err)
 }
 
 kel_status
-kel__published_read(kel__published *out, kel_input input, const char *const *settings, size_t setting_count, kel_error *err)
+kel__published_read(kel__published *out, kel_input input, const char *const *settings, size_t setting_count,
+                    kel_error *err)
 {
     struct sheet sheet = { .count = 0 };
     kel__metadata_reader *metadata;
@@ -195,7 +207,8 @@ kel__published_read(kel__published *out, kel_input input, const char *const *set
 }
 
 kel_status
-kel__adopt_warn(kel__adopt_warnings *warnings, kel_arena *arena, const char *code, size_t line, const kel_text *text, kel_error *err)
+kel__adopt_warn(kel__adopt_warnings *warnings, kel_arena *arena, const char *code, size_t line, const kel_text *text,
+                kel_error *err)
 {
     for (size_t i = 0; i < warnings->count; i++)
         if (strcmp(warnings->list[i].code, code) == 0) {
@@ -243,7 +256,8 @@ kel_adopt_report_free(kel_adopt_report *made)
 }
 
 kel_status
-kel_coefficients_read(kel_record **out, kel_adopt_report **report, kel_input input, const char *name, const char *const *settings,
+kel_coefficients_read(kel_record **out, kel_adopt_report **report, kel_input input, const char *name,
+                      const char *const *settings,
                       size_t setting_count, kel_error *err)
 {
     if (report != NULL)

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Shift and steps of published coefficients. A printed expansion that is not zero at its reference is shifted, by taking its derivative; where
-   its pieces do not meet, by more than the rounding of their own terms (8 eps of the largest), the length steps. Both are said. */
+/* Shift and steps of published coefficients. A printed expansion that is not zero at its reference is shifted, by
+   taking its derivative; where its pieces do not meet, by more than the rounding of their own terms (8 eps of the
+   largest), the length steps. Both are said. */
 #include <float.h>
 #include <math.h>
 #include <stdlib.h>
@@ -60,7 +61,8 @@ note_shift(kel__adopt_warnings *warnings, const kel__published *p, kel_error *er
 }
 
 static kel_status
-note_step(kel__adopt_warnings *warnings, const kel__published *p, double jump, const kel__published_piece *above, kel_error *err)
+note_step(kel__adopt_warnings *warnings, const kel__published *p, double jump, const kel__published_piece *above,
+          kel_error *err)
 {
     kel_text text = KEL_TEXT_INIT;
     kel_text_add(&text, "the published pieces differ by ");
@@ -75,12 +77,16 @@ note_step(kel__adopt_warnings *warnings, const kel__published *p, double jump, c
 
 /* The published jump of an expansion curve where piece `join` starts. list has room for one more. */
 static kel_status
-take_jump(kel_declared_transition *list, size_t *count, kel__adopt_warnings *warnings, const kel__published *p, size_t join, kel_error *err)
+take_jump(kel_declared_transition *list, size_t *count, kel__adopt_warnings *warnings, const kel__published *p,
+          size_t join, kel_error *err)
 {
     const kel__published_piece *below = &p->pieces[join - 1], *above = &p->pieces[join];
     kel__twofold x = kel__poly_variable(&p->variable, above->from);
-    double jump = kel__two_sub(kel__poly_value(above->c, above->count, x), kel__poly_value(below->c, below->count, x)).hi;
-    double rounding = negligible * fmax(kel__poly_largest(above->c, above->count, x), kel__poly_largest(below->c, below->count, x));
+    double jump = kel__two_sub(kel__poly_value(above->c, above->count, x), kel__poly_value(below->c, below->count,
+                                                                                           x)).hi;
+    double rounding = negligible * fmax(kel__poly_largest(above->c, above->count, x), kel__poly_largest(below->c,
+                                                                                                        below->count,
+                                                                                                        x));
     size_t i = 0;
     while (i < *count && list[i].at != above->from)
         i++;
@@ -98,7 +104,8 @@ take_jump(kel_declared_transition *list, size_t *count, kel__adopt_warnings *war
     return note_step(warnings, p, jump, above, err);
 }
 
-/* An expansion has its steps itself: a declared one that it does not show contradicts it. A step to be fitted needs rows. */
+/* An expansion has its steps itself: a declared one that it does not show contradicts it. A step to be fitted needs
+   rows. */
 static kel_status
 check_declared(const kel_declared_transition *t, const kel__published *p, kel_error *err)
 {
@@ -110,10 +117,12 @@ check_declared(const kel_declared_transition *t, const kel__published *p, kel_er
     char at[KEL_NUMBER_SIZE];
     kel_number_format(at, t->at);
     if (t->step == KEL_STEP_FITTED && !expansion)
-        return kel_error_set(err, KEL_E_DATA, entry.line, column, "the step at %s K cannot be fitted to coefficients: state its size, "
+        return kel_error_set(err, KEL_E_DATA, entry.line, column, "the step at %s K cannot be fitted to "
+                                                                  "coefficients: state its size, "
                              "as in 'step -8.4e-6'", at);
     if (t->step == KEL_STEP_FITTED || (t->step == KEL_STEP_STATED && expansion && !join))
-        return kel_error_set(err, KEL_E_DATA, entry.line, column, "a step is declared at %s K, where the published expansion has none", at);
+        return kel_error_set(err, KEL_E_DATA, entry.line, column, "a step is declared at %s K, where the published "
+                                                                  "expansion has none", at);
     return KEL_OK;
 }
 
@@ -125,11 +134,13 @@ by_temperature(const void *a, const void *b)
 }
 
 kel_status
-kel__published_steps(kel_declared_transition **out, size_t *count, kel__adopt_warnings *warnings, const kel__published *published,
+kel__published_steps(kel_declared_transition **out, size_t *count, kel__adopt_warnings *warnings,
+                     const kel__published *published,
                      kel_error *err)
 {
     const kel__metadata *m = &published->metadata;
-    kel_declared_transition *list = kel_arena_take(published->arena, m->transition_count + published->piece_count, sizeof *list);
+    kel_declared_transition *list = kel_arena_take(published->arena, m->transition_count + published->piece_count,
+                                                   sizeof *list);
     *out = list;
     *count = m->transition_count;
     if (list == NULL)

@@ -1,10 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Physical lines. The buffer holds whole lines, so that a line is delivered in place; it is refilled when it holds no further
-   line end and grows only when a single line does not fit. A line that reaches the limit without an end is refused there and
-   then: an endless line from a pipe costs one buffer and no more.
+/* Physical lines. The buffer holds whole lines, so that a line is delivered in place; it is refilled when it holds no
+   further line end and grows only when a single line does not fit. A line that reaches the limit without an end is
+   refused there and then: an endless line from a pipe costs one buffer and no more.
 
-   What no table can hold is refused here, before anything is made of it: NUL bytes (binary files, UTF-16) and a carriage return
-   inside a line. A UTF-8 byte order mark at the very start is passed over and does not count as a column. */
+   What no table can hold is refused here, before anything is made of it: NUL bytes (binary files, UTF-16) and a
+   carriage return inside a line. A UTF-8 byte order mark at the very start is passed over and does not count as a
+   column. */
 #include "lines.h"
 
 #include <errno.h>
@@ -27,7 +28,8 @@ kel__lines_start(kel__lines *lines, kel_input input, kel_error *err)
     return KEL_OK;
 }
 
-/* Room behind `end`: by moving what is left to the front, then by growing. The limit and a CRLF fit into the largest buffer. */
+/* Room behind `end`: by moving what is left to the front, then by growing. The limit and a CRLF fit into the largest
+   buffer. */
 static kel_status
 make_room(kel__lines *lines, kel_error *err)
 {
@@ -44,7 +46,8 @@ make_room(kel__lines *lines, kel_error *err)
         capacity = KEL__LINE_LIMIT + 8;
     char *p = realloc(lines->buffer, capacity);
     if (p == NULL)
-        return kel_error_set(err, KEL_E_NOMEM, lines->number + 1, 0, "out of memory for a line of over %zu bytes", lines->end);
+        return kel_error_set(err, KEL_E_NOMEM, lines->number + 1, 0, "out of memory for a line of over %zu bytes",
+                             lines->end);
     lines->buffer = p;
     lines->capacity = capacity;
     return KEL_OK;
@@ -68,7 +71,8 @@ refill(kel__lines *lines, kel_error *err)
         return kel_error_set(err, KEL_E_IO, 0, 0, "reading failed behind line %zu: %s", lines->number, reason);
     }
     if ((size_t)n > room)
-        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "an input delivered %ld bytes where %zu were asked for", n, room);
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "an input delivered %ld bytes where %zu were asked for", n,
+                             room);
     kel_digest_add(lines->digest, lines->buffer + lines->end, (size_t)n);
     lines->end += (size_t)n;
     lines->ended = n == 0;
@@ -134,7 +138,8 @@ kel__lines_next(const char **line, size_t *n, kel__lines *lines, kel_error *err)
     if (size > 0 && start[size - 1] == '\r')
         size--;
     if (size > KEL__LINE_LIMIT)
-        return kel_error_set(err, KEL_E_SYNTAX, lines->number, KEL__LINE_LIMIT + 1, "the line is longer than %d bytes", KEL__LINE_LIMIT);
+        return kel_error_set(err, KEL_E_SYNTAX, lines->number, KEL__LINE_LIMIT + 1,
+                             "the line is longer than %d bytes", KEL__LINE_LIMIT);
     if ((status = check_line(start, size, lines->number, err)) != KEL_OK)
         return status;
     lines->begin += used;

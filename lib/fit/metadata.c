@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Metadata lines are collected here, and understood when the file was read (metadata_finish.c): `decimal: comma` may stand behind a
-   number that it concerns. A comment counts as metadata if it starts with a known key, or looks like one. */
+/* Metadata lines are collected here, and understood when the file was read (metadata_finish.c): `decimal: comma` may
+   stand behind a number that it concerns. A comment counts as metadata if it starts with a known key, or looks like
+   one. */
 #include "metadata.h"
 
 #include <stdlib.h>
@@ -17,8 +18,8 @@ no_memory(kel_error *err)
     return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for metadata");
 }
 
-/* Bytes of what can be a key at the start of the text, colon not counted; 0 if there is none: up to three words that start with a
-   letter, then a colon that belongs to no address ("http://"). */
+/* Bytes of what can be a key at the start of the text, colon not counted; 0 if there is none: up to three words that
+   start with a letter, then a colon that belongs to no address ("http://"). */
 static size_t
 key_size(const char *text, size_t n)
 {
@@ -41,7 +42,8 @@ key_size(const char *text, size_t n)
 }
 
 static kel_status
-add_item(kel__metadata_reader *reader, const char *text, size_t n, size_t size, size_t line, size_t column, bool set, kel_error *err)
+add_item(kel__metadata_reader *reader, const char *text, size_t n, size_t size, size_t line, size_t column, bool set,
+         kel_error *err)
 {
     if (reader->count == reader->capacity) {
         size_t capacity = reader->capacity == 0 ? 16 : 2 * reader->capacity;
@@ -106,7 +108,8 @@ kel__metadata_set(kel__metadata_reader *reader, const char *setting, kel_error *
     kel_text quoted = KEL_TEXT_INIT;
     kel_text_quote(&quoted, setting, n);
     status = quoted.failed ? no_memory(err)
-                           : kel_error_set(err, KEL_E_SYNTAX, 0, 0, "the setting '%s' is not `key: value` with a key of metadata and a value",
+                           : kel_error_set(err, KEL_E_SYNTAX, 0, 0, "the setting '%s' is not `key: value` with a key "
+                                                                    "of metadata and a value",
                                            quoted.bytes == NULL ? "" : quoted.bytes);
     kel_text_free(&quoted);
     return status;

@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Metadata understood: what is said twice, what contradicts, what the user overrules, what is not known.
 
-   A key stated twice must be stated alike, unless it may be repeated. What the user sets is a decision and replaces the file's statement of
-   that key; of a repeatable key it is one more statement, only a lot spread replaces the file's, since a record has one. */
+   A key stated twice must be stated alike, unless it may be repeated. What the user sets is a decision and replaces
+   the file's statement of that key; of a repeatable key it is one more statement, only a lot spread replaces the
+   file's, since a record has one. */
 #include "metadata.h"
 
 #include <math.h>
@@ -35,7 +36,8 @@ agree(const kel__item *a, const kel__item *b, bool comma)
         return false;
     kel__phrase first = kel__phrase_of(s, strlen(s), comma, 0, 0), second = kel__phrase_of(t, strlen(t), comma, 0, 0);
     double x, y;
-    return kel__phrase_temperature(&x, &first, NULL) == KEL_OK && kel__phrase_temperature(&y, &second, NULL) == KEL_OK && x == y &&
+    return kel__phrase_temperature(&x, &first, NULL) == KEL_OK && kel__phrase_temperature(&y, &second,
+                                                                                          NULL) == KEL_OK && x == y &&
            !kel__phrase_left(&first) && !kel__phrase_left(&second);
 }
 
@@ -44,7 +46,8 @@ contradiction(const kel__item *first, const kel__item *item, kel_error *err)
 {
     if (item->entry.line == 0)
         return kel_error_set(err, KEL_E_DATA, 0, 0, "two settings of `%s` contradict each other", item->key->name);
-    return kel_error_set(err, KEL_E_DATA, item->entry.line, item->entry.column, "`%s` on line %zu contradicts the one on line %zu",
+    return kel_error_set(err, KEL_E_DATA, item->entry.line, item->entry.column,
+                         "`%s` on line %zu contradicts the one on line %zu",
                          item->key->name, item->entry.line, first->entry.line);
 }
 
@@ -90,7 +93,8 @@ check_overlap(const kel__clause *clauses, size_t count, const char *name, kel_er
             if (a->independent != b->independent || !(a->lo < b->hi && b->lo < a->hi))
                 continue;
             return kel_error_set(err, KEL_E_DATA, b->line, b->line == 0 ? 0 : b->column,
-                                 "`%s` is stated twice for some temperatures, here and on line %zu: two parts of one sort are written "
+                                 "`%s` is stated twice for some temperatures, here and on line %zu: two parts of one "
+                                 "sort are written "
                                  "A %% + B [UNIT]", name, a->line);
         }
     return KEL_OK;
@@ -119,7 +123,8 @@ keep_note(kel__draft *draft, kel_warning *unknown, const kel__item *item, kel_ar
 
 /* `decimal` is taken in a round of its own, before the values that it concerns. */
 static kel_status
-take_items(kel__draft *draft, kel_warning *unknown, kel__item *items, size_t count, bool decimal, kel_arena *arena, kel_error *err)
+take_items(kel__draft *draft, kel_warning *unknown, kel__item *items, size_t count, bool decimal, kel_arena *arena,
+           kel_error *err)
 {
     for (size_t i = 0; i < count; i++) {
         kel__item *item = &items[i];
@@ -194,7 +199,8 @@ kel__metadata_finish(kel__metadata *out, kel__metadata_reader *reader, kel_error
     /* Copied, because the result points to entries and the reader goes. */
     kel__item *items = kel_arena_copy(arena, reader->items, count, sizeof *items);
     *out = draft.out;
-    if (items == NULL || draft.uncertainty == NULL || draft.lot == NULL || draft.transitions == NULL || draft.transition_items == NULL ||
+    if (items == NULL || draft.uncertainty == NULL || draft.lot == NULL || draft.transitions == NULL ||
+        draft.transition_items == NULL ||
         draft.notes == NULL)
         return no_memory(err);
     kel_status status;

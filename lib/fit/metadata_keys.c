@@ -8,7 +8,8 @@
 #include "clause.h"
 #include "phrase.h"
 
-const char kel__key_decimal[] = "decimal", kel__key_reference[] = "reference temperature", kel__key_lot[] = "lot spread";
+const char kel__key_decimal[] = "decimal", kel__key_reference[] = "reference temperature",
+    kel__key_lot[] = "lot spread";
 
 /* "`key` is EXPECTED, not 'value'", the value made safe. */
 static kel_status
@@ -100,7 +101,8 @@ take_reference(kel__draft *draft, kel__item *item, kel_error *err)
 {
     const kel__entry *entry = &item->entry;
     draft->out.reference_printed = entry->value;
-    return whole_temperature(&draft->out.reference_temperature, entry->value, strlen(entry->value), draft->out.decimal_comma,
+    return whole_temperature(&draft->out.reference_temperature, entry->value, strlen(entry->value),
+                             draft->out.decimal_comma,
                              entry->line, entry->column, err);
 }
 
@@ -143,8 +145,8 @@ take_lot(kel__draft *draft, kel__item *item, kel_error *err)
     return kel__clause_parse(clause, &item->entry, true, draft->out.decimal_comma, err);
 }
 
-/* Two statements of one transition: the same is fine, the user's overrules the file's, others contradict each other. The user's come
-   first. */
+/* Two statements of one transition: the same is fine, the user's overrules the file's, others contradict each other.
+   The user's come first. */
 static kel_status
 take_transition(kel__draft *draft, kel__item *item, kel_error *err)
 {
@@ -212,7 +214,8 @@ static const kel__key keys[] = {
 };
 
 /* In a coefficient file `scale: 100` is the variable's, `scale: IPTS-68` the temperatures'. */
-static const kel__key variable_scale = { .name = "scale", .take = take_entry, .offset = AT(variable_scale), .coefficients = true };
+static const kel__key variable_scale = { .name = "scale", .take = take_entry, .offset = AT(variable_scale),
+                                         .coefficients = true };
 
 static bool
 starts_as_number(const char *value)

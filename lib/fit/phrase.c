@@ -30,7 +30,8 @@ complain(kel_error *err, size_t line, size_t column, const char *expected, const
     kel_text quoted = KEL_TEXT_INIT;
     kel_text_quote(&quoted, found, n > SHOWN ? SHOWN : n);
     kel_status status = quoted.failed ? kel_error_set(err, KEL_E_NOMEM, line, column, "out of memory for a message")
-                                      : kel_error_set(err, KEL_E_SYNTAX, line, column, "expected %s, found '%s'", expected, quoted.bytes);
+                                      : kel_error_set(err, KEL_E_SYNTAX, line, column, "expected %s, found '%s'",
+                                                      expected, quoted.bytes);
     kel_text_free(&quoted);
     return status;
 }
@@ -136,14 +137,16 @@ number_end(const char *p, const char *end)
 }
 
 kel_status
-kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line, size_t column, kel_error *err)
+kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line,
+                 size_t column, kel_error *err)
 {
     kel_error inner;
     char copy[LONGEST_NUMBER];
     size_t at = line == 0 ? 0 : column;
     *out = NAN;
     if (n > sizeof copy)
-        return kel_error_set(err, KEL_E_SYNTAX, line, at, "a number of %zu characters; %d are the limit", n, LONGEST_NUMBER);
+        return kel_error_set(err, KEL_E_SYNTAX, line, at, "a number of %zu characters; %d are the limit", n,
+                             LONGEST_NUMBER);
     const char *found = n == 0 ? NULL : memchr(text, comma ? '.' : ',', n);
     if (found != NULL)
         return kel_error_set(err, KEL_E_SYNTAX, line, at == 0 ? 0 : at + (size_t)(found - text),
@@ -153,7 +156,8 @@ kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, 
         memcpy(copy, text, n);
     if (comma && n > 0 && (found = memchr(text, ',', n)) != NULL)
         copy[found - text] = '.';
-    kel_status status = unit == NULL ? kel_number_read(out, copy, n, &inner) : kel_unit_read(out, NULL, unit, copy, n, &inner);
+    kel_status status = unit == NULL ? kel_number_read(out, copy, n, &inner) : kel_unit_read(out, NULL, unit, copy, n,
+                                                                                             &inner);
     return status == KEL_OK ? status : kel__error_at(err, &inner, line, column);
 }
 
@@ -167,7 +171,8 @@ kel__phrase_number(double *out, kel__phrase *phrase, const kel_unit *unit, const
     if (stop == begin)
         return kel__phrase_expected(phrase, what, err);
     phrase->p = stop;
-    return kel__number_text(out, unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line, place(phrase, begin), err);
+    return kel__number_text(out, unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line, place(phrase,
+                                                                                                         begin), err);
 }
 
 /* The unit may hold brackets of its own, "um/(m.K)". */
@@ -190,7 +195,8 @@ kel__phrase_bracket(kel__word *unit, kel__phrase *phrase, kel_error *err)
             return KEL_OK;
         }
     }
-    return kel_error_set(err, KEL_E_SYNTAX, phrase->line, place(phrase, phrase->p), "the bracket round the unit is not closed");
+    return kel_error_set(err, KEL_E_SYNTAX, phrase->line, place(phrase, phrase->p),
+                         "the bracket round the unit is not closed");
 }
 
 /* The unit behind a temperature's number: one word; or two where the first is "deg". */
@@ -215,9 +221,11 @@ kel__phrase_temperature(double *out, kel__phrase *phrase, kel_error *err)
 {
     *out = NAN;
     kel__word word = kel__phrase_peek(phrase);
-    if (kel__is_word(word.p, word.n, "RT") || kel__is_word(word.p, word.n, "room") || kel__is_word(word.p, word.n, "ambient"))
+    if (kel__is_word(word.p, word.n, "RT") || kel__is_word(word.p, word.n, "room") || kel__is_word(word.p, word.n,
+                                                                                                   "ambient"))
         return kel_error_set(err, KEL_E_SYNTAX, phrase->line, place(phrase, word.p),
-                             "room temperature is no number: write what the source means by it, for example 20 degC or 293.15 K");
+                             "room temperature is no number: write what the source means by it, for example 20 degC "
+                             "or 293.15 K");
     const char *begin = word.p, *stop = word.n == 0 ? begin : number_end(begin, phrase->end);
     if (stop == begin)
         return kel__phrase_expected(phrase, "a temperature with its unit, for example 293.15 K or 20 degC", err);
@@ -225,10 +233,12 @@ kel__phrase_temperature(double *out, kel__phrase *phrase, kel_error *err)
     kel__word name = temperature_unit(phrase);
     if (name.n == 0)
         return kel_error_set(err, KEL_E_UNIT, phrase->line, place(phrase, begin),
-                             "the temperature %.*s needs a unit, for example 293 K or 20 degC", (int)(stop - begin), begin);
+                             "the temperature %.*s needs a unit, for example 293 K or 20 degC", (int)(stop - begin),
+                                 begin);
     kel_unit unit;
     kel_error inner;
     if (kel_unit_parse(&unit, KEL_DIM_TEMPERATURE, name.p, name.n, &inner) != KEL_OK)
         return kel__error_at(err, &inner, phrase->line, place(phrase, name.p));
-    return kel__number_text(out, &unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line, place(phrase, begin), err);
+    return kel__number_text(out, &unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line, place(phrase,
+                                                                                                          begin), err);
 }

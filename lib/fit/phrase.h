@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Small phrases in metadata values and coefficient files ("2 % + 0.1 [1e-6/K] k=2 from 20 degC to 100 degC"), read word by word. Not installed. */
+/* Small phrases in metadata values and coefficient files ("2 % + 0.1 [1e-6/K] k=2 from 20 degC to 100 degC"), read
+   word by word. Not installed. */
 #ifndef KELSPAN_PHRASE_H
 #define KELSPAN_PHRASE_H
 
@@ -21,7 +22,8 @@ kel__phrase kel__phrase_of(const char *text, size_t n, bool comma, size_t line, 
 
 /* Skips blanks. Is anything left? */
 bool kel__phrase_left(kel__phrase *phrase);
-/* The next word: up to a blank or one of + % = [ ( (which are words of their own). Empty at the end. Does not move on. */
+/* The next word: up to a blank or one of + % = [ ( (which are words of their own). Empty at the end. Does not move
+   on. */
 kel__word kel__phrase_peek(kel__phrase *phrase);
 /* Moves on over the next word if it is this one (case folded). */
 bool kel__phrase_take(kel__phrase *phrase, const char *word);
@@ -35,8 +37,10 @@ kel_status kel__phrase_bracket(kel__word *unit, kel__phrase *phrase, kel_error *
 /* A temperature with its unit: "293.15 K", "20°C". */
 kel_status kel__phrase_temperature(double *out, kel__phrase *phrase, kel_error *err);
 
-/* A number in a cell or value of its own. A decimal comma is taken only where comma is true, and then no point. text[n] at line, column. */
-kel_status kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line, size_t column, kel_error *err);
+/* A number in a cell or value of its own. A decimal comma is taken only where comma is true, and then no point.
+   text[n] at line, column. */
+kel_status kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line,
+                            size_t column, kel_error *err);
 
 /* x for a message or label: at most six significant digits, no zeros behind the last. out: KEL_NUMBER_SIZE bytes. */
 void kel__number_short(char *out, double x);

@@ -1,11 +1,12 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Published polynomials stand in powers of T, of degC or of a scaled variable, where their terms cancel: on 4 K to 300 K those of a quartic by
-   four digits and more. All work on them is therefore in twice the precision, from the decimal digits on, so that the Chebyshev
-   coefficients that result are right to the last bit or so and published values come out in all their digits.
+/* Published polynomials stand in powers of T, of degC or of a scaled variable, where their terms cancel: on 4 K to
+   300 K those of a quartic by four digits and more. All work on them is therefore in twice the precision, from the
+   decimal digits on, so that the Chebyshev coefficients that result are right to the last bit or so and published
+   values come out in all their digits.
 
-   With x = (T - C)/S, T = m + h y on an interval of midpoint m and half-width h:  x = a + b y,  a = (m - C)/S,  b = h/S.
-   Horner's scheme is run in the Chebyshev basis of y: multiply by a + b y, add the next coefficient, where y T_0 = T_1 and
-   y T_j = (T_(j+1) + T_(j-1))/2. That does both changes of basis at once in n^2 operations. */
+   With x = (T - C)/S, T = m + h y on an interval of midpoint m and half-width h:  x = a + b y,  a = (m - C)/S,  b =
+   h/S. Horner's scheme is run in the Chebyshev basis of y: multiply by a + b y, add the next coefficient, where y T_0
+   = T_1 and y T_j = (T_(j+1) + T_(j-1))/2. That does both changes of basis at once in n^2 operations. */
 #include "polynomial.h"
 
 #include <string.h>
@@ -32,8 +33,8 @@ times_power_of_ten(kel__twofold x, int n)
     return n >= 0 ? kel__two_mul(x, power_of_ten(n)) : kel__two_div(x, power_of_ten(-n));
 }
 
-/* The digits of a number whose grammar was checked. Beyond 32 of them they no longer count; exponents beyond a double's easy range make no
-   sense as a coefficient and give false. */
+/* The digits of a number whose grammar was checked. Beyond 32 of them they no longer count; exponents beyond a
+   double's easy range make no sense as a coefficient and give false. */
 static bool
 read_digits(kel__twofold *out, const char *p, size_t n)
 {
@@ -88,7 +89,8 @@ kel__two_in_unit(kel__twofold x, const kel_unit *unit)
 }
 
 kel_status
-kel__two_read(kel__twofold *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line, size_t column, kel_error *err)
+kel__two_read(kel__twofold *out, const kel_unit *unit, const char *text, size_t n, bool comma, size_t line,
+              size_t column, kel_error *err)
 {
     double rounded;
     *out = kel__two(0);

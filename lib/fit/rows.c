@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Rows: physical lines, of which comments are kept whole, blank ones passed over and the others split into cells. The delimiter is
-   settled on the first line that is no comment and stays. An error ends the reading: asked again, the reader gives it again. */
+/* Rows: physical lines, of which comments are kept whole, blank ones passed over and the others split into cells. The
+   delimiter is settled on the first line that is no comment and stays. An error ends the reading: asked again, the
+   reader gives it again. */
 #include "blanks.h"
 #include "cells.h"
 #include "lines.h"
@@ -48,7 +49,8 @@ make_row(kel_rows *rows, const char *line, size_t n, const char *first, kel_erro
     }
     if (rows->delimiter == KEL_DELIMITER_DETECT)
         rows->delimiter = kel__cells_detect(line, n);
-    return kel__cells_split(&rows->row.cells, &rows->row.count, rows->splitter, rows->delimiter, line, n, rows->lines.number, err);
+    return kel__cells_split(&rows->row.cells, &rows->row.count, rows->splitter, rows->delimiter, line, n,
+                            rows->lines.number, err);
 }
 
 static kel_status

@@ -20,21 +20,27 @@ kel__quote_into(kel_text *text, const char *bytes, size_t n)
     kel_text_add(text, n > SHOWN ? "...'" : "'");
 }
 
+/* Up to seven digits, no zeros behind the last one that counts. */
+static void
+number_into(kel_text *text, double x)
+{
+    char number[KEL_NUMBER_SIZE];
+    double rounded;
+    size_t n = kel_number_format_digits(number, x, 7);
+    kel_text_number(text, kel_number_read(&rounded, number, n, NULL) == KEL_OK ? rounded : x);
+}
+
 void
 kel__temperature_into(kel_text *text, double t)
 {
-    char number[KEL_NUMBER_SIZE];
-    kel_number_format_digits(number, t, 7);
-    kel_text_add(text, number);
+    number_into(text, t);
     kel_text_add(text, " K");
 }
 
 void
 kel__value_into(kel_text *text, kel_kind kind, double value)
 {
-    char number[KEL_NUMBER_SIZE];
-    kel_number_format_digits(number, value, 7);
-    kel_text_add(text, number);
+    number_into(text, value);
     kel_text_add(text, kind == KEL_KIND_EXPANSION ? "" : " 1/K");
 }
 

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Numbers of twice the precision: an unevaluated sum hi + lo of two doubles with |lo| <= ulp(hi)/2, some 31 digits. Sums and products by the
-   error-free transformations of Dekker, Numer. Math. 18 (1971) 224 and Knuth (two_sum); each operation below is right to a few 2^-104.
-   They rest on round-to-nearest and on products that the compiler does not contract. Not installed. */
+/* Numbers of twice the precision: an unevaluated sum hi + lo of two doubles with |lo| <= ulp(hi)/2, some 31 digits.
+   Sums and products by the error-free transformations of Dekker, Numer. Math. 18 (1971) 224 and Knuth (two_sum); each
+   operation below is right to a few 2^-104. They rest on round-to-nearest and on products that the compiler does not
+   contract. Not installed. */
 #ifndef KELSPAN_TWOFOLD_H
 #define KELSPAN_TWOFOLD_H
 

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The independent uncertainty of each row: stated, or estimated from the residuals of its column.
 
-   Stated:    u^2 = u0^2 + (r g)^2 + resolution^2/12, g the curve's value at the row.
+   Stated:    u^2 = u0^2 + (r g)^2 + resolution^2/12, g the curve's value at the row; an absolute u0 alone is u as it stands, so that a
+   table split in two, or printed in another unit, weighs what it did.
    Estimated: u_i^2 = s^2 w_i^2 + resolution^2/12 with w = 1 for a coefficient or an expansion and 1/|Tb - Ta| for a mean, whose error is that of
    the expansion. s >= 0 solves  sum r_i^2/u_i^2 = n - sum h_i  over the column's rows (r net residuals, h leverages, a fixed point over fits);
    s = 0 if the sum is already smaller there. With equal w it is the classic residual variance, floored at the rounding.
@@ -35,7 +36,8 @@ kel__row_u(const kel__problem *problem, const kel__solution *solution, const kel
     const kel_observation *o = row->seen;
     const kel__column *column = &problem->columns[row->column];
     if (o->u_stated) {
-        double relative = o->u_relative * value, rounding = column->resolution / sqrt(12);
+        bool alone = o->u_relative == 0 && o->u_absolute > 0;
+        double relative = o->u_relative * value, rounding = alone ? 0 : column->resolution / sqrt(12);
         return sqrt(o->u_absolute * o->u_absolute + relative * relative + rounding * rounding);
     }
     double s = solution->scatter[row->column];

@@ -42,7 +42,7 @@ load common
 
 @test "control bytes in a name do not reach the terminal" {
     kel 1 read "$(printf 'a\033[31m.csv')"
-    has "$stderr" 'a\x1b[31m.csv'
+    has "$stderr" 'a\x1B[31m.csv'
 }
 
 @test "warnings: one line for a kind and file, with count and first place; status 0" {

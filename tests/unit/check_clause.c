@@ -180,7 +180,8 @@ START_TEST(transition)
 }
 END_TEST
 
-static const struct { const char *text; size_t column; kel_status status; const char *message; } refused_transitions[] = {
+static const struct { const char *text; size_t column; kel_status status; const char *message;
+                      } refused_transitions[] = {
     { "", 1, KEL_E_SYNTAX, "expected a temperature with its unit" },
     { "near 912 degC", 1, KEL_E_SYNTAX, "found 'near'" },
     { "912", 1, KEL_E_UNIT, "the temperature 912 needs a unit" },
@@ -199,7 +200,8 @@ START_TEST(refuses_transition)
     kel_declared_transition t;
     kel_error err = { KEL_OK, 0, 0, "" };
     kel_status status = kel__transition_parse(&t, &entry, false, &err);
-    ck_assert_msg(status == refused_transitions[_i].status && err.column == COLUMN + refused_transitions[_i].column - 1 &&
+    ck_assert_msg(status == refused_transitions[_i].status &&
+                  err.column == COLUMN + refused_transitions[_i].column - 1 &&
                   strstr(err.message, refused_transitions[_i].message) != NULL,
                   "'%s': got %d at %zu (%s)", entry.value, status, err.column - COLUMN + 1, err.message);
 }

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Coefficient files: published values come out in all their digits, shifts and steps are made and said, uncertainty becomes modes, and every
-   refusal stands at its place. Over coefficients_header.c, coefficients_steps.c, coefficients_curve.c, coefficients_modes.c too. */
+/* Coefficient files: published values come out in all their digits, shifts and steps are made and said, uncertainty
+   becomes modes, and every refusal stands at its place. Over coefficients_header.c, coefficients_steps.c,
+   coefficients_curve.c, coefficients_modes.c too. */
 #include "unit.h"
 
 #include <kelspan-fit.h>
@@ -8,7 +9,8 @@
 #include <string.h>
 
 static kel_status
-read_text(kel_record **record, kel_adopt_report **report, const char *text, const char *const *settings, size_t n, kel_error *err)
+read_text(kel_record **record, kel_adopt_report **report, const char *text, const char *const *settings, size_t n,
+          kel_error *err)
 {
     kel_memory memory = { text, strlen(text), 0 };
     return kel_coefficients_read(record, report, kel_input_memory(&memory), "there/alloy.csv", settings, n, err);
@@ -68,8 +70,8 @@ integral(const kel_record *record, double from, double to)
     return a;
 }
 
-/* alpha worked out from the files' digits in exact fractions, at the double nearest T. largest: the largest term of the polynomial as
-   published, 1/K; the limit is 1e-13 of it. */
+/* alpha worked out from the files' digits in exact fractions, at the double nearest T. largest: the largest term of
+   the polynomial as published, 1/K; the limit is 1e-13 of it. */
 static const struct { const char *file; double t, want, largest; } values[] = {
     { "good-coefficients-two-pieces", 77, 0.00000543095227, 8.5e-6 },
     { "good-coefficients-two-pieces", 293.15, 0.00001469020435536624959105, 3.2e-5 },
@@ -91,7 +93,8 @@ static const struct { const char *file; double t, want, largest; } values[] = {
 START_TEST(published_values)
 {
     kel_record *record = good_fixture(values[_i].file, NULL);
-    ck_assert_abs_for(values[_i].file, coefficient(record, values[_i].t).value, values[_i].want, 1e-13 * values[_i].largest, "1/K");
+    ck_assert_abs_for(values[_i].file, coefficient(record, values[_i].t).value, values[_i].want,
+                      1e-13 * values[_i].largest, "1/K");
     kel_record_free(record);
 }
 END_TEST
@@ -159,9 +162,11 @@ START_TEST(expansion)
     const kel_content *c = kel_record_content(record);
     ck_assert_uint_eq(report->warning_count, 2);
     ck_assert_str_eq(report->warnings[0].code, "shifted");
-    ck_assert_str_eq(report->warnings[0].text, "the published expansion is 2.6e-6 at its reference temperature 293.15 K; it is shifted by -2.6e-6");
+    ck_assert_str_eq(report->warnings[0].text, "the published expansion is 2.6e-6 at its reference temperature "
+                                               "293.15 K; it is shifted by -2.6e-6");
     ck_assert_str_eq(report->warnings[1].code, "step");
-    ck_assert_str_eq(report->warnings[1].text, "the published pieces differ by 0.000239 at 773.15 K; taken as a step of the length there");
+    ck_assert_str_eq(report->warnings[1].text, "the published pieces differ by 0.000239 at 773.15 K; taken as a step "
+                                               "of the length there");
     ck_assert_uint_eq(report->warnings[1].line, 11);
     ck_assert_uint_eq(report->warnings[1].count, 1);
     ck_assert_uint_eq(c->transition_count, 1);
@@ -172,12 +177,14 @@ START_TEST(expansion)
     ck_assert_int_eq(c->continuity[0], -1);
     ck_assert_int_eq(c->continuity[1], -1);
     ck_assert_uint_eq(c->parameters, 6);
-    /* The printed expansions, less the printed value at the reference: e(400.5 K), e(500 degC), e(600 degC), e(700 degC). */
+    /* The printed expansions, less the printed value at the reference: e(400.5 K), e(500 degC), e(600 degC), e(700
+       degC). */
     ck_assert_abs(integral(record, 293.15, 400.5).value, 0.00135147209, 1e-17, "1");
     ck_assert_abs(integral(record, 293.15, 773.15).value, 0.007 - 2.6e-6, 1e-17, "1");
     ck_assert_abs(integral(record, 293.15, 873.15).value, 0.007 - 2.6e-6, 1e-17, "1");
     ck_assert_abs(integral(record, 293.15, 973.15).value, 0.0078 - 2.6e-6, 1e-17, "1");
-    /* One error whose size is 1 % below 500 degC and 3 % above: fully correlated. The step at 500 degC belongs to the range that ends there. */
+    /* One error whose size is 1 % below 500 degC and 3 % above: fully correlated. The step at 500 degC belongs to the
+       range that ends there. */
     ck_assert_uint_eq(c->mode_count, 1);
     ck_assert_str_eq(c->modes[0].label, "good-coefficients-expansion-three-pieces.csv relative 1 %, 3 %");
     ck_assert_lre(integral(record, 293.15, 973.15).u, 0.01 * (0.007 - 2.6e-6) + 0.03 * 0.0008, 13);
@@ -186,12 +193,14 @@ START_TEST(expansion)
 }
 END_TEST
 
-/* Carbon steel, EN 1993-1-2:2005, 3.4.1.1, (3.1a) to (3.1c): zero at 20 degC, a published fall of 8.4e-6 at 750 degC, continuous at 860 degC. */
+/* Carbon steel, EN 1993-1-2:2005, 3.4.1.1, (3.1a) to (3.1c): zero at 20 degC, a published fall of 8.4e-6 at 750 degC,
+   continuous at 860 degC. */
 START_TEST(published_steel)
 {
     kel_adopt_report *report;
     kel_record *record = good(
-        "# reference temperature: 20 degC\n# curve: expansion [1]\n# variable: T [degC]\nfrom [degC],to [degC],power 0,power 1,power 2\n"
+        "# reference temperature: 20 degC\n# curve: expansion [1]\n# variable: T [degC]\nfrom [degC],to [degC],power "
+        "0,power 1,power 2\n"
         "20,750,-2.416e-4,1.2e-5,0.4e-8\n750,860,1.1e-2,,\n860,1200,-6.2e-3,2e-5,\n", &report);
     const kel_content *c = kel_record_content(record);
     ck_assert_uint_eq(report->warning_count, 1);
@@ -208,13 +217,14 @@ START_TEST(published_steel)
 }
 END_TEST
 
-/* Aluminium 6061-T6, NIST cryogenic material properties: y = (L - L293)/L293 1e5 above 18 K, not quite zero at 293 K. alpha and y by exact
-   fractions from the published coefficients. */
+/* Aluminium 6061-T6, NIST cryogenic material properties: y = (L - L293)/L293 1e5 above 18 K, not quite zero at 293 K.
+   alpha and y by exact fractions from the published coefficients. */
 START_TEST(published_aluminium)
 {
     kel_adopt_report *report;
     kel_record *record = good(
-        "# reference temperature: 293 K\n# curve: expansion [1e-5]\n# variable: T [K]\nfrom [K],to [K],power 0,power 1,power 2,power 3,power 4\n"
+        "# reference temperature: 293 K\n# curve: expansion [1e-5]\n# variable: T [K]\nfrom [K],to [K],power 0,power "
+        "1,power 2,power 3,power 4\n"
         "18,300,-4.1277E2,-3.0389E-1,8.7696E-3,-9.9821E-6,0\n", &report);
     static const struct { const char *label; double t, alpha, y; } rows[] = {
         { "18 K", 18, 2.1129988e-8, -0.004154568852072 },
@@ -223,11 +233,13 @@ START_TEST(published_aluminium)
         { "300 K", 300, 0.00002262703, 0.000158103 },
     };
     ck_assert_str_eq(report->warnings[0].code, "shifted");
-    ck_assert_str_eq(report->warnings[0].text, "the published expansion is -3.56973e-7 at its reference temperature 293 K; it is shifted by 3.56973e-7");
+    ck_assert_str_eq(report->warnings[0].text, "the published expansion is -3.56973e-7 at its reference temperature "
+                                               "293 K; it is shifted by 3.56973e-7");
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
         /* The largest terms: 5.3e-5 1/K and 7.9e-3. */
         ck_assert_abs_for(rows[i].label, coefficient(record, rows[i].t).value, rows[i].alpha, 1e-13 * 5.3e-5, "1/K");
-        ck_assert_abs_for(rows[i].label, integral(record, 293, rows[i].t).value, rows[i].y + 3.56973497e-7, 1e-13 * 7.9e-3, "1");
+        ck_assert_abs_for(rows[i].label, integral(record, 293, rows[i].t).value, rows[i].y + 3.56973497e-7,
+                          1e-13 * 7.9e-3, "1");
     }
     kel_record_free(record);
     kel_adopt_report_free(report);
@@ -242,7 +254,8 @@ START_TEST(cuts)
     static const char rows[] = "from [K],to [K],power 0,power 1,power 2\n100,300,2,0.05,-1e-5\n";
     kel_record *plain = good(HEAD "from [K],to [K],power 0,power 1,power 2\n100,300,2,0.05,-1e-5\n", NULL);
     char text[512];
-    snprintf(text, sizeof text, HEAD "# transition: 150 K\n# transition: 200 K step -1e-5\n# transition: 350 K\n# uncertainty: 5 %% from 120 K to "
+    snprintf(text, sizeof text, HEAD "# transition: 150 K\n# transition: 200 K step -1e-5\n# transition: 350 K\n# "
+                                     "uncertainty: 5 %% from 120 K to "
              "200 K\n# uncertainty: 2 %% from 200 K to 400 K\n%s", rows);
     kel_adopt_report *report;
     kel_record *cut = good(text, &report);
@@ -263,14 +276,16 @@ START_TEST(cuts)
     ck_assert_double_eq(coefficient(cut, 110).u, 0);
     ck_assert_uint_eq(report->warning_count, 1);
     ck_assert_str_eq(report->warnings[0].code, "uncertainty-range");
-    ck_assert_str_eq(report->warnings[0].text, "no uncertainty is stated from 100 K to 120 K: u counts nothing for this stretch");
+    ck_assert_str_eq(report->warnings[0].text, "no uncertainty is stated from 100 K to 120 K: u counts nothing for "
+                                               "this stretch");
     kel_adopt_report_free(report);
     kel_record_free(plain);
     kel_record_free(cut);
 }
 END_TEST
 
-/* How far alpha agrees at an undeclared join of two polynomials: 10 + 0.1 x at x = T - 100 against others of the same value there. */
+/* How far alpha agrees at an undeclared join of two polynomials: 10 + 0.1 x at x = T - 100 against others of the same
+   value there. */
 static const struct { const char *above; int want; } joins[] = {
     { "11,0,0", -1 }, { "10,0.2,0", 0 }, { "10,0.1,1e-3", 1 }, { "10,0.1,0", 2 }, { "10.0000000000001,0.1,0", -1 },
 };
@@ -278,16 +293,20 @@ static const struct { const char *above; int want; } joins[] = {
 START_TEST(continuity)
 {
     char text[512];
-    snprintf(text, sizeof text, HEAD "# centre: 100\nfrom [K],to [K],power 0,power 1,power 2\n50,100,10,0.1,0\n100,150,%s\n", joins[_i].above);
+    snprintf(text, sizeof text, HEAD "# centre: 100\nfrom [K],to [K],power 0,power 1,power "
+                                     "2\n50,100,10,0.1,0\n100,150,%s\n", joins[_i].above);
     kel_record *record = good(text, NULL);
-    ck_assert_msg(kel_record_content(record)->continuity[0] == joins[_i].want, "%s: %d", joins[_i].above, kel_record_content(record)->continuity[0]);
+    ck_assert_msg(kel_record_content(record)->continuity[0] == joins[_i].want, "%s: %d", joins[_i].above,
+                  kel_record_content(record)->continuity[0]);
     kel_record_free(record);
 }
 END_TEST
 
 static const struct { const char *label, *uncertainty; double u; } sizes[] = {
-    { "percent", "2 %", 0.02 * 12e-6 }, { "absolute", "0.3 [1e-6/K]", 0.3e-6 }, { "limits", "3 % limits", 0.03 / 1.7320508075688772 * 12e-6 },
-    { "expanded", "1 [ppm/K] k=2", 0.5e-6 }, { "both", "3 % + 0.48 [1e-6/K] k=2", 0.3e-6 }, { "shared in so many words", "2 % shared", 0.02 * 12e-6 },
+    { "percent", "2 %", 0.02 * 12e-6 }, { "absolute", "0.3 [1e-6/K]", 0.3e-6 }, { "limits", "3 % limits",
+                                                                                  0.03 / 1.7320508075688772 * 12e-6 },
+    { "expanded", "1 [ppm/K] k=2", 0.5e-6 }, { "both", "3 % + 0.48 [1e-6/K] k=2", 0.3e-6 },
+        { "shared in so many words", "2 % shared", 0.02 * 12e-6 },
     { "a range beyond the pieces", "2 % from 0 K to 1000 K", 0.02 * 12e-6 },
 };
 
@@ -306,7 +325,8 @@ END_TEST
 
 START_TEST(lot_only)
 {
-    kel_record *record = good(HEAD "# lot spread: 1 % from 50 K to 200 K\n# lot spread: 0.2 [1e-6/K] from 200 K to 300 K\nfrom [K],to [K],power 0\n100,300,12\n", NULL);
+    kel_record *record = good(HEAD "# lot spread: 1 % from 50 K to 200 K\n# lot spread: 0.2 [1e-6/K] from 200 K to "
+                                   "300 K\nfrom [K],to [K],power 0\n100,300,12\n", NULL);
     const kel_content *c = kel_record_content(record);
     ck_assert_int_eq(c->variance, KEL_VARIANCE_NONE);
     ck_assert_uint_eq(c->mode_count, 2);
@@ -321,7 +341,8 @@ END_TEST
 START_TEST(settings)
 {
     static const char text[] = "from [K],to [K],power 0\n100,300,12\n";
-    static const char *const set[] = { "curve: coefficient [ppm/K]", "variable: T [K]", "base: current length", "reference temperature: 70 degF" };
+    static const char *const set[] = { "curve: coefficient [ppm/K]", "variable: T [K]", "base: current length",
+                                       "reference temperature: 70 degF" };
     kel_record *record;
     kel_error err = { KEL_OK, 0, 0, "" };
     ck_assert_msg(read_text(&record, NULL, text, set, 4, &err) == KEL_OK, "%s", err.message);
@@ -334,8 +355,10 @@ START_TEST(settings)
     ck_assert_int_eq(read_text(&record, &report, text, set, 1, &err), KEL_E_DATA);
     ck_assert(record == NULL && report == NULL);
     ck_assert_int_eq(kel_coefficients_read(NULL, NULL, (kel_input){ NULL, NULL }, "x", NULL, 0, NULL), KEL_E_ARGUMENT);
-    ck_assert_int_eq(kel_coefficients_read(&record, NULL, (kel_input){ NULL, NULL }, "x", NULL, 0, NULL), KEL_E_ARGUMENT);
-    ck_assert_int_eq(kel_coefficients_read(&record, NULL, (kel_input){ read_file, NULL }, NULL, NULL, 0, NULL), KEL_E_ARGUMENT);
+    ck_assert_int_eq(kel_coefficients_read(&record, NULL, (kel_input){ NULL, NULL }, "x", NULL, 0, NULL),
+                     KEL_E_ARGUMENT);
+    ck_assert_int_eq(kel_coefficients_read(&record, NULL, (kel_input){ read_file, NULL }, NULL, NULL, 0, NULL),
+                     KEL_E_ARGUMENT);
 }
 END_TEST
 
@@ -353,7 +376,8 @@ END_TEST
 /* More digits than a double holds do count: at x = 1 the terms cancel to 1e-17 of their size. */
 START_TEST(all_digits)
 {
-    kel_record *record = good("# curve: coefficient [1e-6/K]\n# variable: T [K]\n# scale: 256\nfrom [K],to [K],power 0,power 1,power 2\n"
+    kel_record *record = good("# curve: coefficient [1e-6/K]\n# variable: T [K]\n# scale: 256\nfrom [K],to [K],power "
+                              "0,power 1,power 2\n"
                               "128,384,123.456789012345678901234567,-246.913578024691357802469133,123.456789012345678901234567\n", NULL);
     /* 2e-25 of 1e-6 at T = 256, where the curve is 123 (x - 1)^2 + 1e-24 x. */
     ck_assert_abs(coefficient(record, 256).value, 1e-30, 1e-13 * 123e-6 * 1e-3, "1/K");
@@ -399,7 +423,8 @@ static const struct { const char *name; size_t line, column; kel_status status; 
     { "nul", 5, 13, KEL_E_SYNTAX, "a NUL byte" },
     { "number-too-large", 5, 8, KEL_E_RANGE, "beyond the range of a double" },
     { "open-quote", 5, 8, KEL_E_SYNTAX, "the quote is not closed" },
-    { "overlap", 5, 1, KEL_E_DATA, "an overlap between the piece of line 6, which ends at 300 K, and this one from 290 K" },
+    { "overlap", 5, 1, KEL_E_DATA, "an overlap between the piece of line 6, which ends at 300 K, and this one from "
+                                   "290 K" },
     { "piece-backwards", 5, 1, KEL_E_DATA, "from the lower to the higher temperature" },
     { "piece-of-no-width", 5, 1, KEL_E_DATA, "from the lower to the higher temperature" },
     { "ragged-long", 5, 19, KEL_E_SYNTAX, "5 cells in a row under a header of 4" },
@@ -414,7 +439,8 @@ static const struct { const char *name; size_t line, column; kel_status status; 
     { "uncertainty-elsewhere", 4, 16, KEL_E_DATA, "lies outside the pieces" },
     { "uncertainty-independent", 4, 16, KEL_E_DATA, "leave the word `independent` out" },
     { "uncertainty-of-expansion", 4, 16, KEL_E_UNIT, "stated in 1/K" },
-    { "unit-misread", 5, 1, KEL_E_DATA, "the coefficient would be 12.808 1/K at 77 K, beyond 0.001 1/K: check the unit [1/K] of `curve`" },
+    { "unit-misread", 5, 1, KEL_E_DATA, "the coefficient would be 12.808 1/K at 77 K, beyond 0.001 1/K: check the "
+                                        "unit [1/K] of `curve`" },
     { "variable-of-length", 3, 16, KEL_E_UNIT, "'mm' is a length" },
     { "variable-unknown", 3, 13, KEL_E_SYNTAX, "found 'x'" },
 };
@@ -427,8 +453,10 @@ START_TEST(refuses)
     char name[128];
     snprintf(name, sizeof name, "bad-coefficients-%s", refused[_i].name);
     kel_status status = read_fixture(&record, &report, name, &err);
-    ck_assert_msg(status == refused[_i].status && err.code == status && err.line == refused[_i].line && err.column == refused[_i].column &&
-                  strstr(err.message, refused[_i].message) != NULL && strchr(err.message, '\n') == NULL && record == NULL && report == NULL,
+    ck_assert_msg(status == refused[_i].status && err.code == status && err.line == refused[_i].line &&
+                  err.column == refused[_i].column &&
+                  strstr(err.message, refused[_i].message) != NULL && strchr(err.message, '\n') == NULL &&
+                      record == NULL && report == NULL,
                   "%s: got %d at %zu:%zu (%s)", refused[_i].name, status, err.line, err.column, err.message);
 }
 END_TEST
@@ -444,5 +472,6 @@ tables(void)
     return tcase;
 }
 
-KEL_TCASE(files, content, defaults, expansion, published_steel, published_aluminium, cuts, lot_only, settings, one_temperature, all_digits)
+KEL_TCASE(files, content, defaults, expansion, published_steel, published_aluminium, cuts, lot_only, settings,
+          one_temperature, all_digits)
 KEL_TEST_MAIN("coefficients_read", tables, files)

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Metadata: what is a key, what its value means, what is said twice, what the user overrules. Also over metadata_keys.c and metadata_finish.c. */
+/* Metadata: what is a key, what its value means, what is said twice, what the user overrules. Also over
+   metadata_keys.c and metadata_finish.c. */
 #include "unit.h"
 
 #include <math.h>
@@ -11,7 +12,8 @@ enum { COLUMN = 3 };           /* of a comment's text behind "# " */
 
 /* Settings (NULL-ended) and a text whose lines are comments without their marks. */
 static kel_status
-read_metadata(kel__metadata *out, kel_arena *arena, bool coefficients, const char *const *settings, const char *text, kel_error *err)
+read_metadata(kel__metadata *out, kel_arena *arena, bool coefficients, const char *const *settings, const char *text,
+              kel_error *err)
 {
     kel__metadata_reader *reader;
     kel_status status = kel__metadata_new(&reader, arena, coefficients, err);
@@ -64,7 +66,8 @@ START_TEST(everything)
     kel_arena *arena = kel_arena_new();
     kel__metadata m;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(read_metadata(&m, arena, false, NULL, all, &err) == KEL_OK, "%zu:%zu %s", err.line, err.column, err.message);
+    ck_assert_msg(read_metadata(&m, arena, false, NULL, all, &err) == KEL_OK, "%zu:%zu %s", err.line, err.column,
+                  err.message);
     ck_assert_str_eq(m.material, "NT-40");
     ck_assert_str_eq(m.condition, "annealed 2 h");
     ck_assert_str_eq(m.direction, "axial");
@@ -110,39 +113,52 @@ START_TEST(nothing)
     kel_arena *arena = kel_arena_new();
     kel__metadata m;
     ck_assert_int_eq(read_metadata(&m, arena, false, NULL, "a comment\n\n:\n", NULL), KEL_OK);
-    ck_assert(isnan(m.reference_temperature) && !m.base_stated && m.base == KEL_BASE_REFERENCE && m.material == NULL && m.scale == NULL);
+    ck_assert(isnan(m.reference_temperature) && !m.base_stated && m.base == KEL_BASE_REFERENCE && m.material == NULL &&
+              m.scale == NULL);
     ck_assert_uint_eq(m.entry_count + m.note_count + m.warning_count + m.uncertainty_count + m.lot_count + m.transition_count, 0);
     ck_assert_ptr_null(m.lot_text);
     kel_arena_free(arena);
 }
 END_TEST
 
-static const struct { const char *label, *text; size_t line, column; kel_status status; const char *message; } refused[] = {
-    { "two materials", "material: A\nnote: x\nmaterial: B", 3, 13, KEL_E_DATA, "`material` on line 3 contradicts the one on line 1" },
-    { "two references", "reference temperature: 20 degC\nreference temperature: 293 K", 2, 26, KEL_E_DATA, "contradicts the one on line 1" },
+static const struct { const char *label, *text; size_t line, column; kel_status status; const char *message;
+                      } refused[] = {
+    { "two materials", "material: A\nnote: x\nmaterial: B", 3, 13, KEL_E_DATA,
+      "`material` on line 3 contradicts the one on line 1" },
+    { "two references", "reference temperature: 20 degC\nreference temperature: 293 K", 2, 26, KEL_E_DATA,
+      "contradicts the one on line 1" },
     { "two bases", "base: reference length\nbase: current length", 2, 9, KEL_E_DATA, "contradicts the one on line 1" },
     { "two decimal marks", "decimal: comma\ndecimal: point", 2, 12, KEL_E_DATA, "contradicts the one on line 1" },
-    { "two lot spreads", "lot spread: 1 %\nlot spread: 2 %", 2, 15, KEL_E_DATA, "`lot spread` is stated twice for some temperatures" },
-    { "overlapping ranges", "uncertainty: 2 % from 4 K to 77 K\nuncertainty: 1 % from 76 K to 300 K", 2, 16, KEL_E_DATA, "here and on line 1" },
+    { "two lot spreads", "lot spread: 1 %\nlot spread: 2 %", 2, 15, KEL_E_DATA,
+      "`lot spread` is stated twice for some temperatures" },
+    { "overlapping ranges", "uncertainty: 2 % from 4 K to 77 K\nuncertainty: 1 % from 76 K to 300 K", 2, 16,
+      KEL_E_DATA, "here and on line 1" },
     { "two of one sort", "uncertainty: 2 %\nuncertainty: 0.1 [1e-6/K] shared", 2, 16, KEL_E_DATA, "A % + B [UNIT]" },
-    { "one transition with two steps", "transition: 912 degC step 1e-6\ntransition: 1185.15 K step 2e-6", 2, 15, KEL_E_DATA, "the transition of line 1" },
+    { "one transition with two steps", "transition: 912 degC step 1e-6\ntransition: 1185.15 K step 2e-6", 2, 15,
+      KEL_E_DATA, "the transition of line 1" },
     { "base", "base: length", 1, 9, KEL_E_SYNTAX, "`base` is reference length or current length, not 'length'" },
     { "base without value", "base:", 1, 8, KEL_E_SYNTAX, "`base` is reference length or current length, not ''" },
     { "scale", "scale: celsius", 1, 10, KEL_E_SYNTAX, "`scale` is ITS-90, IPTS-68 or IPTS-48, not 'celsius'" },
     { "branch", "branch: up", 1, 11, KEL_E_SYNTAX, "`branch` is heating or cooling, not 'up'" },
-    { "contracts", "contracts on heating: true", 1, 25, KEL_E_SYNTAX, "`contracts on heating` is yes or no, not 'true'" },
+    { "contracts", "contracts on heating: true", 1, 25, KEL_E_SYNTAX, "`contracts on heating` is yes or no, not "
+                                                                      "'true'" },
     { "shift", "shift to reference: 1", 1, 23, KEL_E_SYNTAX, "`shift to reference` is yes or no, not '1'" },
     { "decimal", "decimal: ,", 1, 12, KEL_E_SYNTAX, "`decimal` is point or comma, not ','" },
     { "control bytes quoted", "branch: \x1B[2J", 1, 11, KEL_E_SYNTAX, "not '\\x1B[2J'" },
     { "reference RT", "reference temperature: RT", 1, 26, KEL_E_SYNTAX, "room temperature is no number" },
-    { "reference in words", "reference temperature: Room temperature", 1, 26, KEL_E_SYNTAX, "room temperature is no number" },
-    { "reference without unit", "reference temperature: 293.15", 1, 26, KEL_E_UNIT, "the temperature 293.15 needs a unit" },
+    { "reference in words", "reference temperature: Room temperature", 1, 26, KEL_E_SYNTAX,
+      "room temperature is no number" },
+    { "reference without unit", "reference temperature: 293.15", 1, 26, KEL_E_UNIT,
+      "the temperature 293.15 needs a unit" },
     { "reference empty", "reference temperature:", 1, 25, KEL_E_SYNTAX, "but the text ends" },
     { "reference below zero", "reference temperature: -1 K", 1, 26, KEL_E_RANGE, "" },
     { "reference in metres", "reference temperature: 20 mm", 1, 29, KEL_E_UNIT, "" },
-    { "reference with a tail", "reference temperature: 20 degC (68 degF)", 1, 34, KEL_E_SYNTAX, "expected nothing behind the temperature, found" },
-    { "decimal comma unasked", "reference temperature: 293,15 K", 1, 29, KEL_E_SYNTAX, "a decimal comma must be declared" },
-    { "decimal point where comma was declared", "reference temperature: 293.15 K\ndecimal: comma", 1, 29, KEL_E_SYNTAX, "declares `decimal: comma`" },
+    { "reference with a tail", "reference temperature: 20 degC (68 degF)", 1, 34, KEL_E_SYNTAX,
+      "expected nothing behind the temperature, found" },
+    { "decimal comma unasked", "reference temperature: 293,15 K", 1, 29, KEL_E_SYNTAX,
+      "a decimal comma must be declared" },
+    { "decimal point where comma was declared", "reference temperature: 293.15 K\ndecimal: comma", 1, 29,
+      KEL_E_SYNTAX, "declares `decimal: comma`" },
     { "uncertainty", "uncertainty: small", 1, 16, KEL_E_SYNTAX, "found 'small'" },
     { "uncertainty empty", "uncertainty:", 1, 15, KEL_E_SYNTAX, "but the text ends" },
     { "lot with a sort", "lot spread: 1 % shared", 1, 19, KEL_E_SYNTAX, "neither shared nor independent" },
@@ -171,7 +187,8 @@ START_TEST(repeats)
     ck_assert_msg(read_metadata(&m, arena, false, NULL,
         "reference temperature: 68 degF\nreference temperature: 293.15 K\nmaterial: NT-40\nmaterial:  nt-40\n"
         "transition: 912 degC\ntransition: 1185.15 K\nlot spread: 1 %\nlot spread: 1  %\n"
-        "uncertainty: 1 % independent\nuncertainty: 2 % from 10 K to 20 K\nuncertainty: 3 % from 20 K to 30 K\n", &err) == KEL_OK,
+        "uncertainty: 1 % independent\nuncertainty: 2 % from 10 K to 20 K\nuncertainty: 3 % from 20 K to 30 K\n",
+            &err) == KEL_OK,
         "%zu:%zu %s", err.line, err.column, err.message);
     ck_assert_ulp(m.reference_temperature, 293.15, 0);
     ck_assert_str_eq(m.material, "NT-40");
@@ -188,7 +205,8 @@ START_TEST(decimal_comma)
     kel_arena *arena = kel_arena_new();
     kel__metadata m;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(read_metadata(&m, arena, false, NULL, "reference temperature: 293,15 K\nuncertainty: 0,5 %\ntransition: 911,5 degC step -8,4e-6\n"
+    ck_assert_msg(read_metadata(&m, arena, false, NULL, "reference temperature: 293,15 K\nuncertainty: 0,5 "
+                                                        "%\ntransition: 911,5 degC step -8,4e-6\n"
                   "decimal: comma\n", &err) == KEL_OK, "%zu:%zu %s", err.line, err.column, err.message);
     ck_assert(m.decimal_comma);
     ck_assert_ulp(m.reference_temperature, 293.15, 0);
@@ -201,13 +219,15 @@ END_TEST
 
 START_TEST(settings)
 {
-    static const char *const set[] = { "material: B", "reference temperature: 20 degC", "uncertainty: 1 % independent", "lot spread: 3 %",
+    static const char *const set[] = { "material: B", "reference temperature: 20 degC",
+                                       "uncertainty: 1 % independent", "lot spread: 3 %",
                                        "transition: 912 degC step 1e-6", "decimal: comma", "note: set", NULL };
     kel_arena *arena = kel_arena_new();
     kel__metadata m;
     kel_error err = { KEL_OK, 0, 0, "" };
     ck_assert_msg(read_metadata(&m, arena, false, set,
-        "material: A\nreference temperature: 300 K\nuncertainty: 2,5 %\nlot spread: 1 %\nlot spread: 2 %\ntransition: 912 degC\ndecimal: point\n"
+        "material: A\nreference temperature: 300 K\nuncertainty: 2,5 %\nlot spread: 1 %\nlot spread: 2 "
+        "%\ntransition: 912 degC\ndecimal: point\n"
         "note: file\n", &err) == KEL_OK, "%zu:%zu %s", err.line, err.column, err.message);
     ck_assert_str_eq(m.material, "B");
     ck_assert_ulp(m.reference_temperature, 293.15, 0);
@@ -271,9 +291,12 @@ START_TEST(coefficient_files)
 END_TEST
 
 static const struct { const char *text; double want; size_t column; kel_status status; } temperatures[] = {
-    { "293.15 K", 293.15, 0, KEL_OK }, { " 20 degC ", 293.15, 0, KEL_OK }, { "68\xC2\xA0\xC2\xB0" "F", 293.15, 0, KEL_OK },
-    { "-459.67 degF", 0, 0, KEL_OK }, { "0K", 0, 0, KEL_OK }, { "1e3 K", 1000, 0, KEL_OK }, { "+20degC", 293.15, 0, KEL_OK },
-    { "-459.68 degF", NAN, 1, KEL_E_RANGE }, { "inf K", NAN, 1, KEL_E_SYNTAX }, { "nan K", NAN, 1, KEL_E_SYNTAX }, { "", NAN, 1, KEL_E_SYNTAX },
+    { "293.15 K", 293.15, 0, KEL_OK }, { " 20 degC ", 293.15, 0, KEL_OK }, { "68\xC2\xA0\xC2\xB0" "F", 293.15, 0,
+                                                                             KEL_OK },
+    { "-459.67 degF", 0, 0, KEL_OK }, { "0K", 0, 0, KEL_OK }, { "1e3 K", 1000, 0, KEL_OK }, { "+20degC", 293.15, 0,
+                                                                                              KEL_OK },
+    { "-459.68 degF", NAN, 1, KEL_E_RANGE }, { "inf K", NAN, 1, KEL_E_SYNTAX }, { "nan K", NAN, 1, KEL_E_SYNTAX },
+        { "", NAN, 1, KEL_E_SYNTAX },
     { "20", NAN, 1, KEL_E_UNIT }, { "20 K K", NAN, 6, KEL_E_SYNTAX }, { "20 kelp", NAN, 4, KEL_E_UNIT }, { "2 0 K", NAN, 3, KEL_E_UNIT },
 };
 
@@ -286,7 +309,8 @@ START_TEST(temperature)
     if (status == KEL_OK)
         ck_assert_ulp_for(temperatures[_i].text, t, temperatures[_i].want, 0);
     else
-        ck_assert_msg(err.line == 4 && err.column == 9 + temperatures[_i].column, "'%s': at %zu (%s)", temperatures[_i].text, err.column - 9,
+        ck_assert_msg(err.line == 4 && err.column == 9 + temperatures[_i].column, "'%s': at %zu (%s)",
+                      temperatures[_i].text, err.column - 9,
                       err.message);
 }
 END_TEST

@@ -23,7 +23,8 @@ read_drip(void *context, char *buffer, size_t size)
     return (long)n;
 }
 
-/* All rows as text: "2:[1]temperature [K]|[17]16.7" with columns in brackets, "#" before a comment; or "! line:column message". */
+/* All rows as text: "2:[1]temperature [K]|[17]16.7" with columns in brackets, "#" before a comment; or "! line:column
+   message". */
 static void
 render(char *out, size_t size, kel_input input, kel_delimiter delimiter)
 {
@@ -37,11 +38,13 @@ render(char *out, size_t size, kel_input input, kel_delimiter delimiter)
     while ((status = kel_rows_next(&row, rows, &err)) == KEL_OK && row != NULL) {
         n += (size_t)snprintf(out + n, size - n, "%s%zu:%s", n == 0 ? "" : "\n", row->line, row->comment ? "#" : "");
         for (size_t i = 0; i < row->count; i++)
-            n += (size_t)snprintf(out + n, size - n, "%s[%zu]%.*s", i == 0 ? "" : "|", row->cells[i].column, (int)row->cells[i].size,
+            n += (size_t)snprintf(out + n, size - n, "%s[%zu]%.*s", i == 0 ? "" : "|", row->cells[i].column,
+                                  (int)row->cells[i].size,
                                   row->cells[i].bytes);
     }
     if (status != KEL_OK) {
-        n += (size_t)snprintf(out + n, size - n, "%s! %zu:%zu %s", n == 0 ? "" : "\n", err.line, err.column, err.message);
+        n += (size_t)snprintf(out + n, size - n, "%s! %zu:%zu %s", n == 0 ? "" : "\n", err.line, err.column,
+                              err.message);
         /* An error stays. */
         kel_error again = { KEL_OK, 0, 0, "" };
         ck_assert_int_eq(kel_rows_next(&row, rows, &again), status);
@@ -64,8 +67,10 @@ static const struct { const char *label, *text; kel_delimiter delimiter; const c
     { "half a mark is text", "\xEF\xBB", KEL_DELIMITER_DETECT, "1:[1]\xEF\xBB" },
     { "blanks trimmed", "  a , b\t,\xC2\xA0" "c\xE2\x80\xAF\n", KEL_DELIMITER_DETECT, "1:[3]a|[7]b|[12]c" },
     { "empty cells", ",,\n1,,\n", KEL_DELIMITER_DETECT, "1:[1]|[2]|[3]\n2:[1]1|[3]|[4]" },
-    { "comments", "# key: value \n  #second\n#\na,b\n", KEL_DELIMITER_DETECT, "1:#[3]key: value\n2:#[4]second\n3:#[2]\n4:[1]a|[3]b" },
-    { "a comment may hold quotes and does not decide the delimiter", "# \"a;b;c;d\na,b\n", KEL_DELIMITER_DETECT, "1:#[3]\"a;b;c;d\n2:[1]a|[3]b" },
+    { "comments", "# key: value \n  #second\n#\na,b\n", KEL_DELIMITER_DETECT,
+      "1:#[3]key: value\n2:#[4]second\n3:#[2]\n4:[1]a|[3]b" },
+    { "a comment may hold quotes and does not decide the delimiter", "# \"a;b;c;d\na,b\n", KEL_DELIMITER_DETECT,
+      "1:#[3]\"a;b;c;d\n2:[1]a|[3]b" },
     { "semicolons win", "a;b;c,d\n1,5;2;3\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b|[5]c,d\n2:[1]1,5|[5]2|[7]3" },
     { "tabs", "a b\tc\n1\t\t2\n", KEL_DELIMITER_DETECT, "1:[1]a b|[5]c\n2:[1]1|[3]|[4]2" },
     { "in a draw, comma before semicolon before tab", "a;b,c\td\n", KEL_DELIMITER_DETECT, "1:[1]a;b|[5]c\td" },
@@ -76,18 +81,27 @@ static const struct { const char *label, *text; kel_delimiter delimiter; const c
     { "told delimiter", "a;b,c\n", KEL_DELIMITER_COMMA, "1:[1]a;b|[5]c" },
     { "told tab, blank inside a cell", " a b\tc\n", KEL_DELIMITER_TAB, "1:[2]a b|[6]c" },
     { "blanks", "  T    alpha\n 293.15 \t 16.7  \n", KEL_DELIMITER_BLANKS, "1:[3]T|[8]alpha\n2:[2]293.15|[11]16.7" },
-    { "blanks of documents", "20\xC2\xA0" "1.1\xE2\x80\x89" "2.2\xE2\x80\xAF" "3.3\n", KEL_DELIMITER_BLANKS, "1:[1]20|[5]1.1|[11]2.2|[17]3.3" },
+    { "blanks of documents", "20\xC2\xA0" "1.1\xE2\x80\x89" "2.2\xE2\x80\xAF" "3.3\n", KEL_DELIMITER_BLANKS,
+      "1:[1]20|[5]1.1|[11]2.2|[17]3.3" },
     { "quotes between blanks", "\"mean \"\"x\"\"\"  b\n", KEL_DELIMITER_BLANKS, "1:[2]mean \"x\"|[15]b" },
     { "commas are text between blanks", "1,5 2\n", KEL_DELIMITER_BLANKS, "1:[1]1,5|[5]2" },
-    { "quote left open", "a,b\n1,\"2\n3,4\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b\n! 2:3 the quote is not closed on its line" },
-    { "quote left open behind blanks", "a,b\n1, \"2,3\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b\n! 2:4 the quote is not closed on its line" },
+    { "quote left open", "a,b\n1,\"2\n3,4\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b\n! 2:3 the quote is not closed on "
+                                                                    "its line" },
+    { "quote left open behind blanks", "a,b\n1, \"2,3\n", KEL_DELIMITER_DETECT,
+      "1:[1]a|[3]b\n! 2:4 the quote is not closed on its line" },
     { "last of doubled quotes opens", "\"a\"\"\n", KEL_DELIMITER_DETECT, "! 1:1 the quote is not closed on its line" },
-    { "quote inside a cell", "a,b\n1,2\"3\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b\n! 2:4 a quote inside a cell that does not start with one" },
-    { "text behind a quote", "\"a\" b,c\n", KEL_DELIMITER_DETECT, "! 1:5 text behind the closing quote of a cell (a quote inside a quoted cell is written twice)" },
-    { "quote left open between blanks", "a \"b c\n", KEL_DELIMITER_BLANKS, "! 1:3 the quote is not closed on its line" },
-    { "quote inside a word", "a b\"c d\n", KEL_DELIMITER_BLANKS, "! 1:4 a quote inside a cell that does not start with one" },
-    { "text behind a quote between blanks", "\"a\"b\n", KEL_DELIMITER_BLANKS, "! 1:4 text behind the closing quote of a cell (a quote inside a quoted cell is written twice)" },
-    { "carriage return inside a line", "a,b\n1,2\r3,4\r\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b\n! 2:4 a carriage return inside the line: lines end with LF or CRLF" },
+    { "quote inside a cell", "a,b\n1,2\"3\n", KEL_DELIMITER_DETECT, "1:[1]a|[3]b\n! 2:4 a quote inside a cell that "
+                                                                    "does not start with one" },
+    { "text behind a quote", "\"a\" b,c\n", KEL_DELIMITER_DETECT, "! 1:5 text behind the closing quote of a cell (a "
+                                                                  "quote inside a quoted cell is written twice)" },
+    { "quote left open between blanks", "a \"b c\n", KEL_DELIMITER_BLANKS,
+      "! 1:3 the quote is not closed on its line" },
+    { "quote inside a word", "a b\"c d\n", KEL_DELIMITER_BLANKS, "! 1:4 a quote inside a cell that does not start "
+                                                                 "with one" },
+    { "text behind a quote between blanks", "\"a\"b\n", KEL_DELIMITER_BLANKS,
+      "! 1:4 text behind the closing quote of a cell (a quote inside a quoted cell is written twice)" },
+    { "carriage return inside a line", "a,b\n1,2\r3,4\r\n", KEL_DELIMITER_DETECT,
+      "1:[1]a|[3]b\n! 2:4 a carriage return inside the line: lines end with LF or CRLF" },
 };
 
 START_TEST(cells)
@@ -99,7 +113,8 @@ START_TEST(cells)
     ck_assert_msg(strcmp(got, tables[_i].want) == 0, "%s: got\n%s\nwant\n%s", tables[_i].label, got, tables[_i].want);
     drip d = { tables[_i].text, strlen(tables[_i].text), 0, 1 };
     render(got, sizeof got, (kel_input){ read_drip, &d }, tables[_i].delimiter);
-    ck_assert_msg(strcmp(got, tables[_i].want) == 0, "%s, dripping: got\n%s\nwant\n%s", tables[_i].label, got, tables[_i].want);
+    ck_assert_msg(strcmp(got, tables[_i].want) == 0, "%s, dripping: got\n%s\nwant\n%s", tables[_i].label, got,
+                  tables[_i].want);
 }
 END_TEST
 

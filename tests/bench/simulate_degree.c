@@ -1,0 +1,294 @@
+/* SPDX-License-Identifier: GPL-3.0-or-later */
+/* How good is the automatic degree? Simulated tables of 144 kinds, each drawn several times with fixed seeds:
+
+       rows 5 .. 100  x  scatter 0.1, 1, 5 %  x  four curves  x  u stated or not,
+
+   with coefficient, mean and expansion columns, and equal and unequal spacing, taking turns. Every table is fitted with each
+   degree that the library's candidates carry. The error of a fit is the rms difference of its alpha from the true one over
+   the range. For each kind: the rms error (over its tables) of what a rule chose, divided by that of the one degree that
+   would have been best for the kind, a degree that nobody knows beforehand; 1 is perfect, and a rule that adapts to each
+   table can come out below. Beside the library's rule, from the same residual sums:
+
+       corrected Akaike   n ln(RSS/n) + 2p + 2p(p + 1)/(n - p - 1), p = k + 1     (C. Hurvich, C. Tsai, Biometrika 76 (1989) 297)
+       (with stated u     chi2 + 2k + 2k(k + 1)/(n - k - 1))
+       plain Bayes        n ln(RSS/n) + p ln n, the smallest                      (with stated u: chi2 + k ln n)
+
+   RSS of mean values counts with the squares of the intervals, as in the fit. Prints a line a kind and a summary; the
+   numbers are the same on every run. */
+#include <math.h>
+#include <stdint.h>
+#include <stdio.h>
+#include <stdlib.h>
+#include <string.h>
+
+#include <kelspan-fit.h>
+
+enum { TABLES = 12, DEGREES = 11, ROWS_MAX = 100, GRID = 200, RULES = 3, KINDS_MAX = 144 };
+static const double REFERENCE = 293.15;
+static const char *const rules[RULES] = { "kelspan", "Akaike", "Bayes" };
+
+/* ---- curves ---- */
+
+/* Heat capacity of a Debye solid over its limit, 3 y^3 int_0^(1/y) x^4 e^x/(e^x - 1)^2 dx with y = T/theta, by Simpson's rule. */
+static double
+debye(double y)
+{
+    enum { PANELS = 64 };
+    double top = 1.0 / y, h = top / PANELS, sum = 0.0;
+    for (int i = 1; i <= PANELS; i++) {
+        double x = i * h, s = x > 600.0 ? 0.0 : x * x / (2.0 * sinh(x / 2.0));
+        sum += s * s * (i == PANELS ? 1.0 : i % 2 ? 4.0 : 2.0);
+    }
+    return 3.0 * y * y * y * sum * h / 3.0;
+}
+
+static double
+cold(double t)
+{
+    return 23e-6 * debye(t / 390.0) * (1.0 + 1.2e-4 * t);
+}
+
+static double
+steel(double t)
+{
+    return 11.2e-6 + 8.5e-9 * (t - 293.0) - 2.5e-12 * (t - 293.0) * (t - 293.0);
+}
+
+static double
+line(double t)
+{
+    return 8.4e-6 + 3.1e-9 * (t - 293.0);
+}
+
+static double
+bump(double t)
+{
+    double x = (t - 760.0) / 80.0;
+    return 12e-6 + 4e-9 * (t - 293.0) + 4e-6 * exp(-x * x);
+}
+
+static const struct { const char *name; double (*alpha)(double); double lo, hi; } curves[] = {
+    { "cold", cold, 10.0, 300.0 }, { "steel", steel, 293.15, 1000.0 }, { "line", line, 293.15, 600.0 }, { "bump", bump, 293.15, 1100.0 },
+};
+
+static double
+integral(double (*alpha)(double), double a, double b)
+{
+    enum { PANELS = 40 };
+    double h = (b - a) / PANELS, sum = alpha(a) + alpha(b);
+    for (int i = 1; i < PANELS; i++)
+        sum += alpha(a + i * h) * (i % 2 ? 4.0 : 2.0);
+    return sum * h / 3.0;
+}
+
+/* ---- tables ---- */
+
+typedef struct kind {
+    size_t n, curve;
+    double scatter;
+    bool unequal, stated;
+    kel_kind column;
+} kind;
+
+/* xorshift64* for uniform numbers, Box and Muller's pair for normal ones. */
+static double
+uniform(uint64_t *state)
+{
+    *state ^= *state >> 12;
+    *state ^= *state << 25;
+    *state ^= *state >> 27;
+    return ((double)((*state * UINT64_C(2685821657736338717)) >> 11) + 0.5) / 9007199254740992.0;
+}
+
+static double
+normal(uint64_t *state)
+{
+    double r = sqrt(-2.0 * log(uniform(state)));
+    return r * cos(6.283185307179586 * uniform(state));
+}
+
+/* The scatter is a share of the largest coefficient, or of the largest expansion; a mean value has the expansion's. */
+static void
+draw(kel_observation *rows, const kind *k, uint64_t *state)
+{
+    double (*alpha)(double) = curves[k->curve].alpha;
+    double lo = curves[k->curve].lo, hi = curves[k->curve].hi, largest = 0.0;
+    for (int i = 0; i <= 50; i++) {
+        double t = lo + (hi - lo) * i / 50.0;
+        largest = fmax(largest, fabs(k->column == KEL_KIND_COEFFICIENT ? alpha(t) : integral(alpha, REFERENCE, t)));
+    }
+    for (size_t i = 0; i < k->n; i++) {
+        double x = (double)i / (double)(k->n - 1), t = lo + (hi - lo) * (k->unequal ? pow(x, 1.7) : x), u = k->scatter * largest;
+        bool coefficient = k->column == KEL_KIND_COEFFICIENT;
+        if (!coefficient && fabs(t - REFERENCE) < 2.0)
+            t = REFERENCE + (t < REFERENCE ? -2.0 : 2.0);
+        double value = coefficient ? alpha(t) : integral(alpha, REFERENCE, t);
+        if (k->column == KEL_KIND_MEAN) {
+            value /= t - REFERENCE;
+            u /= fabs(t - REFERENCE);
+        }
+        rows[i] = (kel_observation){ .kind = k->column, .from = coefficient ? t : REFERENCE, .to = t, .value = value + u * normal(state),
+                                     .u_absolute = k->stated ? u : 0.0, .u_stated = k->stated, .printed_lo = t, .printed_hi = t };
+    }
+}
+
+/* ---- one table ---- */
+
+static void
+stop(const char *what, const kel_error *err)
+{
+    fprintf(stderr, "simulate_degree: %s: %s\n", what, err->message);
+    exit(EXIT_FAILURE);
+}
+
+/* Squared error of alpha, mean over the range, and the residual sum as the fit weighs it. */
+static void
+judge(double *square, double *rss, const kel_record *record, const kind *k)
+{
+    double lo = curves[k->curve].lo, hi = curves[k->curve].hi;
+    *square = *rss = 0.0;
+    for (int i = 0; i <= GRID; i++) {
+        double t = lo + (hi - lo) * i / GRID;
+        kel_answer a;
+        kel_record_coefficient(&a, record, t, NULL); /* a mean table ends 2 K off the reference: extrapolated is fine here */
+        double d = a.value - curves[k->curve].alpha(t);
+        *square += d * d / (GRID + 1);
+    }
+    const kel_content *c = kel_record_content(record);
+    for (size_t i = 0; i < c->row_count; i++) {
+        double r = c->rows[i].residual * (k->column == KEL_KIND_MEAN ? c->rows[i].to - c->rows[i].from : 1.0);
+        *rss += r * r;
+    }
+}
+
+/* square[d]: error of degree d, NaN where it is no candidate; chosen[]: each rule's degree. */
+static void
+try_table(double square[DEGREES], int chosen[RULES], const kind *k, uint64_t *state)
+{
+    kel_observation rows[ROWS_MAX];
+    kel_column column = { .kind = k->column, .unit = "1/K" };
+    kel_table *table;
+    kel_error err = { 0 };
+    draw(rows, k, state);
+    if (kel_table_from_arrays(&table, "drawn", &column, 1, rows, k->n, REFERENCE, KEL_BASE_REFERENCE, &err) < 0)
+        stop("table", &err);
+    const kel_table *const tables[] = { table };
+    kel_fit_options options = KEL_FIT_OPTIONS_INIT;
+    kel_record *record;
+    kel_fit_report *report;
+    if (kel_fit(&record, &report, tables, 1, &options, &err) < 0)
+        stop("automatic fit", &err);
+    kel_record_free(record);
+
+    double least[RULES] = { 0.0, (double)INFINITY, (double)INFINITY };
+    for (int d = 0; d < DEGREES; d++) {
+        square[d] = (double)NAN;
+        const kel_candidate *c = d < (int)report->candidate_count ? &report->candidates[d] : NULL;
+        if (c == NULL || c->refused != NULL)
+            continue;
+        double rss, n = (double)k->n, m = (double)c->parameters, p = m + 1.0;
+        options.degrees = &d;
+        options.degree_count = 1;
+        if (kel_fit(&record, NULL, tables, 1, &options, &err) < 0)
+            stop("fit", &err);
+        judge(&square[d], &rss, record, k);
+        kel_record_free(record);
+        if (c->chosen)
+            chosen[0] = d;
+        double akaike = k->stated ? c->chi2 + 2.0 * m + 2.0 * m * (m + 1.0) / (n - m - 1.0)
+            : n * log(rss / n) + 2.0 * p + 2.0 * p * (p + 1.0) / (n - p - 1.0);
+        double bayes = k->stated ? c->chi2 + m * log(n) : n * log(rss / n) + p * log(n);
+        if (n - (k->stated ? m : p) - 1.0 > 0.0 && akaike < least[1]) {
+            least[1] = akaike;
+            chosen[1] = d;
+        }
+        if (bayes < least[2]) {
+            least[2] = bayes;
+            chosen[2] = d;
+        }
+    }
+    kel_fit_report_free(report);
+    kel_table_free(table);
+}
+
+/* ---- a kind, and all of them ---- */
+
+static void
+run_kind(double ratio[RULES], const kind *k, uint64_t seed)
+{
+    static const char *const names[] = { "coefficient", "mean", "expansion" };
+    double sum[DEGREES] = { 0 }, of_rule[RULES] = { 0 }, degree[RULES] = { 0 };
+    uint64_t state = UINT64_C(0x9E3779B97F4A7C15) * (seed + 1);
+    for (int i = 0; i < TABLES; i++) {
+        double square[DEGREES];
+        int chosen[RULES] = { 0 };
+        try_table(square, chosen, k, &state);
+        for (int d = 0; d < DEGREES; d++)
+            sum[d] += square[d];
+        for (int r = 0; r < RULES; r++) {
+            of_rule[r] += square[chosen[r]];
+            degree[r] += (double)chosen[r] / TABLES;
+        }
+    }
+    int best = 0;
+    for (int d = 1; d < DEGREES; d++)
+        if (sum[d] < sum[best]) /* false for NaN */
+            best = d;
+    printf("%4zu  %5.1f %%  %-5s  %-7s  %-11s  %-6s  %4d  %6.1e", k->n, 100.0 * k->scatter, curves[k->curve].name,
+           k->unequal ? "unequal" : "equal", names[k->column], k->stated ? "stated" : "none", best, sqrt(sum[best] / TABLES));
+    for (int r = 0; r < RULES; r++) {
+        ratio[r] = sqrt(of_rule[r] / sum[best]);
+        printf("  %7.2f (%4.1f)", ratio[r], degree[r]);
+    }
+    printf("\n");
+}
+
+static int
+ascending(const void *a, const void *b)
+{
+    double x = *(const double *)a, y = *(const double *)b;
+    return (x > y) - (x < y);
+}
+
+static void
+summarise(const char *what, double (*ratio)[RULES], const kind *kinds, size_t n, bool stated, size_t from, size_t to)
+{
+    printf("%-32s", what);
+    for (int r = 0; r < RULES; r++) {
+        double list[KINDS_MAX];
+        size_t m = 0;
+        for (size_t i = 0; i < n; i++)
+            if (kinds[i].stated == stated && kinds[i].n >= from && kinds[i].n < to)
+                list[m++] = ratio[i][r];
+        qsort(list, m, sizeof list[0], ascending);
+        printf("  %s %.2f, %.2f, %.2f;", rules[r], list[m / 2], list[m * 9 / 10], list[m - 1]);
+    }
+    printf("\n");
+}
+
+int
+main(void)
+{
+    static const size_t counts[] = { 5, 8, 12, 20, 40, 100 };
+    static const double scatters[] = { 0.001, 0.01, 0.05 };
+    static kind kinds[KINDS_MAX];
+    static double ratio[KINDS_MAX][RULES];
+    size_t n = 0;
+    printf("rows  scatter  curve  spacing  column       u       best degree, its error in 1/K; error over that of the best (mean degree): %s, %s, %s\n",
+           rules[0], rules[1], rules[2]);
+    for (int stated = 0; stated < 2; stated++)
+        for (size_t i = 0; i < sizeof counts / sizeof counts[0]; i++)
+            for (size_t j = 0; j < sizeof scatters / sizeof scatters[0]; j++)
+                for (size_t c = 0; c < sizeof curves / sizeof curves[0]; c++, n++) {
+                    /* sums of indices: every column and spacing meets every count, scatter and curve */
+                    kinds[n] = (kind){ .n = counts[i], .curve = c, .scatter = scatters[j], .unequal = (i + j / 2 + c) % 2 == 1, .stated = stated == 1,
+                                       .column = (kel_kind)((i + j + c) % 3) };
+                    run_kind(ratio[n], &kinds[n], n);
+                }
+    printf("\nerror over that of the best degree in hindsight, %zu kinds of %d tables: median, nine tenths, worst\n", n, TABLES);
+    summarise("u not stated, below 16 rows:", ratio, kinds, n, false, 0, 16);
+    summarise("u not stated, from 16 rows:", ratio, kinds, n, false, 16, 1000);
+    summarise("u stated, below 16 rows:", ratio, kinds, n, true, 0, 16);
+    summarise("u stated, from 16 rows:", ratio, kinds, n, true, 16, 1000);
+    return EXIT_SUCCESS;
+}
