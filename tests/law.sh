@@ -1,7 +1,8 @@
 #!/bin/sh
 # SPDX-License-Identifier: GPL-3.0-or-later
 #
-# The law of dependency and the manners of the libraries, checked from the sources. Argument: the source tree. Prints TAP.
+# The law of dependency and the manners of the libraries, checked from the sources. Argument: the source tree. Prints
+# TAP.
 #
 #     tools    -> public headers, their own headers, the C library
 #     lib/fit  -> public headers, its own internal headers, the C library, GSL, LAPACKE, libcsv
@@ -73,7 +74,10 @@ for f in $core; do
         name=$(printf '%s' "$target" | tr -d '<>"')
         case $target in
         '<kelspan'*)
-            case " $core_public " in *" $name "*) ;; *) echo "$file:$line: $target is no header of libkelspan" ;; esac ;;
+            case " $core_public " in
+            *" $name "*) ;;
+            *) echo "$file:$line: $target is no header of libkelspan" ;;
+            esac ;;
         '<jansson.h>' | '<nettle/'*) ;;
         '<'*)
             if printf '%s' "$target" | grep -qE "$third"; then echo "$file:$line: $target"; fi ;;
@@ -147,39 +151,47 @@ verdict "each third-party header is included by one .c file"
 
 # ---- manners of a library ----
 
-# Prints the lines of code in the libraries that match an expression.
+# Collects the lines of code in the libraries that match an expression.
 forbid() {
     for f in $libraries; do
         bare "$f" | grep -nE "$1" | sed "s@^@$f:@"
     done >>"$offences"
 }
-forbid '(^|[^A-Za-z0-9_.>])(exit|_exit|quick_exit|abort|raise|signal|atexit)[[:space:]]*\('
+# The same for calls of functions, whose names stand between bars. A member of that name is something else.
+forbid_calls() { forbid "(^|[^A-Za-z0-9_.>])($1)[[:space:]]*\("; }
+
+forbid_calls 'exit|_exit|quick_exit|abort|raise|signal|atexit'
 verdict "libraries neither exit nor abort"
-forbid '(^|[^A-Za-z0-9_.>])(printf|fprintf|vprintf|vfprintf|puts|putchar|perror|dprintf)[[:space:]]*\(|(^|[^A-Za-z0-9_])(stdout|stderr)([^A-Za-z0-9_]|$)'
+forbid_calls 'printf|fprintf|vprintf|vfprintf|puts|putchar|perror|dprintf'
+forbid '(^|[^A-Za-z0-9_])(stdout|stderr)([^A-Za-z0-9_]|$)'
 verdict "libraries print nothing"
-forbid '(^|[^A-Za-z0-9_.>])(getenv|secure_getenv|setenv|putenv|setlocale|system|popen|rand|srand|strtok|localtime|gmtime)[[:space:]]*\('
+forbid_calls 'getenv|secure_getenv|setenv|putenv|setlocale|system|popen|rand|srand|strtok|localtime|gmtime'
 verdict "libraries look at no environment and change no state of the process"
 forbid '^[[:space:]]*static[[:space:]]+[^(=;]*(=[^=]|;)'
-# No state: what is const itself, a pointer that is const, a table of a const struct. A declared function has a bracket first.
-sed -E -i '/:[[:space:]]*static[[:space:]]+const[[:space:]][^*=]*(=|;)|\*[[:space:]]*const[[:space:]]|static[[:space:]]+const[[:space:]]+struct/d' "$offences"
+# No state: what is const itself, a pointer that is const, a table of a const struct. A declared function has a
+# bracket first.
+constant='static[[:space:]]+const[[:space:]]([^*=]*(=|;)|+struct)|\*[[:space:]]*const[[:space:]]'
+sed -E -i "/:[[:space:]]*($constant)/d; /\*[[:space:]]*const[[:space:]]/d" "$offences"
 verdict "libraries hold no static mutable state"
 
 # Numbers through printf follow the locale.
 for f in $libraries; do
-    awk '/^[[:space:]]*(\/\*|\*|\/\/)/ { next } /"[^"]*%[-+ #0-9.*]*[aefgAEFG][^"]*"/ { print FILENAME ":" FNR ": " $0 }' "$f"
+    awk '/^[[:space:]]*(\/\*|\*|\/\/)/ { next }
+        /"[^"]*%[-+ #0-9.*]*[aefgAEFG][^"]*"/ { print FILENAME ":" FNR ": " $0 }' "$f"
 done >>"$offences"
-forbid '(^|[^A-Za-z0-9_])(strtod|atof|sscanf|fscanf|strtof|strtold)[[:space:]]*\('
+forbid_calls 'strtod|atof|sscanf|fscanf|strtof|strtold'
 verdict "libraries read and write no number by way of the locale"
 
 # ---- the house ----
 
 {
     find lib tools tests man bootstrap .ci datasets configure.ac Makefile.am -type f \( -name '*.[ch]' -o -name '*.sh' \
-        -o -name '*.bats' -o -name '*.bash' -o -name '*.[1-9]' -o -name '*.am' -o -name '*.ac' -o -name bootstrap -o -name run \
-        -o -name '*.map' -o -name '*.sym' \) 2>/dev/null
+        -o -name '*.bats' -o -name '*.bash' -o -name '*.[1-9]' -o -name '*.am' -o -name '*.ac' \
+        -o -name bootstrap -o -name run -o -name '*.map' -o -name '*.sym' \) 2>/dev/null
     echo tests/sum-results
 } | sort -u | while read -r f; do
-    head -n 5 "$f" | grep -qE 'SPDX-License-Identifier: (Apache-2\.0|GPL-3\.0-or-later)' || echo "$f has no SPDX line at its top"
+    head -n 5 "$f" | grep -qE 'SPDX-License-Identifier: (Apache-2\.0|GPL-3\.0-or-later)' ||
+        echo "$f has no SPDX line at its top"
 done >>"$offences"
 verdict "every source, script and manual page has its SPDX line"
 

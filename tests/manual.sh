@@ -1,11 +1,11 @@
 #!/bin/sh
 # SPDX-License-Identifier: GPL-3.0-or-later
 #
-# The manual, checked against itself and against the tool. Argument: the source tree. KELSPAN names the program; without it,
-# or where it was not built, the tests that need it are skipped. Prints TAP.
+# The manual, checked against itself and against the tool. Argument: the source tree. KELSPAN names the program;
+# without it, or where it was not built, the tests that need it are skipped. Prints TAP.
 #
-# Exception to the lint: it looks for pages that are referred to among the installed ones. Ours need not be installed yet, so
-# for them the tests look into man/ instead.
+# Exception to the lint: it looks for pages that are referred to among the installed ones. Ours need not be installed
+# yet, so for them the tests look into man/ instead.
 set -u
 LC_ALL=C
 export LC_ALL

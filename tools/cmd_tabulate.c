@@ -90,14 +90,13 @@ check_range(job *j, const grid *g, const question *q)
     return status;
 }
 
-/* The grid's own number where the answer is in the question's unit, without trailing zeros. */
+/* The grid's own number, without trailing zeros, where the answer is in the question's unit; NULL otherwise. */
 static const char *
-shown_number(const grid *g, const units *in, double t, char *digits)
+shown_number(const grid *g, const units *in, char *digits)
 {
     if (strcmp(in->temperature.name, g->unit.name) != 0)
-        kel_number_format_digits(digits, kel_unit_from_si(&in->temperature, t), DIGITS);
-    char *e = strchr(digits, 'e');
-    if (e == NULL && strchr(digits, '.') != NULL) {
+        return NULL;
+    if (strchr(digits, 'e') == NULL && strchr(digits, '.') != NULL) {
         size_t n = strlen(digits);
         while (digits[n - 1] == '0')
             n--;
@@ -124,7 +123,7 @@ write_rows(job *j, const grid *g, const question *q)
         if (status == EXIT_FINE)
             status = answers_reserve(j, &a, q);
         if (status == EXIT_FINE)
-            status = answers_row(&w, &a, shown_number(g, q->in, a.t, digits));
+            status = answers_row(&w, &a, shown_number(g, q->in, digits));
         progress_rows(&p, i, 0);
     }
     progress_end(&p);

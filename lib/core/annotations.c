@@ -42,22 +42,19 @@ kel__annotations_copy(const char **out, const char *annotations, kel_arena *memo
     kel_text_add(&wrapped, wrap_before);
     kel_text_add(&wrapped, annotations);
     kel_text_add(&wrapped, wrap_after);
-    kel_error first, second;
+    kel_error inner;
     kel_status status;
     if (wrapped.failed)
-        status = kel_error_set(&first, KEL_E_NOMEM, 0, 0, "out of memory for annotations");
+        status = kel_error_set(&inner, KEL_E_NOMEM, 0, 0, "out of memory for annotations");
     else if (wrapped.size > KEL__RECORD_LARGEST)
-        status = kel_error_set(&first, KEL_E_ARGUMENT, 0, 0, "annotations are larger than 16 MiB");
-    else if ((status = check_wrapped(out, &wrapped, memory, &first)) != KEL_OK && status != KEL_E_NOMEM) {
-        /* The parser may take lack of memory for wrong syntax (json_read.c). */
-        kel_status again = check_wrapped(out, &wrapped, memory, &second);
-        if (again != status)
-            status = again == KEL_OK ? KEL_OK : kel_error_set(&first, KEL_E_NOMEM, 0, 0, "out of memory for annotations");
-        else if (first.line == 1 && first.column > strlen(wrap_before))
-            first.column -= strlen(wrap_before);
-    }
+        status = kel_error_set(&inner, KEL_E_ARGUMENT, 0, 0, "they are larger than 16 MiB");
+    else
+        status = check_wrapped(out, &wrapped, memory, &inner);
     kel_text_free(&wrapped);
     if (status == KEL_OK || status == KEL_E_NOMEM)
-        return status == KEL_OK ? KEL_OK : kel_error_set(err, status, 0, 0, "%s", first.message);
-    return kel_error_set(err, KEL_E_ARGUMENT, first.line, first.column, "annotations: %s", first.message);
+        return status == KEL_OK ? KEL_OK : kel_error_set(err, status, 0, 0, "%s", inner.message);
+    /* Columns count from the text as it was given. */
+    if (inner.line == 1)
+        inner.column = inner.column > strlen(wrap_before) ? inner.column - strlen(wrap_before) : 1;
+    return kel_error_set(err, KEL_E_ARGUMENT, inner.line, inner.column, "annotations: %s", inner.message);
 }

@@ -1,11 +1,12 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Finds where a member of a JSON object stands in its text.
+/* Finds where things stand in a JSON text.
 
    What users keep in a record's annotations is theirs to the byte: 1.50 stays 1.50, and their layout stays. A parsed tree has
    lost that, so the text is walked again. It was parsed before, so nothing but strings and brackets needs to be told apart. */
 #include "json_raw.h"
 
 #include <stdbool.h>
+#include <string.h>
 
 static bool
 is_blank(char c)
@@ -28,7 +29,7 @@ skip_string(const char *bytes, size_t n, size_t i)
     for (i++; i < n && bytes[i] != '"'; i++)
         if (bytes[i] == '\\')
             i++;
-    return i + 1;
+    return i < n ? i + 1 : n;
 }
 
 /* From the first byte of a value to the comma or bracket behind it. */
@@ -51,6 +52,30 @@ skip_value(const char *bytes, size_t n, size_t i)
         i++;
     }
     return i;
+}
+
+size_t
+kel__json_value_size(const char *bytes, size_t n)
+{
+    return skip_value(bytes, n, skip_blanks(bytes, n, 0));
+}
+
+size_t
+kel__json_longest_token(const char *bytes, size_t n)
+{
+    size_t longest = 0;
+    for (size_t i = 0; i < n;) {
+        size_t end = i;
+        if (bytes[i] == '"')
+            end = skip_string(bytes, n, i);
+        else
+            while (end < n && !is_blank(bytes[end]) && strchr(",:[]{}\"", bytes[end]) == NULL)
+                end++;
+        if (end - i > longest)
+            longest = end - i;
+        i = end > i ? end : i + 1;
+    }
+    return longest;
 }
 
 const char *

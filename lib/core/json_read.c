@@ -5,10 +5,13 @@
    the nearest double. It mends the decimal point for the C library's locale, which is not safe against another thread that
    changes the locale meanwhile. Integers are recognised by value.
 
-   jansson does not say in all places that memory ran out: some show as wrong syntax, and a byte of a key or number may get
-   lost. Whoever parses must take a failure for what it says only if it happens twice in the same way (record_parse.c).
+   Lack of memory: jansson collects each token in a buffer that it doubles, ignores when that fails, and may then run past the end
+   of a token that lost its last byte. So the text is fed to it as the second element of an array whose first one is a string
+   longer than any token of the text: the buffer grows there, in the middle of a string of equal bytes, where a lost byte
+   does no harm and shows in the string's length. Other failures of allocation come out as wrong syntax; what is wrong
+   with a text is wrong every time, so a failure is believed when it happens twice in the same place.
 
-   The depth is limited by jansson (2048 levels). */
+   The depth is limited by jansson (2048 levels, one of them the array). */
 #include "json_read.h"
 #include "json_raw.h"
 
@@ -18,50 +21,113 @@
 
 /* ---- the text ---- */
 
-/* jansson counts columns in characters; its position is the number of bytes up to the end of the offending token. */
-static void
-find_place(size_t *line, size_t *column, const char *bytes, size_t n, int position)
+/* ["xxx",TEXT] with `filling` x, given out in pieces. */
+typedef struct feed {
+    const char *bytes;
+    size_t n, filling, at;
+} feed;
+
+static const char before_filling[] = "[\"", behind_filling[] = "\",", behind_text[] = "]";
+
+enum { BEFORE = sizeof before_filling - 1, BEHIND = sizeof behind_filling - 1 };
+
+static size_t
+give(void *buffer, size_t size, void *context)
 {
-    size_t end = position < 0 ? 0 : (size_t)position;
-    end = end > n ? n : end;
-    size_t begin = 0;
-    *line = 1;
-    for (size_t i = 0; i + 1 < end; i++)
-        if (bytes[i] == '\n') {
-            ++*line;
-            begin = i + 1;
-        }
-    *column = end > begin ? end - begin : 1;
+    feed *f = context;
+    const size_t text = BEFORE + f->filling + BEHIND;
+    char *out = buffer;
+    size_t n = 0;
+    for (; n < size && f->at < text + f->n + 1; n++, f->at++) {
+        if (f->at < BEFORE)
+            out[n] = before_filling[f->at];
+        else if (f->at < BEFORE + f->filling)
+            out[n] = 'x';
+        else if (f->at < text)
+            out[n] = behind_filling[f->at - BEFORE - f->filling];
+        else
+            out[n] = f->at < text + f->n ? f->bytes[f->at - text] : behind_text[0];
+    }
+    return n;
+}
+
+/* The least power of two above the text's longest token and a byte read ahead. With so many x the buffer grows for the last
+   time two bytes before the string's closing quote. */
+static size_t
+enough_filling(const char *bytes, size_t n)
+{
+    size_t longest = kel__json_longest_token(bytes, n), filling = 64;
+    while (filling < longest + 2)
+        filling *= 2;
+    return filling;
+}
+
+/* One attempt: the array, or NULL. */
+static json_t *
+load(const char *bytes, size_t n, size_t filling, json_error_t *failure)
+{
+    feed f = { bytes, n, filling, 0 };
+    json_t *array = json_load_callback(give, &f, JSON_REJECT_DUPLICATES | JSON_DECODE_INT_AS_REAL, failure);
+    if (array == NULL || json_string_length(json_array_get(array, 0)) == filling)
+        return array;
+    json_decref(array);
+    failure->text[0] = '\0';
+    return NULL;
+}
+
+/* jansson's reason in words that fit a text which is not alone; its " near '...'" is kept. */
+static kel_status
+explain(kel_error *err, const json_error_t *failure, const char *bytes, size_t n, size_t head)
+{
+    static const struct reason { enum json_error_code code; kel_status status; const char *what; } reasons[] = {
+        { json_error_duplicate_key, KEL_E_SYNTAX, "a key occurs twice" },
+        { json_error_numeric_overflow, KEL_E_RANGE, "a number is beyond the range of a double" },
+        { json_error_stack_overflow, KEL_E_SYNTAX, "it is nested too deeply" },
+        { json_error_invalid_utf8, KEL_E_SYNTAX, "it is no UTF-8" },
+        { json_error_null_character, KEL_E_SYNTAX, "\\u0000 is not allowed" },
+        { json_error_null_byte_in_key, KEL_E_SYNTAX, "\\u0000 is not allowed in a key" },
+        { json_error_end_of_input_expected, KEL_E_SYNTAX, "something stands behind its end" },
+    };
+    const enum json_error_code code = json_error_code(failure);
+    const size_t position = failure->position < 0 || (size_t)failure->position < head ? 0 : (size_t)failure->position - head;
+    const char *near = strstr(failure->text, " near ");
+    near = near == NULL ? "" : near;
+    /* Of a key jansson quotes the short ones only. */
+    if (code == json_error_duplicate_key && near[0] == '\0')
+        return kel__json_fail_token(err, bytes, n, position, "a key occurs twice: ");
+    for (size_t i = 0; i < sizeof reasons / sizeof reasons[0]; i++)
+        if (reasons[i].code == code)
+            return kel__json_fail(err, reasons[i].status, bytes, n, position, reasons[i].what, near);
+    /* The bracket behind the text was reached. */
+    if (position > n)
+        return kel__json_fail(err, KEL_E_SYNTAX, bytes, n, n, "it ends too early", "");
+    return kel__json_fail(err, KEL_E_SYNTAX, bytes, n, position, "wrong syntax", near);
 }
 
 kel_status
 kel__tree_parse(kel__tree **out, const char *bytes, size_t n, kel_error *err)
 {
     *out = NULL;
-    size_t line, column;
     const char *nul = n == 0 ? NULL : memchr(bytes, '\0', n);
-    if (nul != NULL) {
-        find_place(&line, &column, bytes, n, (int)(nul - bytes) + 1);
-        return kel_error_set(err, KEL_E_SYNTAX, line, column, "the text holds a NUL byte");
+    if (nul != NULL)
+        return kel__json_fail(err, KEL_E_SYNTAX, bytes, n, (size_t)(nul - bytes) + 1, "it holds a NUL byte", "");
+    const size_t filling = enough_filling(bytes, n), head = BEFORE + filling + BEHIND;
+    json_error_t first = { .text = "" }, second = { .text = "" };
+    json_t *array = load(bytes, n, filling, &first);
+    if (array == NULL && first.text[0] != '\0') {
+        array = load(bytes, n, filling, &second);
+        if (array == NULL && (first.position != second.position || strcmp(first.text, second.text) != 0))
+            return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for a JSON text");
+        if (array == NULL)
+            return explain(err, &first, bytes, n, head);
     }
-    json_error_t failure = { .text = "" };
-    json_t *value = json_loadb(n == 0 ? "" : bytes, n, JSON_REJECT_DUPLICATES | JSON_DECODE_INT_AS_REAL, &failure);
-    if (value != NULL) {
-        *out = (kel__tree *)value;
-        return KEL_OK;
+    /* "{}, {}" would do as elements of an array. */
+    if (json_array_size(array) != 2) {
+        json_decref(array);
+        return kel__json_fail(err, KEL_E_SYNTAX, bytes, n, kel__json_value_size(bytes, n) + 1, "something stands behind its end", "");
     }
-    if (failure.text[0] == '\0' || json_error_code(&failure) == json_error_out_of_memory)
-        return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for the tree of a JSON text");
-    find_place(&line, &column, bytes, n, failure.position);
-    /* The message quotes what stands near the failure. */
-    kel_text quoted = KEL_TEXT_INIT;
-    kel_text_quote(&quoted, failure.text, strlen(failure.text));
-    bool range = json_error_code(&failure) == json_error_numeric_overflow;
-    kel_status status = quoted.failed
-        ? kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for a message")
-        : kel_error_set(err, range ? KEL_E_RANGE : KEL_E_SYNTAX, line, column, "not valid JSON: %s", quoted.bytes);
-    kel_text_free(&quoted);
-    return status;
+    *out = (kel__tree *)array;
+    return KEL_OK;
 }
 
 void
@@ -73,7 +139,7 @@ kel__tree_free(kel__tree *tree)
 kel__node
 kel__tree_root(const kel__tree *tree)
 {
-    return (kel__node){ .value = tree };
+    return (kel__node){ .value = json_array_get((const json_t *)tree, 1) };
 }
 
 /* ---- objects and arrays ---- */

@@ -26,7 +26,7 @@ typedef struct kel__reader {
 } kel__reader;
 
 /* Parses n bytes that must be one JSON value without duplicate keys and without NUL. KEL_E_SYNTAX, or KEL_E_RANGE for a number
-   beyond a double, with line and column of the last byte that was looked at; KEL_E_NOMEM. */
+   beyond a double, with line and column (in bytes) of the end of the token that is wrong; KEL_E_NOMEM. */
 kel_status kel__tree_parse(kel__tree **out, const char *bytes, size_t n, kel_error *err);
 void kel__tree_free(kel__tree *tree);
 kel__node kel__tree_root(const kel__tree *tree);

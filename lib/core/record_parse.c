@@ -66,7 +66,7 @@ fill(kel_record *record, const kel__tree *tree, const char *bytes, size_t n, kel
 }
 
 static kel_status
-parse_once(kel_record **out, const char *bytes, size_t n, kel_error *err)
+parse(kel_record **out, const char *bytes, size_t n, kel_error *err)
 {
     kel__tree *tree = NULL;
     *out = NULL;
@@ -91,7 +91,6 @@ parse_once(kel_record **out, const char *bytes, size_t n, kel_error *err)
 kel_status
 kel_record_parse(kel_record **out, const char *bytes, size_t n, kel_error *err)
 {
-    kel_error first, second;
     if (out == NULL)
         return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "there is no place for the record");
     *out = NULL;
@@ -101,18 +100,5 @@ kel_record_parse(kel_record **out, const char *bytes, size_t n, kel_error *err)
         return kel_error_set(err, KEL_E_DATA, 0, 0, "not a record: it is larger than 16 MiB");
     if (n == 0)
         return kel_error_set(err, KEL_E_SYNTAX, 1, 1, "not a record: it is empty");
-    kel_status status = parse_once(out, bytes, n, &first);
-    /* The parser may take lack of memory for wrong syntax or lose a byte (json_read.c). What is wrong with the text is wrong
-       every time, and failing twice costs little. */
-    if (status != KEL_OK && status != KEL_E_NOMEM) {
-        kel_status again = parse_once(out, bytes, n, &second);
-        if (again == KEL_OK)
-            return KEL_OK;
-        if (again != status || second.line != first.line || second.column != first.column ||
-            strcmp(second.message, first.message) != 0)
-            return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for a record");
-    }
-    if (status != KEL_OK)
-        kel_error_set(err, status, first.line, first.column, "%s", first.message);
-    return status;
+    return parse(out, bytes, n, err);
 }

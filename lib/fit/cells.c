@@ -131,8 +131,8 @@ split_delimited(kel__cells *cells, kel_error *err)
     csv_set_delim(&cells->parser, (unsigned char)cells->mark);
     csv_set_blk_size(&cells->parser, 4096);
     size_t done = csv_parse(&cells->parser, cells->line, n, take_cell, NULL, cells);
-    int failed = done < n || csv_fini(&cells->parser, take_cell, NULL, cells) != 0 ? csv_error(&cells->parser)
-        : CSV_SUCCESS;
+    bool complete = done == n && csv_fini(&cells->parser, take_cell, NULL, cells) == 0;
+    int failed = complete ? CSV_SUCCESS : csv_error(&cells->parser);
     if (cells->no_memory || (failed != CSV_SUCCESS && failed != CSV_EPARSE))
         return no_memory(cells, err);
     if (failed == CSV_EPARSE) {

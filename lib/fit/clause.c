@@ -5,8 +5,7 @@
                            option: k=NUMBER | limits | from T to T | shared | independent
 
    The result is standard (k = 1): an expanded uncertainty is divided by its k, limits are the half-width of a
-   rectangle and divided by sqrt 3 (JCGM 100:2008, 4.3.7). Options may stand in any order behind the size, each once.
-   */
+   rectangle and divided by sqrt 3 (JCGM 100:2008, 4.3.7). Options may stand in any order behind the size, each once. */
 #include "clause.h"
 
 #include <math.h>
@@ -19,8 +18,8 @@ enum { HAS_FACTOR = 1, HAS_RANGE = 2, HAS_SORT = 4 };
 static kel_status
 fail_at(const kel__phrase *phrase, const char *p, kel_status code, const char *message, kel_error *err)
 {
-    return kel_error_set(err, code, phrase->line, phrase->line == 0 ? 0
-                         : phrase->column + (size_t)(p - phrase->start), "%s", message);
+    size_t column = phrase->line == 0 ? 0 : phrase->column + (size_t)(p - phrase->start);
+    return kel_error_set(err, code, phrase->line, column, "%s", message);
 }
 
 /* A number above zero; `begin` is where it stood. */
@@ -131,8 +130,7 @@ option(kel__clause *out, double *factor, unsigned *has, bool lot, kel__phrase *p
     }
     if (status == KEL_OK && *has == had)
         status = fail_at(phrase, word, KEL_E_SYNTAX, "a second word of the same sort (one of k=2 and limits, one of "
-                                                     "shared and independent, "
-                         "one range)", err);
+                         "shared and independent, one range)", err);
     return status;
 }
 

@@ -135,9 +135,8 @@ note_unstated(kel__adopt_warnings *warnings, const kel_content *content, const k
     for (size_t i = 0; i < content->piece_count; i++) {
         const kel_piece *piece = &content->pieces[i];
         double middle = piece->from + (piece->to - piece->from) / 2;
-        if (size_at(m->uncertainty, m->uncertainty_count, true, middle) > 0 || size_at(m->uncertainty,
-                                                                                       m->uncertainty_count, false,
-                                                                                       middle) > 0)
+        if (size_at(m->uncertainty, m->uncertainty_count, true, middle) > 0 ||
+            size_at(m->uncertainty, m->uncertainty_count, false, middle) > 0)
             continue;
         kel_text text = KEL_TEXT_INIT;
         kel_text_add(&text, "no uncertainty is stated from ");

@@ -82,11 +82,10 @@ take_jump(kel_declared_transition *list, size_t *count, kel__adopt_warnings *war
 {
     const kel__published_piece *below = &p->pieces[join - 1], *above = &p->pieces[join];
     kel__twofold x = kel__poly_variable(&p->variable, above->from);
-    double jump = kel__two_sub(kel__poly_value(above->c, above->count, x), kel__poly_value(below->c, below->count,
-                                                                                           x)).hi;
-    double rounding = negligible * fmax(kel__poly_largest(above->c, above->count, x), kel__poly_largest(below->c,
-                                                                                                        below->count,
-                                                                                                        x));
+    kel__twofold difference = kel__two_sub(kel__poly_value(above->c, above->count, x),
+                                           kel__poly_value(below->c, below->count, x));
+    double jump = difference.hi, rounding = negligible * fmax(kel__poly_largest(above->c, above->count, x),
+                                                              kel__poly_largest(below->c, below->count, x));
     size_t i = 0;
     while (i < *count && list[i].at != above->from)
         i++;

@@ -36,8 +36,8 @@ agree(const kel__item *a, const kel__item *b, bool comma)
         return false;
     kel__phrase first = kel__phrase_of(s, strlen(s), comma, 0, 0), second = kel__phrase_of(t, strlen(t), comma, 0, 0);
     double x, y;
-    return kel__phrase_temperature(&x, &first, NULL) == KEL_OK && kel__phrase_temperature(&y, &second,
-                                                                                          NULL) == KEL_OK && x == y &&
+    return kel__phrase_temperature(&x, &first, NULL) == KEL_OK &&
+           kel__phrase_temperature(&y, &second, NULL) == KEL_OK && x == y &&
            !kel__phrase_left(&first) && !kel__phrase_left(&second);
 }
 
@@ -130,7 +130,8 @@ take_items(kel__draft *draft, kel_warning *unknown, kel__item *items, size_t cou
         kel__item *item = &items[i];
         if (item->dropped || is_key(item, kel__key_decimal) != decimal)
             continue;
-        kel_status status = item->key == NULL ? keep_note(draft, unknown, item, arena, err) : item->key->take(draft, item, err);
+        kel_status status = item->key == NULL ? keep_note(draft, unknown, item, arena, err)
+                                              : item->key->take(draft, item, err);
         if (status != KEL_OK)
             return status;
     }

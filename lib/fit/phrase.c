@@ -76,10 +76,11 @@ kel__phrase_peek(kel__phrase *phrase)
 {
     if (!kel__phrase_left(phrase))
         return (kel__word){ phrase->p, 0 };
-    const char *p = phrase->p;
-    do
-        p++;
-    while (p < phrase->end && strchr("+%=[(", phrase->p[0]) == NULL && strchr("+%=[(", *p) == NULL && kel__blank(p, phrase->end) == 0);
+    static const char apart[] = "+%=[(";
+    const char *p = phrase->p + 1;
+    if (strchr(apart, *phrase->p) == NULL)
+        while (p < phrase->end && strchr(apart, *p) == NULL && kel__blank(p, phrase->end) == 0)
+            p++;
     return (kel__word){ phrase->p, (size_t)(p - phrase->p) };
 }
 
@@ -156,8 +157,8 @@ kel__number_text(double *out, const kel_unit *unit, const char *text, size_t n, 
         memcpy(copy, text, n);
     if (comma && n > 0 && (found = memchr(text, ',', n)) != NULL)
         copy[found - text] = '.';
-    kel_status status = unit == NULL ? kel_number_read(out, copy, n, &inner) : kel_unit_read(out, NULL, unit, copy, n,
-                                                                                             &inner);
+    kel_status status = unit == NULL ? kel_number_read(out, copy, n, &inner)
+                                     : kel_unit_read(out, NULL, unit, copy, n, &inner);
     return status == KEL_OK ? status : kel__error_at(err, &inner, line, column);
 }
 
@@ -171,8 +172,8 @@ kel__phrase_number(double *out, kel__phrase *phrase, const kel_unit *unit, const
     if (stop == begin)
         return kel__phrase_expected(phrase, what, err);
     phrase->p = stop;
-    return kel__number_text(out, unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line, place(phrase,
-                                                                                                         begin), err);
+    return kel__number_text(out, unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line,
+                            place(phrase, begin), err);
 }
 
 /* The unit may hold brackets of its own, "um/(m.K)". */
@@ -221,8 +222,8 @@ kel__phrase_temperature(double *out, kel__phrase *phrase, kel_error *err)
 {
     *out = NAN;
     kel__word word = kel__phrase_peek(phrase);
-    if (kel__is_word(word.p, word.n, "RT") || kel__is_word(word.p, word.n, "room") || kel__is_word(word.p, word.n,
-                                                                                                   "ambient"))
+    if (kel__is_word(word.p, word.n, "RT") || kel__is_word(word.p, word.n, "room") ||
+        kel__is_word(word.p, word.n, "ambient"))
         return kel_error_set(err, KEL_E_SYNTAX, phrase->line, place(phrase, word.p),
                              "room temperature is no number: write what the source means by it, for example 20 degC "
                              "or 293.15 K");
@@ -234,11 +235,11 @@ kel__phrase_temperature(double *out, kel__phrase *phrase, kel_error *err)
     if (name.n == 0)
         return kel_error_set(err, KEL_E_UNIT, phrase->line, place(phrase, begin),
                              "the temperature %.*s needs a unit, for example 293 K or 20 degC", (int)(stop - begin),
-                                 begin);
+                             begin);
     kel_unit unit;
     kel_error inner;
     if (kel_unit_parse(&unit, KEL_DIM_TEMPERATURE, name.p, name.n, &inner) != KEL_OK)
         return kel__error_at(err, &inner, phrase->line, place(phrase, name.p));
-    return kel__number_text(out, &unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line, place(phrase,
-                                                                                                          begin), err);
+    return kel__number_text(out, &unit, begin, (size_t)(stop - begin), phrase->comma, phrase->line,
+                            place(phrase, begin), err);
 }

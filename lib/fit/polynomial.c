@@ -4,9 +4,12 @@
    decimal digits on, so that the Chebyshev coefficients that result are right to the last bit or so and published
    values come out in all their digits.
 
-   With x = (T - C)/S, T = m + h y on an interval of midpoint m and half-width h:  x = a + b y,  a = (m - C)/S,  b =
-   h/S. Horner's scheme is run in the Chebyshev basis of y: multiply by a + b y, add the next coefficient, where y T_0
-   = T_1 and y T_j = (T_(j+1) + T_(j-1))/2. That does both changes of basis at once in n^2 operations. */
+   With x = (T - C)/S, T = m + h y on an interval of midpoint m and half-width h:
+
+       x = a + b y,  a = (m - C)/S,  b = h/S
+
+   Horner's scheme is run in the Chebyshev basis of y: multiply by a + b y, add the next coefficient, where y T_0 = T_1
+   and y T_j = (T_(j+1) + T_(j-1))/2. That does both changes of basis at once in n^2 operations. */
 #include "polynomial.h"
 
 #include <string.h>
@@ -145,7 +148,8 @@ kel__poly_chebyshev(double *out, const kel__twofold *c, size_t n, const kel__var
 {
     const kel__twofold half = kel__two(0.5);
     kel__twofold m = kel__two_mul(kel__two_sum(from, to), half), h = kel__two_mul(kel__two_sum(to, -from), half);
-    kel__twofold a = kel__two_div(kel__two_sub(m, variable->centre), variable->scale), b = kel__two_div(h, variable->scale);
+    kel__twofold a = kel__two_div(kel__two_sub(m, variable->centre), variable->scale);
+    kel__twofold b = kel__two_div(h, variable->scale);
     kel__twofold *q = work, *next = work + n;
     for (size_t j = 0; j < n; j++)
         q[j] = kel__two(0);

@@ -61,8 +61,8 @@ kel_status kel__published_read(kel__published *out, kel_input input, const char 
 kel_status kel__published_curve(kel_record **out, kel__adopt_warnings *warnings, kel__published *published,
                                 kel_error *err);
 /* What a published expansion says beside its derivative: how far from zero it is at the reference (a warning), and
-   the transitions, declared ones and jumps between its pieces, sorted. Of a coefficient curve only the declared ones.
-   */
+   the transitions, declared ones and jumps between its pieces, sorted. Of a coefficient curve only the declared
+   ones. */
 kel_status kel__published_steps(kel_declared_transition **out, size_t *count, kel__adopt_warnings *warnings,
                                 const kel__published *published,
                                 kel_error *err);

@@ -52,8 +52,8 @@ main(int argc, char **argv)
         if (flags[i] & KEL_FLAG_EXTRAPOLATED)
             outside++;
     }
-    printf("%d elements, bar of %g m, cooled from %g K to %g K at its cold end\n", ELEMENTS, length * ELEMENTS, range.hi,
-           coldest);
+    printf("%d elements, bar of %g m, cooled from %g K to %g K at its cold end\n", ELEMENTS, length * ELEMENTS,
+           range.hi, coldest);
     printf("change of length %.4g mm\n", change * 1e3);
     printf("coldest element: integral %.6g", integral[ELEMENTS - 1]);
     if (flags[ELEMENTS - 1] & KEL_FLAG_UNKNOWN_U)

@@ -108,12 +108,12 @@ make_line_record() {
     kel 0 fit line.csv --degree 1 -o line.json
 }
 
-# noisy.csv: the same line with residuals of +0.05 and -0.05 that add to nothing and tilt nothing.
+# noisy.csv: alpha = 10 + 0.02 (T - 200) from 200 K to 340 K with residuals of +0.05 and -0.05 that add to nothing and tilt nothing.
 make_noisy() {
     {
         echo "temperature [K],coefficient [1e-6/K]"
-        awk 'BEGIN { split("1 -1 -1 1 1 -1 -1 1", s, " ");
-            for (i = 0; i < 8; i++) printf "%d,%.2f\n", 100 + 20 * i, 10 + 0.4 * i + 0.05 * s[i + 1] }'
+        awk 'BEGIN { split("1 -1 1 -1 -1 1 -1 1", s, " ");
+            for (i = 0; i < 8; i++) printf "%d,%.2f\n", 200 + 20 * i, 10 + 0.4 * i + 0.05 * s[i + 1] }'
     } >noisy.csv
 }
 

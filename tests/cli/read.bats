@@ -83,7 +83,7 @@ load common
 
 @test "--include-marked takes rows with a status mark" {
     make_line
-    sed -i '6s/10.40/(10.40)/' line.csv
+    sed -i '6s/10.80/(10.80)/' line.csv
     kel 0 read line.csv --json
     same "$(json tables.0.left_out)" 1
     kel 0 read line.csv --include-marked --json

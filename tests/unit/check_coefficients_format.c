@@ -114,9 +114,9 @@ START_TEST(scatter_stays_behind)
 {
     static const double c[] = { 12e-6, 1e-6 }, scatter[] = { 1e-8, 0 }, lot[] = { 12e-8, 1e-8 };
     static const kel_piece piece = { 100, 300, 0, 2 };
-    static const kel_mode modes[] = { { KEL_MODE_FIT, "scatter", { scatter, NULL } }, { KEL_MODE_LOT,
-                                                                                        "lot spread 1 %", { lot,
-                                                                                                            NULL } } };
+    static const kel_mode modes[] = {
+        { KEL_MODE_FIT, "scatter", { scatter, NULL } }, { KEL_MODE_LOT, "lot spread 1 %", { lot, NULL } },
+    };
     static const kel_source sources[] = {
         { .name = "a.csv", .material = "QV-5", .scale = "ITS-90", .reference_temperature = NAN },
         { .name = "b.csv", .material = "QV-5b", .scale = "IPTS-68", .source = "line one\nline two",

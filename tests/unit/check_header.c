@@ -115,6 +115,7 @@ static const struct {
     { "uncertainty k=two [%]", KEL_E_SYNTAX, 0, "must be a number above zero" },
     { "uncertainty k=0 [%]", KEL_E_SYNTAX, 0, "must be a number above zero" },
     { "uncertainty k=-2 [%]", KEL_E_SYNTAX, 0, "must be a number above zero" },
+    { "uncertainty k=2,5 [%]", KEL_E_SYNTAX, 0, "must be a number above zero" },
     { "uncertainty k=nan [%]", KEL_E_SYNTAX, 0, "must be a number above zero" },
     { "standard uncertainty k=2 [%]", KEL_E_SYNTAX, 0, "is no quantity" },
     { "coefficient k=2 [%]", KEL_E_SYNTAX, 0, "is no quantity" },

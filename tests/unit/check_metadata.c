@@ -115,7 +115,8 @@ START_TEST(nothing)
     ck_assert_int_eq(read_metadata(&m, arena, false, NULL, "a comment\n\n:\n", NULL), KEL_OK);
     ck_assert(isnan(m.reference_temperature) && !m.base_stated && m.base == KEL_BASE_REFERENCE && m.material == NULL &&
               m.scale == NULL);
-    ck_assert_uint_eq(m.entry_count + m.note_count + m.warning_count + m.uncertainty_count + m.lot_count + m.transition_count, 0);
+    ck_assert_uint_eq(m.entry_count + m.note_count + m.warning_count, 0);
+    ck_assert_uint_eq(m.uncertainty_count + m.lot_count + m.transition_count, 0);
     ck_assert_ptr_null(m.lot_text);
     kel_arena_free(arena);
 }
@@ -260,7 +261,8 @@ START_TEST(refuses_settings)
     kel__metadata m;
     kel_error err = { KEL_OK, 0, 0, "" };
     kel_status status = read_metadata(&m, arena, false, set, "", &err);
-    ck_assert_msg(status == bad_settings[_i].status && err.line == 0 && err.column == 0 && strstr(err.message, bad_settings[_i].message) != NULL,
+    ck_assert_msg(status == bad_settings[_i].status && err.line == 0 && err.column == 0 &&
+                  strstr(err.message, bad_settings[_i].message) != NULL,
                   "%s: got %d at %zu:%zu (%s)", set[0], status, err.line, err.column, err.message);
     kel_arena_free(arena);
 }
@@ -291,13 +293,13 @@ START_TEST(coefficient_files)
 END_TEST
 
 static const struct { const char *text; double want; size_t column; kel_status status; } temperatures[] = {
-    { "293.15 K", 293.15, 0, KEL_OK }, { " 20 degC ", 293.15, 0, KEL_OK }, { "68\xC2\xA0\xC2\xB0" "F", 293.15, 0,
-                                                                             KEL_OK },
-    { "-459.67 degF", 0, 0, KEL_OK }, { "0K", 0, 0, KEL_OK }, { "1e3 K", 1000, 0, KEL_OK }, { "+20degC", 293.15, 0,
-                                                                                              KEL_OK },
+    { "293.15 K", 293.15, 0, KEL_OK }, { " 20 degC ", 293.15, 0, KEL_OK },
+    { "68\xC2\xA0\xC2\xB0" "F", 293.15, 0, KEL_OK }, { "-459.67 degF", 0, 0, KEL_OK }, { "0K", 0, 0, KEL_OK },
+    { "1e3 K", 1000, 0, KEL_OK }, { "+20degC", 293.15, 0, KEL_OK },
     { "-459.68 degF", NAN, 1, KEL_E_RANGE }, { "inf K", NAN, 1, KEL_E_SYNTAX }, { "nan K", NAN, 1, KEL_E_SYNTAX },
-        { "", NAN, 1, KEL_E_SYNTAX },
-    { "20", NAN, 1, KEL_E_UNIT }, { "20 K K", NAN, 6, KEL_E_SYNTAX }, { "20 kelp", NAN, 4, KEL_E_UNIT }, { "2 0 K", NAN, 3, KEL_E_UNIT },
+    { "", NAN, 1, KEL_E_SYNTAX },
+    { "20", NAN, 1, KEL_E_UNIT }, { "20 K K", NAN, 6, KEL_E_SYNTAX }, { "20 kelp", NAN, 4, KEL_E_UNIT },
+    { "2 0 K", NAN, 3, KEL_E_UNIT },
 };
 
 START_TEST(temperature)

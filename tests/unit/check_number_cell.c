@@ -121,7 +121,7 @@ static const struct {
     { "1.234,5", true, KEL_E_SYNTAX, 1, "a point, where the file declares `decimal: comma`" },
     { "1,234,5", true, KEL_E_SYNTAX, 5, "1.234,5" },
     { "1'234", false, KEL_E_SYNTAX, 1, "1'234" },
-    { "*", false, KEL_E_SYNTAX, 1, "a status mark without a number" },
+    { "*", false, KEL_E_SYNTAX, 0, "a status mark without a number" },
     { "1e400", false, KEL_E_RANGE, 0, "beyond the range of a double" },
     { "-50", false, KEL_E_RANGE, 0, "perhaps the column is in degC" },
     { "<" MINUS "50", false, KEL_E_RANGE, 1, "perhaps the column is in degC" },

@@ -152,11 +152,11 @@ static const struct annotation { const char *label, *given, *kept, *message; siz
     { "no JSON", "{\"a\": }", NULL, "annotations: not valid JSON: ", 1, 7 },
     { "nothing", "", NULL, "annotations: not valid JSON: ", 1, 1 },
     { "second line", "{\"a\": 1,\n \"b\" 2}", NULL, "annotations: not valid JSON: ", 2, 6 },
-    { "duplicate", "{\"a\": 1, \"a\": 1}", NULL, "annotations: not valid JSON: duplicate object key", 1, 12 },
+    { "duplicate", "{\"a\": 1, \"a\": 1}", NULL, "annotations: not valid JSON: a key occurs twice", 1, 12 },
     { "second member", "{}, \"more\": {}", NULL, "annotations: more is not a known key", 0, 0 },
     { "closes more than it opens", "{}}, {", NULL, "annotations: not valid JSON: ", 1, 4 },
     { "invalid UTF-8", "{\"a\": \"\xFF\"}", NULL, "annotations: not valid JSON: ", 0, 0 },
-    { "beyond a double", "{\"a\": 1e400}", NULL, "annotations: not valid JSON: real number overflow", 1, 11 },
+    { "beyond a double", "{\"a\": 1e400}", NULL, "annotations: not valid JSON: a number is beyond the range of a double", 1, 11 },
 };
 
 START_TEST(keeps_annotations)

@@ -485,7 +485,7 @@ START_TEST(duplicate_keys)
         kel_text_add_bytes(&other, quote, (size_t)(colon + 3 - quote));
         kel_text_add(&other, "0, ");
         kel_text_add(&other, quote);
-        refused("duplicate", other.bytes, other.size, KEL_E_SYNTAX, "not valid JSON: duplicate object key");
+        refused("duplicate", other.bytes, other.size, KEL_E_SYNTAX, "not valid JSON: a key occurs twice near ");
         kel_text_free(&other);
         keys++;
     }
@@ -546,8 +546,8 @@ static const struct fault { const char *label, *find, *put; kel_status status; c
     { "version between", "\"kelspan_record\": 1", "\"kelspan_record\": 1.5", KEL_E_DATA, "kelspan_record is not a count", 0 },
     { "version below", "\"kelspan_record\": 1", "\"kelspan_record\": -1", KEL_E_DATA, "kelspan_record is not a count", 0 },
     { "version as text", "\"kelspan_record\": 1", "\"kelspan_record\": \"1\"", KEL_E_DATA, "kelspan_record is not a number", 0 },
-    { "beyond a double", "293.15", "1e400", KEL_E_RANGE, "real number overflow", 5 },
-    { "far below zero", "-8.4e-6", "-1e400", KEL_E_RANGE, "real number overflow", 20 },
+    { "beyond a double", "293.15", "1e400", KEL_E_RANGE, "a number is beyond the range of a double", 5 },
+    { "far below zero", "-8.4e-6", "-1e400", KEL_E_RANGE, "a number is beyond the range of a double", 20 },
     { "not a number", "293.15", "NaN", KEL_E_SYNTAX, "not valid JSON: ", 5 },
     { "infinity", "293.15", "Infinity", KEL_E_SYNTAX, "not valid JSON: ", 5 },
     { "hexadecimal", "293.15", "0x125", KEL_E_SYNTAX, "not valid JSON: ", 5 },
@@ -556,11 +556,11 @@ static const struct fault { const char *label, *find, *put; kel_status status; c
     { "leading zero", "293.15", "0293.15", KEL_E_SYNTAX, "not valid JSON: ", 5 },
     { "bare point", "293.15", "293.", KEL_E_SYNTAX, "not valid JSON: ", 5 },
     { "comma at the end", "\"tags\": [", "\"tags\": [1,],\"more\": [", KEL_E_SYNTAX, "not valid JSON: ", 0 },
-    { "escaped NUL", "\"NT-40\"", "\"NT\\u0000\"", KEL_E_SYNTAX, "\\u0000", 0 },
+    { "escaped NUL", "\"NT-40\"", "\"NT\\u0000\"", KEL_E_SYNTAX, "\\u0000 is not allowed", 0 },
     { "lone surrogate", "\"NT-40\"", "\"\\ud800\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
     { "invalid UTF-8", "\"NT-40\"", "\"\xB0\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
     { "control byte", "\"NT-40\"", "\"\x1B[31m\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
-    { "text behind", "]}\n}\n", "]}\n}\n{}", KEL_E_SYNTAX, "end of file expected", 0 },
+    { "text behind", "]}\n}\n", "]}\n}\n{}", KEL_E_SYNTAX, "something stands behind its end", 0 },
     { "annotations no object", "\"annotations\": {\"approved\": {\"by\": \"QA\", \"limit\": 1.50},\n  \"tags\": [\"}\", \"\\\"]\"]}",
       "\"annotations\": [1]", KEL_E_DATA, "annotations is not an object", 0 },
     { "digit of a coefficient", "3.9e-6", "3.8e-6", KEL_E_DIGEST, "the content does not match its digest", 0 },
@@ -611,7 +611,7 @@ START_TEST(no_records)
     refused("only a version", "{\"kelspan_record\": 1}", 21, KEL_E_DATA, "form is missing");
     refused("a table", "# material: NT-40\n", 18, KEL_E_SYNTAX, "not valid JSON: ");
     refused("blanks", " \n", 2, KEL_E_SYNTAX, "not valid JSON: ");
-    refused("NUL", nul, sizeof nul - 1, KEL_E_SYNTAX, "the text holds a NUL byte");
+    refused("NUL", nul, sizeof nul - 1, KEL_E_SYNTAX, "it holds a NUL byte");
     kel_error err;
     kel_record *record;
     kel_record_parse(&record, nul, sizeof nul - 1, &err);
@@ -639,7 +639,7 @@ START_TEST(too_deep_or_too_large)
     size_t n = KEL__RECORD_LARGEST;
     char *text = malloc(n + 1);
     memset(text, '[', n);
-    refused("all brackets", text, n, KEL_E_SYNTAX, "maximum parsing depth reached");
+    refused("all brackets", text, n, KEL_E_SYNTAX, "it is nested too deeply");
     memset(text, ' ', n + 1);
     memcpy(text, "{}", 2);
     refused("as large as may be", text, n, KEL_E_DATA, "the key kelspan_record is missing");

@@ -48,7 +48,8 @@ KEL_API kel_status kel_rows_new(kel_rows **out, kel_input input, kel_delimiter d
 KEL_API kel_status kel_rows_next(const kel_row **row, kel_rows *rows, kel_error *err);
 /* The delimiter in use (DETECT before the first row that is no comment). */
 KEL_API kel_delimiter kel_rows_delimiter(const kel_rows *rows);
-/* SHA-256 of all bytes read so far (of the whole input once the end was reached), 64 hexadecimal digits. */
+/* SHA-256 of all bytes read so far (of the whole input once the end was reached), 64 hexadecimal digits.
+   For when reading is over: it is worked out once, rows read later do not count. */
 KEL_API const char *kel_rows_digest(kel_rows *rows);
 KEL_API void kel_rows_free(kel_rows *rows);
 
