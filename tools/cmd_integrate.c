@@ -25,11 +25,14 @@ read_interval(const job *j, interval *v, units *in)
     kel_unit unit;
     if (!option_given(j, OPT_FROM) || !option_given(j, OPT_TO))
         return usage(j, "integrate needs --from T and --to T, or --pairs FILE");
-    int status = option_quantity(j, OPT_FROM, KEL_DIM_TEMPERATURE, &v->from, &unit);
+    int status = option_quantity(j, OPT_FROM, KEL_DIM_TEMPERATURE, &v->from, &v->from_unit);
+    if (status == EXIT_FINE)
+        status = option_quantity(j, OPT_TO, KEL_DIM_TEMPERATURE, &v->to, &v->to_unit);
     if (status != EXIT_FINE)
         return status;
-    units_follow(in, &unit);
-    status = option_quantity(j, OPT_TO, KEL_DIM_TEMPERATURE, &v->to, NULL);
+    units_follow(in, &v->from_unit);
+    if (in->temperature_asked)
+        v->from_unit = v->to_unit = in->temperature;
     v->at = v->from;
     if (status == EXIT_FINE)
         status = option_quantity(j, OPT_LENGTH_AT, KEL_DIM_TEMPERATURE, &v->at, NULL);

@@ -15,7 +15,7 @@ add_label(kel_text *out, const char *label)
 }
 
 static void
-add_length(kel_text *out, const units *in, const interval *v, double ratio, double u, double t)
+add_length(kel_text *out, const units *in, const interval *v, double ratio, double u, double t, const kel_unit *unit)
 {
     double x = kel_unit_from_si(&in->length, v->length * ratio);
     double U = 2 * kel_unit_from_si(&in->length, v->length * u);
@@ -29,7 +29,7 @@ add_length(kel_text *out, const units *in, const interval *v, double ratio, doub
     }
     add_unit(out, in->length.name);
     kel_text_add(out, " at ");
-    add_temperature(out, &in->temperature, t);
+    add_temperature(out, unit, t);
     kel_text_add(out, "\n");
 }
 
@@ -140,9 +140,9 @@ interval_text(kel_text *out, const job *j, const subject *s, const interval *v, 
     const kel_answer *a = v->of;
     add_file_name(out, s->name);
     kel_text_add(out, ": from ");
-    add_temperature(out, &in->temperature, v->from);
+    add_temperature(out, &v->from_unit, v->from);
     kel_text_add(out, " to ");
-    add_temperature(out, &in->temperature, v->to);
+    add_temperature(out, &v->to_unit, v->to);
     kel_text_add(out, "\n\n");
     if (v->has_length) {
         kel_unit unit = change_unit(in, v->length * a[CHANGE].value);
@@ -150,9 +150,9 @@ interval_text(kel_text *out, const job *j, const subject *s, const interval *v, 
         add_measured(out, &unit, v->length * a[CHANGE].value, v->length * a[CHANGE].u);
         kel_text_add(out, "\n");
         add_label(out, "length");
-        add_length(out, in, v, v->from_at.value, v->from_at.u, v->from);
+        add_length(out, in, v, v->from_at.value, v->from_at.u, v->from, &v->from_unit);
         add_label(out, "");
-        add_length(out, in, v, v->to_at.value, v->to_at.u, v->to);
+        add_length(out, in, v, v->to_at.value, v->to_at.u, v->to, &v->to_unit);
     }
     add_label(out, "integral");
     kel_unit ppm = { KEL_DIM_ONE, 0, 1, 1, -6, "1e-6" };

@@ -10,6 +10,7 @@ enum { INTEGRAL, RATIO, MEAN, CHANGE, QUANTITIES };
 
 typedef struct interval {
     double from, to;            /* K */
+    kel_unit from_unit, to_unit; /* as asked, for text */
     double length, at;          /* m, at this temperature in K */
     bool has_length;
     kel_answer of[QUANTITIES];  /* CHANGE counts per length at `at`; it is asked with a length only */

@@ -129,7 +129,7 @@ text_residuals(kel_text *out, const kel_content *c, const units *in, bool fitted
     bool sources = c->source_count > 1;
     bool shared = false;
     for (size_t i = 0; i < c->row_count; i++)
-        shared = shared || c->rows[i].shared_term != 0;
+        shared = shared || fabs(c->rows[i].shared_term) > 1e-9 * fabs(c->rows[i].observed);
     const char *headings[10];
     size_t n = 0;
     if (sources)

@@ -259,6 +259,8 @@ stream_pairs(job *j, const subject *s, const char *name)
     kel_error err = { 0 };
     sink_begin(&p.out, STDOUT_FILENO);
     p.now = malloc(sizeof *p.now);
+    if (p.now != NULL)
+        p.now->n = 0;
     if (p.now == NULL)
         status = fail_memory(j);
     else if (kel_unit_parse(&p.kelvin, KEL_DIM_TEMPERATURE, "K", 1, &err) < 0 ||

@@ -10,6 +10,26 @@ enum { LONGEST_QUOTE = 64 };
 /* Integers up to here are exact as doubles. */
 static const double largest_count = 9007199254740992.0;
 
+kel_status
+kel__json_fail(kel_error *err, kel_status code, const char *bytes, size_t n, size_t position, const char *what,
+               const char *near)
+{
+    size_t end = position > n ? n : position, begin = 0, line = 1;
+    for (size_t i = 0; i + 1 < end; i++)
+        if (bytes[i] == '\n') {
+            line++;
+            begin = i + 1;
+        }
+    kel_text quoted = KEL_TEXT_INIT;
+    kel_text_quote(&quoted, near, strlen(near));
+    kel_status status = quoted.failed
+        ? kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for a message")
+        : kel_error_set(err, code, line, end > begin ? end - begin : 1, "not valid JSON: %s%s", what,
+                        quoted.size == 0 ? "" : quoted.bytes);
+    kel_text_free(&quoted);
+    return status;
+}
+
 /* What a file says may be long; what is wrong with it must still fit behind it. */
 static void
 add_cut(kel_text *text, const char *s)

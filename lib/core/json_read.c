@@ -75,12 +75,12 @@ load(const char *bytes, size_t n, size_t filling, json_error_t *failure)
     return NULL;
 }
 
-/* jansson's reason in words that fit a text which is not alone; its " near '...'" is kept. */
+/* jansson's reason in words that fit a text which is not alone; its " near '...'", which it has for short tokens, is kept. */
 static kel_status
 explain(kel_error *err, const json_error_t *failure, const char *bytes, size_t n, size_t head)
 {
     static const struct reason { enum json_error_code code; kel_status status; const char *what; } reasons[] = {
-        { json_error_duplicate_key, KEL_E_SYNTAX, "a key occurs twice" },
+        { json_error_duplicate_key, KEL_E_SYNTAX, "the key that ends here occurs twice" },
         { json_error_numeric_overflow, KEL_E_RANGE, "a number is beyond the range of a double" },
         { json_error_stack_overflow, KEL_E_SYNTAX, "it is nested too deeply" },
         { json_error_invalid_utf8, KEL_E_SYNTAX, "it is no UTF-8" },
@@ -92,9 +92,6 @@ explain(kel_error *err, const json_error_t *failure, const char *bytes, size_t n
     const size_t position = failure->position < 0 || (size_t)failure->position < head ? 0 : (size_t)failure->position - head;
     const char *near = strstr(failure->text, " near ");
     near = near == NULL ? "" : near;
-    /* Of a key jansson quotes the short ones only. */
-    if (code == json_error_duplicate_key && near[0] == '\0')
-        return kel__json_fail_token(err, bytes, n, position, "a key occurs twice: ");
     for (size_t i = 0; i < sizeof reasons / sizeof reasons[0]; i++)
         if (reasons[i].code == code)
             return kel__json_fail(err, reasons[i].status, bytes, n, position, reasons[i].what, near);
@@ -116,11 +113,11 @@ kel__tree_parse(kel__tree **out, const char *bytes, size_t n, kel_error *err)
     json_t *array = load(bytes, n, filling, &first);
     if (array == NULL && first.text[0] != '\0') {
         array = load(bytes, n, filling, &second);
-        if (array == NULL && (first.position != second.position || strcmp(first.text, second.text) != 0))
-            return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for a JSON text");
-        if (array == NULL)
+        if (array == NULL && first.position == second.position && strcmp(first.text, second.text) == 0)
             return explain(err, &first, bytes, n, head);
     }
+    if (array == NULL)
+        return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory for a JSON text");
     /* "{}, {}" would do as elements of an array. */
     if (json_array_size(array) != 2) {
         json_decref(array);

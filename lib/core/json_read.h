@@ -28,6 +28,9 @@ typedef struct kel__reader {
 /* Parses n bytes that must be one JSON value without duplicate keys and without NUL. KEL_E_SYNTAX, or KEL_E_RANGE for a number
    beyond a double, with line and column (in bytes) of the end of the token that is wrong; KEL_E_NOMEM. */
 kel_status kel__tree_parse(kel__tree **out, const char *bytes, size_t n, kel_error *err);
+/* Reports a failure at byte number `position` of the text, from 1, with line and column: "not valid JSON: what near". */
+kel_status kel__json_fail(kel_error *err, kel_status code, const char *bytes, size_t n, size_t position, const char *what,
+                          const char *near);
 void kel__tree_free(kel__tree *tree);
 kel__node kel__tree_root(const kel__tree *tree);
 

@@ -139,15 +139,13 @@ kel__shared_size(const kel__problem *problem, size_t index, const kel__row *row,
     if (shared->table != row->table)
         return 0;
     const kel_table *t = problem->tables[row->table];
-    double square = 0;
+    const kel_stated *here = NULL; /* where two ranges meet, the colder one */
     for (size_t i = 0; i < t->shared_count; i++) {
         const kel_stated *s = &t->shared[i];
-        if (row->seen->to < s->lo || row->seen->to > s->hi)
-            continue;
-        if (shared->relative)
-            square += s->relative * s->relative * value * value;
-        else if (s->dimension == (row->seen->kind == KEL_KIND_EXPANSION ? KEL_DIM_ONE : KEL_DIM_PER_KELVIN))
-            square += s->absolute * s->absolute;
+        bool has_part = shared->relative ? s->relative > 0
+                                         : s->absolute > 0 && s->dimension == (row->seen->kind == KEL_KIND_EXPANSION ? KEL_DIM_ONE : KEL_DIM_PER_KELVIN);
+        if (has_part && row->seen->to >= s->lo && row->seen->to <= s->hi && (here == NULL || s->lo < here->lo))
+            here = s;
     }
-    return shared->relative ? copysign(sqrt(square), value) : sqrt(square);
+    return here == NULL ? 0 : shared->relative ? here->relative * value : here->absolute;
 }

@@ -119,25 +119,35 @@ mend_width(kel__problem *p, kel__row *row)
 static kel_status
 measure_columns(kel__problem *p, kel_error *err)
 {
-    double *widths = kel_arena_take(p->memory, p->row_count, sizeof *widths);
+    const kel__row *mended = NULL; /* means from a reference are printed at that one temperature: found once, it serves all */
+    bool means = false;
+    for (size_t i = 0; i < p->row_count; i++) {
+        kel__row *row = &p->rows[i];
+        means |= row->seen->kind == KEL_KIND_MEAN;
+        if (row->width != 0)
+            continue;
+        if (mended != NULL && mended->column == row->column && mended->seen->to == row->seen->to)
+            row->width = mended->width;
+        else
+            mend_width(p, row);
+        mended = row;
+    }
+    double *widths = kel_arena_take(p->memory, means ? p->row_count : 0, sizeof *widths);
     if (widths == NULL)
         return no_memory(err);
-    for (size_t i = 0; i < p->row_count; i++)
-        if (p->rows[i].width == 0)
-            mend_width(p, &p->rows[i]);
     for (size_t c = 0; c < p->column_count; c++) {
         double largest = 0;
         size_t n = 0;
         for (size_t i = 0; i < p->row_count; i++)
             if (p->rows[i].column == c) {
                 largest = fmax(largest, fabs(p->rows[i].seen->value));
-                if (!p->rows[i].seen->u_stated)
+                if (p->columns[c].kind == KEL_KIND_MEAN && !p->rows[i].seen->u_stated)
                     widths[n++] = p->rows[i].width;
             }
         p->columns[c].least = fmax(p->columns[c].resolution / sqrt(12), 4 * KEL__EPS * largest);
         if (p->columns[c].least == 0)
             p->columns[c].least = 4 * KEL__EPS * 1e-9; /* a column of zeros: any size serves */
-        if (p->columns[c].kind == KEL_KIND_MEAN && n > 0) {
+        if (n > 0) {
             qsort(widths, n, sizeof *widths, ascending);
             p->columns[c].typical_width = widths[n / 2];
         }
@@ -204,20 +214,19 @@ merge_transitions(kel__problem *p, kel_error *err)
     return KEL_OK;
 }
 
-static kel_status
-find_hull(kel__problem *p, kel_error *err)
+static void
+find_hull(kel__problem *p)
 {
-    kel_interval *support = kel_arena_take(p->memory, p->row_count, sizeof *support);
-    if (support == NULL)
-        return no_memory(err);
-    for (size_t i = 0; i < p->row_count; i++)
-        support[i] = kel__support_of(p->rows[i].seen);
-    p->hull = p->range = kel__support_hull(support, p->row_count);
+    p->hull = kel__support_of(p->rows[0].seen);
+    for (size_t i = 1; i < p->row_count; i++) {
+        const kel_interval both[] = { p->hull, kel__support_of(p->rows[i].seen) };
+        p->hull = kel__support_hull(both, 2);
+    }
+    p->range = p->hull;
     if (p->options->range.lo > p->hull.lo)
         p->range.lo = fmin(p->options->range.lo, p->hull.hi);
     if (p->options->range.hi < p->hull.hi)
         p->range.hi = fmax(p->options->range.hi, p->range.lo);
-    return KEL_OK;
 }
 
 /* Joins: transitions inside the hull, without continuity, and those asked for. */
@@ -262,32 +271,54 @@ collect_joins(kel__problem *p, kel_error *err)
     return KEL_OK;
 }
 
-/* Of two rows of one column at a transition the one that adjoins the colder rows, in the table's order, lies below it. */
+/* What a column shows at one transition: the row before the present one, and the extremes of its rows' leaning. */
+typedef struct neighbours { kel__row *last; size_t rows; int most, least; } neighbours;
+
+/* Of two rows of one column at a transition the one that adjoins the colder rows, in the table's order, lies below it. A row leans by one
+   for each neighbour in its column that is colder, and against it for each that is warmer; `side` holds that until all are known. A column whose
+   rows there all lean alike says nothing, and they stay above. */
 static void
-set_sides(kel__problem *p, double at)
+set_sides_at(kel__problem *p, double at, neighbours *columns)
 {
+    for (size_t c = 0; c < p->column_count; c++)
+        columns[c] = (neighbours){ .last = NULL };
     for (size_t i = 0; i < p->row_count; i++) {
-        if (p->rows[i].seen->to != at || p->rows[i].side != 0)
+        kel__row *row = &p->rows[i], *last = columns[row->column].last;
+        columns[row->column].last = row;
+        if (last == NULL || (last->seen->to == at) == (row->seen->to == at))
             continue;
-        const kel__row *before = NULL, *after = NULL;
-        kel__row *second = NULL;
-        for (size_t j = 0; j < p->row_count; j++) {
-            kel__row *other = &p->rows[j];
-            if (other->column != p->rows[i].column || j == i)
-                continue;
-            if (j < i)
-                before = other;
-            else if (other->seen->to == at && second == NULL)
-                second = other;
-            else if (second != NULL && after == NULL)
-                after = other;
-        }
-        if (second == NULL)
-            continue;
-        bool first_below = before != NULL ? before->seen->to < at : after == NULL || after->seen->to > at;
-        p->rows[i].side = first_below ? -1 : 1;
-        second->side = first_below ? 1 : -1;
+        kel__row *there = row->seen->to == at ? row : last, *beside = there == row ? last : row;
+        there->side = (int8_t)(there->side + (beside->seen->to < at ? 1 : -1));
     }
+    for (size_t i = 0; i < p->row_count; i++) {
+        const kel__row *row = &p->rows[i];
+        neighbours *n = &columns[row->column];
+        if (row->seen->to != at)
+            continue;
+        n->most = n->rows == 0 || row->side > n->most ? row->side : n->most;
+        n->least = n->rows == 0 || row->side < n->least ? row->side : n->least;
+        n->rows++;
+    }
+    for (size_t i = 0; i < p->row_count; i++) {
+        kel__row *row = &p->rows[i];
+        const neighbours *n = &columns[row->column];
+        if (row->seen->to != at)
+            continue;
+        bool two_sides = n->most > n->least && n->most >= 0 && n->least <= 0;
+        bool below = row->side > 0 || (row->side == 0 && n->most == 0);
+        row->side = !two_sides ? 0 : below ? -1 : 1;
+    }
+}
+
+static kel_status
+set_sides(kel__problem *p, kel_error *err)
+{
+    neighbours *columns = kel_arena_take(p->memory, p->column_count, sizeof *columns);
+    if (columns == NULL)
+        return no_memory(err);
+    for (size_t i = 0; i < p->transition_count; i++)
+        set_sides_at(p, p->transitions[i].at, columns);
+    return KEL_OK;
 }
 
 /* A step is fitted from the rows whose interval crosses it; without one there is nothing to fit it from. */
@@ -299,7 +330,7 @@ check_steps(const kel__problem *p, kel_error *err)
         bool crossed = p->transitions[k].step != KEL_STEP_FITTED;
         for (size_t i = 0; i < p->row_count && !crossed; i++) {
             const kel__row *row = &p->rows[i];
-            crossed = row->seen->kind != KEL_KIND_COEFFICIENT &&
+            crossed = row->seen->kind != KEL_KIND_COEFFICIENT && row->seen->from != row->seen->to &&
                       kel__above(row->seen->from, 0, at) != kel__above(row->seen->to, row->side, at);
         }
         if (!crossed) {
@@ -351,11 +382,8 @@ kel__problem_make(kel__problem *problem, kel_arena *memory, const kel_table *con
     if ((status = collect_rows(problem, err)) < 0 || (status = measure_columns(problem, err)) < 0 ||
         (status = collect_shared(problem, err)) < 0 || (status = merge_transitions(problem, err)) < 0)
         return status;
-    if ((status = find_hull(problem, err)) < 0 || (status = collect_joins(problem, err)) < 0)
-        return status;
-    for (size_t i = 0; i < problem->transition_count; i++)
-        set_sides(problem, problem->transitions[i].at);
-    if ((status = check_steps(problem, err)) < 0)
+    find_hull(problem);
+    if ((status = collect_joins(problem, err)) < 0 || (status = set_sides(problem, err)) < 0 || (status = check_steps(problem, err)) < 0)
         return status;
     classify(problem);
     return KEL_OK;

@@ -54,7 +54,8 @@ kel__row_evaluate(const kel__problem *problem, const kel__solution *solution, co
     for (size_t i = 0; i < k; i++) {
         z[i] = 0;
         for (size_t j = 0; j < l->curve; j++)
-            z[i] += solution->basis[i * l->curve + j] * gradient[j] / r.u;
+            z[i] += solution->basis[i * l->curve + j] * gradient[j];
+        z[i] /= r.u;
     }
     for (size_t j = 0; j < problem->shared_count; j++)
         z[k + j] = kel__shared_size(problem, j, row, model.value) / r.u;

@@ -132,9 +132,9 @@ check_zero(kel_table *t, kel_error *err)
         kel_observation *o = &t->inner->observed[i];
         if (!at_reference(o))
             continue;
-        /* The digit is a decimal and so is the value; both were rounded to doubles. */
-        double u = u_at_reference(t, o), digit = t->columns[o->column].resolution * (1 + 1e-12);
-        if (!(fabs(o->value) <= digit || fabs(o->value) <= 3 * u))
+        /* Digit, u and value are decimals that were rounded to doubles. */
+        double u = u_at_reference(t, o), allowed = fmax(t->columns[o->column].resolution, 3 * u);
+        if (!(fabs(o->value) <= allowed * (1 + 1e-12)))
             return refuse_nonzero(t, o, u, err);
         o->left_out = kel__zero_reason;
     }

@@ -5,10 +5,11 @@
 
        e against m, row by row:       |e - m (T - r)| <= d_e + d_m |T - r|
        e against a, between rows:     s = (e_2 - e_1)/(T_2 - T_1) is the mean of a between T_1 and T_2, so
-                                      min(a_1, a_2) - w <= s <= max(a_1, a_2) + w,    w = d_a + 2 d_e/(T_2 - T_1) + b/2
+                                      min(a_1, a_2) - w <= s <= max(a_1, a_2) + w,
+                                      w = d_a + 2 d_e/(T_2 - T_1) + 3 (T_2 - T_1)^2 |a''|/12
 
-   where b is the spread of a over these rows and their neighbours, which leaves room for curvature. Without e,
-   m (T - r) stands for it with d_m |T - r|. In the base `current length` s is the slope of ln(1 + e). Pairs across a
+   The last term is three times what a parabola can rise above both of its ends in the mean, with a'' the larger of the
+   second differences on either side. Without e, m (T - r) stands for it with d_m |T - r|. In the base `current length` s is the slope of ln(1 + e). Pairs across a
    declared transition, rows that are left out, marked values and means over intervals take no part. */
 #include "table_inner.h"
 
@@ -131,16 +132,16 @@ compare_means(const kel_table *t, const line *lines, size_t n)
     return f;
 }
 
-/* Smallest and largest coefficient of rows i - 1 to i + 2. */
+/* |a''| at the inner one of three rows; 0 where there are no three. */
 static double
-spread(const line *lines, size_t n, size_t i)
+bend(const line *lines, size_t n, size_t inner)
 {
-    double lo = INFINITY, hi = -INFINITY;
-    for (size_t k = i == 0 ? 0 : i - 1; k < n && k <= i + 2; k++) {
-        lo = fmin(lo, lines[k].a);
-        hi = fmax(hi, lines[k].a);
-    }
-    return hi - lo;
+    if (inner == 0 || inner + 1 >= n)
+        return 0;
+    const line *p = &lines[inner - 1], *q = &lines[inner], *r = &lines[inner + 1];
+    double left = (q->a - p->a) / (q->at - p->at), right = (r->a - q->a) / (r->at - q->at);
+    double second = fabs(2 * (right - left) / (r->at - p->at));
+    return isfinite(second) ? second : 0;
 }
 
 static findings
@@ -153,7 +154,8 @@ compare_coefficients(const kel_table *t, const line *lines, size_t n)
         if (isnan(e_p) || isnan(e_q) || isnan(p->a) || isnan(q->a) || !(width > 0) || crosses(t, p->at, q->at))
             continue;
         double s = (t->base == KEL_BASE_CURRENT ? log1p(e_q) - log1p(e_p) : e_q - e_p) / width;
-        double w = digit(t, KEL_KIND_COEFFICIENT) + (d_p + d_q) / width + spread(lines, n, i) / 2;
+        double curved = width * width * fmax(bend(lines, n, i), bend(lines, n, i + 1)) / 4;
+        double w = digit(t, KEL_KIND_COEFFICIENT) + (d_p + d_q) / width + curved;
         if (s < fmin(p->a, q->a) - w || s > fmax(p->a, q->a) + w)
             note(&f, q, s, (p->a + q->a) / 2);
     }

@@ -37,7 +37,7 @@ kel__row_u(const kel__problem *problem, const kel__solution *solution, const kel
     const kel__column *column = &problem->columns[row->column];
     if (o->u_stated) {
         bool alone = o->u_relative == 0 && o->u_absolute > 0;
-        double relative = o->u_relative * value, rounding = alone ? 0 : column->resolution / sqrt(12);
+        double relative = o->u_relative * value, rounding = alone ? 0 : column->least;
         return sqrt(o->u_absolute * o->u_absolute + relative * relative + rounding * rounding);
     }
     double s = solution->scatter[row->column];
@@ -46,24 +46,25 @@ kel__row_u(const kel__problem *problem, const kel__solution *solution, const kel
     return hypot(s / row->width, column->least);
 }
 
-/* s of one column by its equation in s^2; the left side falls, so that Newton's steps from s = 0 approach from one side. */
+/* s of one column by its equation in v = s^2. The reciprocal of the sum S(v) is concave and rises (for equal w it is a line), so that Newton's
+   steps on 1/S = 1/freedom from v = 0 approach from below, in a few steps however small the floor is. */
 static double
 solve_scatter(const kel__problem *p, size_t c, const double *residual, double freedom)
 {
     double least2 = p->columns[c].least * p->columns[c].least, v = 0;
     for (int step = 0; step < 100; step++) {
-        double f = -freedom, slope = 0;
+        double sum = 0, slope = 0;
         for (size_t i = 0; i < p->row_count; i++) {
             const kel__row *row = &p->rows[i];
             if (row->column != c || row->seen->u_stated)
                 continue;
             double w2 = 1 / (row->width * row->width), u2 = v * w2 + least2, r2 = residual[i] * residual[i];
-            f += r2 / u2;
+            sum += r2 / u2;
             slope -= r2 * w2 / (u2 * u2);
         }
-        if (f <= 0 || slope == 0)
+        if (sum <= freedom || slope == 0)
             break;
-        double next = v - f / slope;
+        double next = v - (sum - freedom) / slope * (sum / freedom);
         bool done = fabs(next - v) <= 4 * KEL__EPS * next;
         v = next;
         if (done)

@@ -3,11 +3,12 @@
 
        rows 5 .. 100  x  scatter 0.1, 1, 5 %  x  four curves  x  u stated or not,
 
-   with coefficient, mean and expansion columns, and equal and unequal spacing, taking turns. Every table is fitted with each
-   degree that the library's candidates carry. Two errors of a fit are measured over the range: the rms difference of its alpha
-   from the true one, and that of its expansion, which is what most answers are made of. For each kind: the rms error (over
-   its tables) of what a rule chose, divided by that of the one degree that would have been best for the kind, which nobody
-   knows beforehand; 1 is perfect, and a rule that adapts to each table can come out below. The rules, from the same sums:
+   with coefficient, mean and expansion columns, and equal and unequal spacing, taking turns. Every table is fitted with
+   each degree that the library's candidates carry. Two errors of a fit are measured over the range: the rms difference
+   of its alpha from the true one, and that of its expansion, which is what most answers are made of. For each kind: the
+   rms error (over its tables) of what a rule chose, divided by that of the one degree that would have been best for the
+   kind, which nobody knows beforehand; 1 is perfect, and a rule that adapts to each table can come out below. The
+   rules, from the same sums:
 
        kelspan   the library's choice
        Akaike    n ln(RSS/n) + 2p + 2p(p + 1)/(n - p - 1), p = k + 1    (C. Hurvich, C. Tsai, Biometrika 76 (1989) 297)
@@ -18,121 +19,13 @@
 
    RSS of mean values counts with the squares of the intervals, as in the fit. Prints a line a kind and a summary; the
    numbers are the same on every run. */
-#include <math.h>
-#include <stdint.h>
 #include <stdio.h>
 #include <stdlib.h>
 
-#include <kelspan-fit.h>
+#include "simulated.h"
 
-enum { TABLES = 24, DEGREES = 11, ROWS_MAX = 100, GRID = 200, RULES = 4, ERRORS = 2, KINDS_MAX = 144 };
-static const double REFERENCE = 293.15;
+enum { TABLES = 24, DEGREES = 11, RULES = 4, ERRORS = 2, KINDS_MAX = 144 };
 static const char *const rules[RULES] = { "kelspan", "Akaike", "Bayes", "trial" };
-
-/* ---- curves ---- */
-
-/* Heat capacity of a Debye solid over its limit, 3 y^3 int_0^(1/y) x^4 e^x/(e^x - 1)^2 dx with y = T/theta, by Simpson's rule. */
-static double
-debye(double y)
-{
-    enum { PANELS = 64 };
-    double top = 1.0 / y, h = top / PANELS, sum = 0.0;
-    for (int i = 1; i <= PANELS; i++) {
-        double x = i * h, s = x > 600.0 ? 0.0 : x * x / (2.0 * sinh(x / 2.0));
-        sum += s * s * (i == PANELS ? 1.0 : i % 2 ? 4.0 : 2.0);
-    }
-    return 3.0 * y * y * y * sum * h / 3.0;
-}
-
-static double
-cold(double t)
-{
-    return 23e-6 * debye(t / 390.0) * (1.0 + 1.2e-4 * t);
-}
-
-static double
-steel(double t)
-{
-    return 11.2e-6 + 8.5e-9 * (t - 293.0) - 2.5e-12 * (t - 293.0) * (t - 293.0);
-}
-
-static double
-line(double t)
-{
-    return 8.4e-6 + 3.1e-9 * (t - 293.0);
-}
-
-static double
-bump(double t)
-{
-    double x = (t - 760.0) / 80.0;
-    return 12e-6 + 4e-9 * (t - 293.0) + 4e-6 * exp(-x * x);
-}
-
-static const struct { const char *name; double (*alpha)(double); double lo, hi; } curves[] = {
-    { "cold", cold, 10.0, 300.0 }, { "steel", steel, 293.15, 1000.0 }, { "line", line, 293.15, 600.0 }, { "bump", bump, 293.15, 1100.0 },
-};
-
-static double
-integral(double (*alpha)(double), double a, double b)
-{
-    enum { PANELS = 40 };
-    double h = (b - a) / PANELS, sum = alpha(a) + alpha(b);
-    for (int i = 1; i < PANELS; i++)
-        sum += alpha(a + i * h) * (i % 2 ? 4.0 : 2.0);
-    return sum * h / 3.0;
-}
-
-/* ---- tables ---- */
-
-typedef struct kind {
-    size_t n, curve;
-    double scatter;
-    bool unequal, stated;
-    kel_kind column;
-} kind;
-
-/* xorshift64* for uniform numbers, Box and Muller's pair for normal ones. */
-static double
-uniform(uint64_t *state)
-{
-    *state ^= *state >> 12;
-    *state ^= *state << 25;
-    *state ^= *state >> 27;
-    return ((double)((*state * UINT64_C(2685821657736338717)) >> 11) + 0.5) / 9007199254740992.0;
-}
-
-static double
-normal(uint64_t *state)
-{
-    double r = sqrt(-2.0 * log(uniform(state)));
-    return r * cos(6.283185307179586 * uniform(state));
-}
-
-/* The scatter is a share of the largest coefficient, or of the largest expansion; a mean value has the expansion's. */
-static void
-draw(kel_observation *rows, const kind *k, uint64_t *state)
-{
-    double (*alpha)(double) = curves[k->curve].alpha;
-    double lo = curves[k->curve].lo, hi = curves[k->curve].hi, largest = 0.0;
-    for (int i = 0; i <= 50; i++) {
-        double t = lo + (hi - lo) * i / 50.0;
-        largest = fmax(largest, fabs(k->column == KEL_KIND_COEFFICIENT ? alpha(t) : integral(alpha, REFERENCE, t)));
-    }
-    for (size_t i = 0; i < k->n; i++) {
-        double x = (double)i / (double)(k->n - 1), t = lo + (hi - lo) * (k->unequal ? pow(x, 1.7) : x), u = k->scatter * largest;
-        bool coefficient = k->column == KEL_KIND_COEFFICIENT;
-        if (!coefficient && fabs(t - REFERENCE) < 2.0)
-            t = REFERENCE + (t < REFERENCE ? -2.0 : 2.0);
-        double value = coefficient ? alpha(t) : integral(alpha, REFERENCE, t);
-        if (k->column == KEL_KIND_MEAN) {
-            value /= t - REFERENCE;
-            u /= fabs(t - REFERENCE);
-        }
-        rows[i] = (kel_observation){ .kind = k->column, .from = coefficient ? t : REFERENCE, .to = t, .value = value + u * normal(state),
-                                     .u_absolute = k->stated ? u : 0.0, .u_stated = k->stated, .printed_lo = t, .printed_hi = t };
-    }
-}
 
 /* ---- one table ---- */
 
@@ -147,15 +40,12 @@ stop(const char *what, const kel_error *err)
 static void
 judge(double square[ERRORS], double *rss, const kel_record *record, const kind *k)
 {
-    double (*alpha)(double) = curves[k->curve].alpha;
-    double lo = curves[k->curve].lo, hi = curves[k->curve].hi;
     square[0] = square[1] = *rss = 0.0;
     for (int i = 0; i <= GRID; i++) {
-        double t = lo + (hi - lo) * i / GRID;
-        kel_answer a, e;
-        kel_record_coefficient(&a, record, t, NULL); /* a mean table may end 2 K off the reference: extrapolated is fine here */
-        kel_record_expansion(&e, record, t, NULL);
-        double da = a.value - alpha(t), de = e.value - integral(alpha, REFERENCE, t);
+        kel_answer a, e; /* a mean table may end 2 K off the reference: extrapolated is fine here */
+        kel_record_coefficient(&a, record, truth[k->curve][i].t, NULL);
+        kel_record_expansion(&e, record, truth[k->curve][i].t, NULL);
+        double da = a.value - truth[k->curve][i].alpha, de = e.value - truth[k->curve][i].expansion;
         square[0] += da * da / (GRID + 1);
         square[1] += de * de / (GRID + 1);
     }
@@ -173,7 +63,8 @@ measure(double criterion[RULES], const kel_candidate *c, double rss, const kind 
     double n = (double)k->n, m = (double)c->parameters, p = m + 1.0, of_rss = n * log(rss / n);
     bool spare = k->column == KEL_KIND_COEFFICIENT || n - m >= fmax(2.0, floor(n / 2.0)) || c->degree == 0;
     criterion[0] = c->chosen ? 0.0 : (double)INFINITY;
-    criterion[1] = k->stated ? c->chi2 + 2.0 * m + 2.0 * m * p / (n - m - 1.0) : of_rss + 2.0 * p + 2.0 * p * (p + 1.0) / (n - p - 1.0);
+    criterion[1] = k->stated ? c->chi2 + 2.0 * m + 2.0 * m * p / (n - m - 1.0)
+                             : of_rss + 2.0 * p + 2.0 * p * (p + 1.0) / (n - p - 1.0);
     if (n - (k->stated ? m : p) - 1.0 <= 0.0)
         criterion[1] = (double)INFINITY;
     criterion[2] = k->stated ? c->chi2 + m * log(n) : of_rss + p * log(n);
@@ -280,7 +171,8 @@ static void
 summarise(double (*ratio)[ERRORS][RULES], const kind *kinds, size_t n, bool stated, size_t from, size_t to)
 {
     for (int e = 0; e < ERRORS; e++) {
-        printf("u %-10s  %-13s  %-9s", stated ? "stated" : "not stated", from == 0 ? "below 16 rows" : "from 16 rows", e == 0 ? "alpha" : "expansion");
+        printf("u %-10s  %-13s  %-9s", stated ? "stated" : "not stated", from == 0 ? "below 16 rows" : "from 16 rows",
+               e == 0 ? "alpha" : "expansion");
         for (int r = 0; r < RULES; r++) {
             double list[KINDS_MAX];
             size_t m = 0;
@@ -302,7 +194,9 @@ main(void)
     static kind kinds[KINDS_MAX];
     static double ratio[KINDS_MAX][ERRORS][RULES];
     size_t n = 0;
-    printf("rows, scatter, curve, spacing, column, u; for alpha, then for the expansion: best degree, its error, error of each rule over that:");
+    prepare();
+    printf("rows, scatter, curve, spacing, column, u; for alpha, then for the expansion: best degree, its error, error "
+           "of each rule over that:");
     for (int r = 0; r < RULES; r++)
         printf(" %s%s", rules[r], r < RULES - 1 ? "," : "; mean degree of each\n");
     for (int stated = 0; stated < 2; stated++)
@@ -310,11 +204,17 @@ main(void)
             for (size_t j = 0; j < sizeof scatters / sizeof scatters[0]; j++)
                 for (size_t c = 0; c < sizeof curves / sizeof curves[0]; c++, n++) {
                     /* sums of indices: every column and spacing meets every count, scatter and curve */
-                    kinds[n] = (kind){ .n = counts[i], .curve = c, .scatter = scatters[j], .unequal = (i + j / 2 + c) % 2 == 1,
-                                       .stated = stated == 1, .column = (kel_kind)((i + j + c) % 3) };
+                    kinds[n] = (kind){ .n = counts[i],
+                                       .curve = c,
+                                       .scatter = scatters[j],
+                                       .unequal = (i + j / 2 + c) % 2 == 1,
+                                       .stated = stated == 1,
+                                       .column = (kel_kind)((i + j + c) % 3) };
                     run_kind(ratio[n], &kinds[n], n);
                 }
-    printf("\nerror over that of the best degree in hindsight, %zu kinds of %d tables each: median, nine tenths, worst\n", n, TABLES);
+    printf(
+        "\nerror over that of the best degree in hindsight, %zu kinds of %d tables each: median, nine tenths, worst\n",
+        n, TABLES);
     for (int stated = 0; stated < 2; stated++) {
         summarise(ratio, kinds, n, stated == 1, 0, 16);
         summarise(ratio, kinds, n, stated == 1, 16, ROWS_MAX + 1);

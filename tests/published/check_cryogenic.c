@@ -1,12 +1,13 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* NIST's correlations for technical solids at low temperature: y(T) = 1e5 (L - L293)/L293 = a + b T + .. + e T^4 above T_low,
-   the constant f below. Each is sampled, fitted and recovered.
+/* NIST's correlations for technical solids at low temperature: y(T) = 1e5 (L - L293)/L293 = a + b T + .. + e T^4 above
+   T_low, the constant f below. Each is sampled, fitted and recovered.
 
-   The published y(293 K) is not exactly zero, so the samples are y(T) - y(293 K), which is. alpha = dy/dT is a polynomial of
-   degree 2, or 3 where e is not 0: the fit has the right form, and what it misses by comes from rounding alone. Two limits
-   therefore: 1e-12 absolute in 1/K and in expansion everywhere, and a bound that follows from the samples: they are exact to
-   q = eps/2 max|y| (or half a printed digit), the solver adds a few eps of the same size, and least squares on n rows hands on at
-   most sqrt(n) cond_2 of that, in alpha divided by the length scale (T_high - T_low)/2.
+   The published y(293 K) is not exactly zero, so the samples are y(T) - y(293 K), which is. alpha = dy/dT is a
+   polynomial of degree 2, or 3 where e is not 0: the fit has the right form, and what it misses by comes from rounding
+   alone. Two limits therefore: 1e-12 absolute in 1/K and in expansion everywhere, and a bound that follows from the
+   samples: they are exact to q = eps/2 max|y| (or half a printed digit), the solver adds a few eps of the same size,
+   and least squares on n rows hands on at most sqrt(n) cond_2 of that, in alpha divided by the length scale (T_high -
+   T_low)/2.
 
    Figures and source: nist_cryogenic.csv, nist_cryogenic_values.csv. */
 #include <float.h>
@@ -79,7 +80,8 @@ static void
 hold(const kel_record *record, const solid *s, double from, double condition, double q, const char *way)
 {
     double scale = (HIGH - s->low) / 2.0, bound = sqrt((double)SAMPLES) * condition;
-    double limit_e = fmin(REQUIRED, bound * q), limit_a = fmin(REQUIRED, bound * q / scale * (s->degree + 1) * (s->degree + 1));
+    double limit_e = fmin(REQUIRED, bound * q),
+           limit_a = fmin(REQUIRED, bound * q / scale * (s->degree + 1) * (s->degree + 1));
     double worst_e = 0.0, worst_a = 0.0;
     for (int i = 0; i <= 1000; i++) {
         double t = from + (HIGH - from) * i / 1000.0;
@@ -121,11 +123,13 @@ hold_rows(const kel_record *record, const solid *s, const figures *values, doubl
     ck_assert_int_ge(held, 7); /* of ten; the plateau of the one solid with T_low = 80 K has three */
 }
 
-/* Fits rows of one kind, exact to a double, or the same as text with digits to 1e-17 (expansion) or 1e-20 1/K (coefficient). */
+/* Fits rows of one kind, exact to a double, or the same as text with digits to 1e-17 (expansion) or 1e-20 1/K
+ * (coefficient). */
 static void
 recover(kel_kind kind, bool text, int row)
 {
-    figures *f = figures_read("tests/published/nist_cryogenic.csv"), *values = figures_read("tests/published/nist_cryogenic_values.csv");
+    figures *f = figures_read("tests/published/nist_cryogenic.csv"),
+            *values = figures_read("tests/published/nist_cryogenic_values.csv");
     solid s = solid_of(f, (size_t)row);
     kel_observation rows[SAMPLES];
     char *table_text = malloc(SAMPLES * 64 + 256);
@@ -154,7 +158,9 @@ recover(kel_kind kind, bool text, int row)
     double size = kind == KEL_KIND_EXPANSION ? s.largest : s.largest_alpha * (HIGH - s.low);
     double printed = !text ? 0.0 : kind == KEL_KIND_EXPANSION ? 0.5e-17 : 0.5e-20 * (HIGH - s.low);
     hold(record, &s, s.low, report->condition, 16.0 * DBL_EPSILON * size + printed,
-         kind == KEL_KIND_EXPANSION ? text ? "expansion, text" : "expansion" : text ? "coefficient, text" : "coefficient");
+         kind == KEL_KIND_EXPANSION ? text ? "expansion, text" : "expansion"
+         : text                     ? "coefficient, text"
+                                    : "coefficient");
     hold_rows(record, &s, values, s.low);
     kel_fit_report_free(report);
     kel_record_free(record);
@@ -168,10 +174,12 @@ START_TEST(from_coefficient) { recover(KEL_KIND_COEFFICIENT, false, _i); } END_T
 START_TEST(from_expansion_text) { recover(KEL_KIND_EXPANSION, true, _i); } END_TEST
 START_TEST(from_coefficient_text) { recover(KEL_KIND_COEFFICIENT, true, _i); } END_TEST
 
-/* With the plateau below T_low as a second piece: the correlation steps there by the printed jump, and the step is fitted. */
+/* With the plateau below T_low as a second piece: the correlation steps there by the printed jump, and the step is
+ * fitted. */
 START_TEST(plateau)
 {
-    figures *f = figures_read("tests/published/nist_cryogenic.csv"), *values = figures_read("tests/published/nist_cryogenic_values.csv");
+    figures *f = figures_read("tests/published/nist_cryogenic.csv"),
+            *values = figures_read("tests/published/nist_cryogenic_values.csv");
     solid s = solid_of(f, (size_t)_i);
     char text[(SAMPLES + COLD_SAMPLES) * 64 + 256];
     int n = sprintf(text, "# reference temperature: 293 K\n# contracts on heating: yes\n# transition: %g K step\n"

@@ -4,8 +4,9 @@
    With A the rows' functionals, D their independent variances and F_j the column of a shared error times its size,
        V = D + sum F_j F_j',   H = (A' V^-1 A)^-1 A' V^-1,   c = H y,
        part of the scatter  g' H D H' g,   of error j  (g' H F_j)^2,   together  g' (A' V^-1 A)^-1 g
-   for an answer g. Here V is made and inverted as it stands, in 33 digits, on powers of (T - 200 K)/100 K; relative errors
-   are iterated to the curve's own value. The library never forms V; its errors are parameters with prior rows. */
+   for an answer g. Here V is made and inverted as it stands, in 33 digits, on powers of (T - 200 K)/100 K; relative
+   errors are iterated to the curve's own value. The library never forms V; its errors are parameters with prior rows.
+ */
 #include <math.h>
 
 #include "../support/making.h"
@@ -35,7 +36,8 @@ integral_row(quad row[K], quad a, quad b)
 
 typedef struct direct {
     quad a[N][K], y[N];
-    quad absolute[N], relative[N], resolution; /* independent u: absolute^2 + (relative curve)^2, with resolution^2/12 where relative */
+    quad absolute[N], relative[N],
+        resolution; /* independent u: absolute^2 + (relative curve)^2, with resolution^2/12 where relative */
     quad shared_relative[N], shared_absolute[N];
     quad c[K], h[K][N], d[N], f[SHARED][N], covariance[K * K];
 } direct;
@@ -53,10 +55,12 @@ static void
 direct_solve(direct *q)
 {
     static quad v[N * N];
-    for (int step = 0; step < 40; step++) { /* gains a factor of some hundred each; the first step starts from the printed values */
+    for (int step = 0; step < 40;
+         step++) { /* gains a factor of some hundred each; the first step starts from the printed values */
         for (int i = 0; i < N; i++) {
             quad fitted = step == 0 ? q->y[i] : dot(q->a[i], q->c), r = q->relative[i] * fitted;
-            q->d[i] = q->absolute[i] * q->absolute[i] + r * r + (q->relative[i] > 0 ? q->resolution * q->resolution / 12 : 0);
+            q->d[i] =
+                q->absolute[i] * q->absolute[i] + r * r + (q->relative[i] > 0 ? q->resolution * q->resolution / 12 : 0);
             q->f[0][i] = q->shared_relative[i] * fitted;
             q->f[1][i] = q->shared_absolute[i];
         }
@@ -112,9 +116,11 @@ static void
 hold(const kel_record *record, const direct *q, double digits, const char *what)
 {
     enum { ANSWERS = 9 };
-    static const struct { kel_quantity quantity; double from, to; } list[ANSWERS] = {
-        { KEL_COEFFICIENT, 100, 100 }, { KEL_COEFFICIENT, 230, 230 }, { KEL_COEFFICIENT, 310, 310 }, { KEL_EXPANSION, 80, 80 },
-        { KEL_EXPANSION, 310, 310 }, { KEL_INTEGRAL, 100, 200 }, { KEL_INTEGRAL, 250, 250.001 }, { KEL_MEAN, 120, 300 }, { KEL_MEAN, 150, 150 },
+    static const struct { kel_quantity quantity; double from, to;
+    } list[ANSWERS] = {
+        { KEL_COEFFICIENT, 100, 100 },  { KEL_COEFFICIENT, 230, 230 }, { KEL_COEFFICIENT, 310, 310 },
+        { KEL_EXPANSION, 80, 80 },      { KEL_EXPANSION, 310, 310 },   { KEL_INTEGRAL, 100, 200 },
+        { KEL_INTEGRAL, 250, 250.001 }, { KEL_MEAN, 120, 300 },        { KEL_MEAN, 150, 150 },
     };
     quad g[ANSWERS][K];
     for (int i = 0; i < ANSWERS; i++) {
@@ -182,7 +188,8 @@ START_TEST(mixed_kinds)
     static direct q;
     q = (direct){ .resolution = 0 };
     kel_observation rows[N];
-    static const kel_column columns[] = { { .kind = KEL_KIND_COEFFICIENT, .unit = "1/K" }, { .kind = KEL_KIND_MEAN, .unit = "1/K" },
+    static const kel_column columns[] = { { .kind = KEL_KIND_COEFFICIENT, .unit = "1/K" },
+                                          { .kind = KEL_KIND_MEAN, .unit = "1/K" },
                                           { .kind = KEL_KIND_EXPANSION, .unit = "1" } };
     for (int i = 0; i < N; i++) {
         kel_kind kind = (kel_kind)(i % 3);
@@ -203,7 +210,8 @@ START_TEST(mixed_kinds)
     direct_solve(&q);
     kel_table *table;
     kel_error err = { 0 };
-    made(kel_table_from_arrays(&table, "mixed", columns, 3, rows, N, REFERENCE, KEL_BASE_REFERENCE, &err), &err, "arrays");
+    made(kel_table_from_arrays(&table, "mixed", columns, 3, rows, N, REFERENCE, KEL_BASE_REFERENCE, &err), &err,
+         "arrays");
     const int degree = K - 1;
     kel_fit_options options = degree_of(&degree);
     kel_record *record = make_fit_of(table, &options);
@@ -227,7 +235,8 @@ static const struct {
     { "column, shared in a range", "# uncertainty: 6 % k=2 from 100 K to 200 K\n", 0, 0, 0.03, 0, 100, 200, true },
     { "percent of the curve", "# uncertainty: 1.5 % independent\n", 0, 0.015, 0, 0, 0, 1000, false },
     { "percent and absolute", "# uncertainty: 1.5 % + 0.3 [1e-6/K] independent\n", 3e-7, 0.015, 0, 0, 0, 1000, false },
-    { "percent, shared percent", "# uncertainty: 1.5 % independent\n# uncertainty: 2 % shared\n", 0, 0.015, 0.02, 0, 0, 1000, false },
+    { "percent, shared percent", "# uncertainty: 1.5 % independent\n# uncertainty: 2 % shared\n", 0, 0.015, 0.02, 0, 0,
+      1000, false },
 };
 
 START_TEST(stated_errors)
@@ -235,12 +244,15 @@ START_TEST(stated_errors)
     static direct q;
     q = (direct){ .resolution = (quad)1e-8 };
     char text[2048];
-    int n = sprintf(text, "# reference temperature: 293.15 K\n%stemperature [K],coefficient [1e-6/K]%s\n", stated[_i].metadata,
-                    stated[_i].column ? ",uncertainty [1e-6/K]" : "");
+    int n = sprintf(text, "# reference temperature: 293.15 K\n%stemperature [K],coefficient [1e-6/K]%s\n",
+                    stated[_i].metadata, stated[_i].column ? ",uncertainty [1e-6/K]" : "");
     for (int i = 0; i < N; i++) {
         double t = sample_at(i);
         long units = lround((double)truth((quad)t) * 1e8) + (i * 7 % 5 - 2) * 12; /* of 0.01e-6/K */
-        n += sprintf(text + n, "%.0f,%.2f%s\n", t, (double)units / 100.0, !stated[_i].column ? "" : i % 2 ? ",0.3" : ",0.2");
+        n += sprintf(text + n, "%.0f,%.2f%s\n", t, (double)units / 100.0,
+                     !stated[_i].column ? ""
+                     : i % 2            ? ",0.3"
+                                        : ",0.2");
         value_row(q.a[i], (quad)t);
         q.y[i] = (quad)units / 100000000;
         q.absolute[i] = stated[_i].column ? quad_read(i % 2 ? "0.3e-6" : "0.2e-6") : (quad)stated[_i].u_absolute;

@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* JCGM 100:2008, annex H.3: calibration of a thermometer by a straight line b(t) = y1 + y2 (t - 20 degC), with standard
-   deviations, correlation and the uncertainty of a predicted correction. Through the plain-array solver in x = t - 20 degC.
+   deviations, correlation and the uncertainty of a predicted correction. Through the plain-array solver in x = t - 20
+   degC.
 
-   Published figures (rounded) and recomputed ones (12 digits) with their source: gum_h3.csv. The readings are decimals, and
-   t - 20 in doubles is off by 4e-15 at most, which in y1 is 1e-17: far below the 12th digit. */
+   Published figures (rounded) and recomputed ones (12 digits) with their source: gum_h3.csv. The readings are decimals,
+   and t - 20 in doubles is off by 4e-15 at most, which in y1 is 1e-17: far below the 12th digit. */
 #include <math.h>
 
 #include "../support/making.h"
@@ -47,12 +48,13 @@ START_TEST(line)
     ck_assert_ulp(v[1], v[2], 0);
     ck_assert_lre(v[0], s[0] * s[0], 15.0);
     ck_assert_lre(v[3], s[1] * s[1], 15.0);
-    ck_assert_lre(fit.residual_sum_of_squares, 9.0 * fit.residual_standard_deviation * fit.residual_standard_deviation, 15.0);
+    ck_assert_lre(fit.residual_sum_of_squares, 9.0 * fit.residual_standard_deviation * fit.residual_standard_deviation,
+                  15.0);
 }
 END_TEST
 
-/* With a stated u the covariance is what u gives; scaled by the residuals it is the one above. Both follow from the unweighted
-   result by a factor: u/s or 1. */
+/* With a stated u the covariance is what u gives; scaled by the residuals it is the one above. Both follow from the
+   unweighted result by a factor: u/s or 1. */
 START_TEST(line_with_u)
 {
     figures *f = figures_read("tests/published/gum_h3.csv");

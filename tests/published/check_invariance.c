@@ -1,11 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What a fit must not depend on: the order of rows, the units printed, how a table is split, and the reference temperature that
-   a table happens to use.
+/* What a fit must not depend on: the order of rows, the units printed, how a table is split, and the reference
+   temperature that a table happens to use.
 
-   The material is invented: alpha falls towards low temperature, and every row has an error of a fixed sequence, so that
-   what is compared is a least-squares solution and not an interpolation. Two solutions of one problem whose data agree to
-   some ulp differ by the condition number (about 3 here) times n eps: 1e-12 of the largest coefficient is held throughout,
-   1e-13 where the data are the same doubles. */
+   The material is invented: alpha falls towards low temperature, and every row has an error of a fixed sequence, so
+   that what is compared is a least-squares solution and not an interpolation. Two solutions of one problem whose data
+   agree to some ulp differ by the condition number (about 3 here) times n eps: 1e-12 of the largest coefficient is held
+   throughout, 1e-13 where the data are the same doubles. */
 #include <math.h>
 
 #include "../support/making.h"
@@ -39,7 +39,8 @@ error_of(int i)
     return 2.0 * (x - floor(x)) - 1.0;
 }
 
-/* Curve, expansion and, where known, their u agree: within `limit` of the largest coefficient, and of it times the range. */
+/* Curve, expansion and, where known, their u agree: within `limit` of the largest coefficient, and of it times the
+ * range. */
 static void
 same_curve(const kel_record *a, const kel_record *b, double limit, const char *what)
 {
@@ -69,7 +70,8 @@ row_of(kel_kind kind, int i, bool with_u)
     t = t == 293.15 ? 293.0 : t;
     double from = kind == KEL_KIND_MEAN && i % 3 == 0 ? 90.0 : 293.15, width = fabs(t - from);
     double value = kind == KEL_KIND_COEFFICIENT ? alpha(t) + noise
-        : kind == KEL_KIND_EXPANSION ? expansion(t) + 100.0 * noise : (expansion(t) - expansion(from)) / (t - from) + noise;
+                   : kind == KEL_KIND_EXPANSION ? expansion(t) + 100.0 * noise
+                                                : (expansion(t) - expansion(from)) / (t - from) + noise;
     double u = kind == KEL_KIND_EXPANSION ? 1e-5 : kind == KEL_KIND_MEAN ? 1e-5 / width : 1e-7;
     return observe(kind, from, t, value, with_u ? u * (1.0 + 0.5 * error_of(7 * i)) : 0.0);
 }
@@ -97,7 +99,8 @@ START_TEST(row_order)
         mixed[i] = rows[(i * 17 + 5) % ROWS]; /* 17 and 40 have no common divisor: every row once */
     kel_record *a = fit_rows(rows, ROWS, cases[_i].kind), *b = fit_rows(mixed, ROWS, cases[_i].kind);
     same_curve(a, b, 1e-13, cases[_i].name);
-    ck_assert_lre(kel_record_content(a)->residual_standard_deviation, kel_record_content(b)->residual_standard_deviation, 12.0);
+    ck_assert_lre(kel_record_content(a)->residual_standard_deviation,
+                  kel_record_content(b)->residual_standard_deviation, 12.0);
     kel_record_free(a);
     kel_record_free(b);
 }
@@ -129,17 +132,30 @@ START_TEST(split_in_two)
 END_TEST
 
 /* The same table in two sets of units, every number exactly convertible: T in degC in fives is T in degF in nines, and
-   0.09e-6/K is 0.05e-6/degF. Read with one rounding each, both give the same doubles. The printed resolution is another one;
-   it enters the weights of mean values without stated u, so those state one. */
-static const struct { const char *name; bool degF; kel_kind kind; const char *header[2]; } unit_cases[] = {
-    { "1e-6/degF", true, KEL_KIND_COEFFICIENT,
+   0.09e-6/K is 0.05e-6/degF. Read with one rounding each, both give the same doubles. The printed resolution is another
+   one; it enters the weights of mean values without stated u, so those state one. */
+static const struct { const char *name; bool degF; kel_kind kind; const char *header[2];
+} unit_cases[] = {
+    { "1e-6/degF",
+      true,
+      KEL_KIND_COEFFICIENT,
       { "temperature [degC],coefficient [1e-6/K]", "temperature [degF],coefficient [1e-6/degF]" } },
-    { "ppm/degF", true, KEL_KIND_COEFFICIENT, { "temperature [degC],coefficient [1e-6/degC]", "T [degF],alpha [ppm/degF]" } },
-    { "uin/in/degF", true, KEL_KIND_COEFFICIENT, { "temperature [degC],coefficient [um/(m.K)]", "T [degF],alpha [uin/in/degF]" } },
-    { "mean", true, KEL_KIND_MEAN,
+    { "ppm/degF",
+      true,
+      KEL_KIND_COEFFICIENT,
+      { "temperature [degC],coefficient [1e-6/degC]", "T [degF],alpha [ppm/degF]" } },
+    { "uin/in/degF",
+      true,
+      KEL_KIND_COEFFICIENT,
+      { "temperature [degC],coefficient [um/(m.K)]", "T [degF],alpha [uin/in/degF]" } },
+    { "mean",
+      true,
+      KEL_KIND_MEAN,
       { "# uncertainty: 0.18 [1e-6/K] independent\ntemperature [degC],mean coefficient [1e-6/K]",
         "# uncertainty: 0.1 [1e-6/degF] independent\ntemperature [degF],mean coefficient [1e-6/degF]" } },
-    { "percent and ppm", false, KEL_KIND_EXPANSION,
+    { "percent and ppm",
+      false,
+      KEL_KIND_EXPANSION,
       { "temperature [degC],expansion [%]", "temperature [degC],expansion [ppm]" } },
 };
 
@@ -150,14 +166,20 @@ START_TEST(printed_units)
     char text[2][ROWS * 48 + 256];
     int n[2];
     for (int k = 0; k < 2; k++)
-        n[k] = sprintf(text[k], "# reference temperature: %s\n%s\n", k == 1 && degF ? "68 degF" : "20 degC", unit_cases[_i].header[k]);
+        n[k] = sprintf(text[k], "# reference temperature: %s\n%s\n", k == 1 && degF ? "68 degF" : "20 degC",
+                       unit_cases[_i].header[k]);
     for (int i = 0; i < ROWS; i++) {
         int t = -250 + 10 * i + (i > 26 ? 5 : 0); /* degC, never 20 */
-        double T = t + 273.15, value = e ? expansion(T) : kind == KEL_KIND_MEAN ? expansion(T) / (T - 293.15) : alpha(T);
+        double T = t + 273.15, value = e                       ? expansion(T)
+                                       : kind == KEL_KIND_MEAN ? expansion(T) / (T - 293.15)
+                                                               : alpha(T);
         /* counted in units of 5e-6, which are 0.0005 %, or of 0.09e-6/K */
         double units = round(value / (e ? 5e-6 : 0.09e-6) + 2.0 * error_of(i));
-        n[0] += sprintf(text[0] + n[0], e ? "%d,%.4f\n" : "%d,%.2f\n", t, units * (e ? 0.0005 : 0.09));
-        n[1] += sprintf(text[1] + n[1], e ? "%d,%.0f\n" : "%d,%.2f\n", degF ? t * 9 / 5 + 32 : t, units * (e ? 5.0 : 0.05));
+        const int decimals[2] = { e ? 4 : 2, e ? 0 : 2 }, temperature[2] = { t, degF ? t * 9 / 5 + 32 : t };
+        const double unit[2] = { e ? 0.0005 : 0.09, e ? 5.0 : 0.05 };
+        for (int k = 0; k < 2; k++)
+            n[k] += snprintf(text[k] + n[k], sizeof text[k] - (size_t)n[k], "%d,%.*f\n", temperature[k], decimals[k],
+                             units * unit[k]);
     }
     kel_record *record[2];
     const int degree = 3;
@@ -181,14 +203,17 @@ referred_to(kel_kind kind, double r, int odd)
     for (int i = 0; i < ROWS / 2; i++) {
         double t = 20.25 + 19.0 * i + 9.5 * odd, grown = 1.0 + expansion(r);
         double value = kind == KEL_KIND_COEFFICIENT ? alpha(t) / grown
-            : kind == KEL_KIND_EXPANSION ? (expansion(t) - expansion(r)) / grown : (expansion(t) - expansion(r)) / grown / (t - r);
+                       : kind == KEL_KIND_EXPANSION ? (expansion(t) - expansion(r)) / grown
+                                                    : (expansion(t) - expansion(r)) / grown / (t - r);
         rows[i] = observe(kind, r, t, value, kind == KEL_KIND_EXPANSION ? 1e-6 : 1e-8);
     }
     return make_arrays(rows, ROWS / 2, kind, r, KEL_BASE_REFERENCE);
 }
 
-static const struct { const char *name; double r; } references[] = {
-    { "20 degC", 293.15 }, { "70 degF", (70.0 + 459.67) * 5.0 / 9.0 }, { "0 degC", 273.15 }, { "4 K", 4.0 }, { "700 K", 700.0 },
+static const struct { const char *name; double r;
+} references[] = {
+    { "20 degC", 293.15 }, { "70 degF", (70.0 + 459.67) * 5.0 / 9.0 }, { "0 degC", 273.15 }, { "4 K", 4.0 },
+    { "700 K", 700.0 },
 };
 
 START_TEST(reference_of_the_table)
@@ -220,7 +245,8 @@ START_TEST(reference_of_the_table)
         kel_query query = { KEL_EXPANSION, 100.0, 100.0, 100.0, references[_i].r, -1 };
         kel_answer e;
         ck_assert_int_ge(kel_record_answer(&e, other, &query, NULL), 0);
-        ck_assert_abs_for(references[_i].name, e.value, (expansion(100.0) - expansion(references[_i].r)) / (1.0 + expansion(references[_i].r)),
+        ck_assert_abs_for(references[_i].name, e.value,
+                          (expansion(100.0) - expansion(references[_i].r)) / (1.0 + expansion(references[_i].r)),
                           1e-12 * 14e-6 * 400.0, "1");
         kel_table_free(two[0]);
         kel_table_free(two[1]);
@@ -231,8 +257,9 @@ START_TEST(reference_of_the_table)
 }
 END_TEST
 
-/* Both bases of one length change: alpha(reference length) = alpha(current length) (1 + e). With exact expansions a record in
-   either base gives the same expansions to the fit's own ability: ln(1 + e) is no polynomial, so the degree is high. */
+/* Both bases of one length change: alpha(reference length) = alpha(current length) (1 + e). With exact expansions a
+   record in either base gives the same expansions to the fit's own ability: ln(1 + e) is no polynomial, so the degree
+   is high. */
 START_TEST(base_of_the_record)
 {
     const int degree = 8;
@@ -245,7 +272,8 @@ START_TEST(base_of_the_record)
         double t = 20.25 + 3.6 * i;
         kel_answer e;
         ck_assert_int_ge(kel_record_expansion(&e, record, t, NULL), 0);
-        /* alpha/(1 + e) continued as a series in e: the ninth power of 5e-3 and less, 1e-14 with what degree 8 leaves */
+        /* alpha/(1 + e) continued as a series in e: the ninth power of 5e-3 and less, 1e-14 with what degree 8 leaves
+         */
         ck_assert_abs_for(references[_i].name, e.value, expansion(t), 1e-12, "1");
     }
     kel_record_free(record);

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What must hold for every record, whatever its numbers: integrals against 33 digits down to 1 mK, additivity, antisymmetry,
-   re-reference there and back, the two bases, and an expansion that is certain at its own reference.
+/* What must hold for every record, whatever its numbers: integrals against 33 digits down to 1 mK, additivity,
+   antisymmetry, re-reference there and back, the two bases, and an expansion that is certain at its own reference.
 
-   Records here are drawn at random with fixed seeds: 1 to 4 pieces of degree 0 to 60, steps, modes. Limits are the library's
-   promise, (2n + 4) eps sum |c_k| times the width of an interval, n the degree. */
+   Records here are drawn at random with fixed seeds: 1 to 4 pieces of degree 0 to 60, steps, modes. Limits are the
+   library's promise, (2n + 4) eps sum |c_k| times the width of an interval, n the degree. */
 #include <float.h>
 #include <math.h>
 #include <stdint.h>
@@ -143,8 +143,8 @@ START_TEST(against_33_digits)
             worst_mk = fmax(worst_mk, off / ((to - from) * sum));
         }
     }
-    printf("record %2d: %zu pieces, worst integral %.2f of the promise, 1 mK within %.1e of width * sum |c_k|\n", _i, c->piece_count, worst,
-           worst_mk);
+    printf("record %2d: %zu pieces, worst integral %.2f of the promise, 1 mK within %.1e of width * sum |c_k|\n", _i,
+           c->piece_count, worst, worst_mk);
     kel_record_free(record);
 }
 END_TEST
@@ -156,8 +156,10 @@ START_TEST(additive_and_antisymmetric)
     const kel_interval r = kel_record_content(record)->range;
     for (int i = 0; i < 100; i++) {
         double a = between(&state, r.lo, r.hi), b = between(&state, r.lo, r.hi), m = between(&state, r.lo, r.hi);
-        kel_answer ab = ask(record, KEL_INTEGRAL, a, b), am = ask(record, KEL_INTEGRAL, a, m), mb = ask(record, KEL_INTEGRAL, m, b);
-        double limit = promise(record) * (fabs(b - a) + fabs(m - a) + fabs(b - m)) + 8.0 * DBL_EPSILON * step_size(record);
+        kel_answer ab = ask(record, KEL_INTEGRAL, a, b), am = ask(record, KEL_INTEGRAL, a, m),
+                   mb = ask(record, KEL_INTEGRAL, m, b);
+        double limit =
+            promise(record) * (fabs(b - a) + fabs(m - a) + fabs(b - m)) + 8.0 * DBL_EPSILON * step_size(record);
         ck_assert_abs(am.value + mb.value, ab.value, limit, "1");
         ck_assert_ulp(ask(record, KEL_INTEGRAL, b, a).value, -ab.value, 0);
         ck_assert_ulp(ask(record, KEL_INTEGRAL, b, a).u, ab.u, 0);
@@ -175,9 +177,11 @@ START_TEST(additive_and_antisymmetric)
         ck_assert_abs(ask(record, KEL_LENGTH_RATIO, a, m).value * ask(record, KEL_LENGTH_RATIO, m, b).value, ratio,
                       limit * 1.1 + 8.0 * DBL_EPSILON, "1");
         ck_assert_abs(ask(record, KEL_LENGTH_RATIO, b, a).value * ratio, 1.0, limit * 1.1 + 8.0 * DBL_EPSILON, "1");
-        /* a mean over nothing is the coefficient there, in the record's reference and base 1 + e times it for current length */
+        /* a mean over nothing is the coefficient there, in the record's reference and base 1 + e times it for current
+         * length */
         double alpha = ask(record, KEL_COEFFICIENT, a, a).value;
-        double grown = kel_record_content(record)->base == KEL_BASE_CURRENT ? 1.0 + ask(record, KEL_EXPANSION, a, a).value : 1.0;
+        double grown =
+            kel_record_content(record)->base == KEL_BASE_CURRENT ? 1.0 + ask(record, KEL_EXPANSION, a, a).value : 1.0;
         ck_assert_abs(ask(record, KEL_MEAN, a, a).value, alpha * grown, 8.0 * DBL_EPSILON * fabs(alpha), "1/K");
     }
     kel_record_free(record);
@@ -191,12 +195,13 @@ ask_in(const kel_record *record, kel_quantity quantity, double from, double to, 
     kel_answer a;
     kel_error err = { 0 };
     kel_status status = kel_record_answer(&a, record, &query, &err);
-    ck_assert_msg(status == KEL_OK || status == KEL_W_TRANSITION, "%s", status < 0 ? err.message : kel_status_text(status));
+    ck_assert_msg(status == KEL_OK || status == KEL_W_TRANSITION, "%s",
+                  status < 0 ? err.message : kel_status_text(status));
     return a;
 }
 
-/* e' = [e(T) - e(r')]/[1 + e(r')], and from e' back by the same formula with e'(r); the same for the coefficient, and both for
-   either base of the record. The lengths of a part do not know of any reference. */
+/* e' = [e(T) - e(r')]/[1 + e(r')], and from e' back by the same formula with e'(r); the same for the coefficient, and
+   both for either base of the record. The lengths of a part do not know of any reference. */
 START_TEST(rereference)
 {
     uint64_t state;
@@ -206,8 +211,10 @@ START_TEST(rereference)
     const int ref = KEL_BASE_REFERENCE;
     for (int i = 0; i < 60; i++) {
         double t = between(&state, c->range.lo, c->range.hi), r2 = between(&state, c->range.lo, c->range.hi);
-        double limit = 8.0 * promise(record) * (c->range.hi - c->range.lo) + 16.0 * DBL_EPSILON * (step_size(record) + 1e-3);
-        double there = ask_in(record, KEL_EXPANSION, t, t, r2, ref).value, at_r = ask_in(record, KEL_EXPANSION, r, r, r2, ref).value;
+        double limit =
+            8.0 * promise(record) * (c->range.hi - c->range.lo) + 16.0 * DBL_EPSILON * (step_size(record) + 1e-3);
+        double there = ask_in(record, KEL_EXPANSION, t, t, r2, ref).value,
+               at_r = ask_in(record, KEL_EXPANSION, r, r, r2, ref).value;
         ck_assert_abs((there - at_r) / (1.0 + at_r), ask_in(record, KEL_EXPANSION, t, t, r, ref).value, limit, "1");
         double slope = ask_in(record, KEL_COEFFICIENT, t, t, r2, ref).value;
         ck_assert_abs(slope / (1.0 + at_r), ask_in(record, KEL_COEFFICIENT, t, t, r, ref).value,
@@ -216,7 +223,8 @@ START_TEST(rereference)
         ck_assert_ulp(own.value, 0.0, 0);
         ck_assert_ulp(own.u, 0.0, 0);
         ck_assert_ulp(own.u_fit, 0.0, 0);
-        kel_answer change = ask_in(record, KEL_CHANGE, r2, t, (double)NAN, -1), changed = ask_in(record, KEL_CHANGE, r2, t, t, -1);
+        kel_answer change = ask_in(record, KEL_CHANGE, r2, t, (double)NAN, -1),
+                   changed = ask_in(record, KEL_CHANGE, r2, t, t, -1);
         ck_assert_abs(changed.value, change.value, limit, "1");
         ck_assert_abs(changed.u, change.u, 1e-12 * change.u + limit, "1");
     }

@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* NIST SRM 731, borosilicate glass: the certificate's cubic adopted for 293 K to 640 K gives the published expansions, and
-   says so where it is used outside.
+/* NIST SRM 731, borosilicate glass: the certificate's cubic adopted for 293 K to 640 K gives the published expansions,
+   and says so where it is used outside.
 
-   Figures and source: srm731.csv (the coefficients) and srm731_table.csv. Tolerances: half a unit of the printed digit. */
+   Figures and source: srm731.csv (the coefficients) and srm731_table.csv. Tolerances: half a unit of the printed digit.
+ */
 #include <math.h>
 
 #include "../support/making.h"
@@ -90,15 +91,16 @@ START_TEST(bounds)
     for (size_t i = 0; i < sizeof rows / sizeof rows[0]; i++) {
         kel_answer a;
         kel_status status = kel_record_coefficient(&a, record, rows[i].t, NULL);
-        ck_assert_msg(status == rows[i].status, "T = %.17g K: status %d, not %d", rows[i].t, (int)status, (int)rows[i].status);
+        ck_assert_msg(status == rows[i].status, "T = %.17g K: status %d, not %d", rows[i].t, (int)status,
+                      (int)rows[i].status);
         ck_assert_msg((status < 0) == isnan(a.value), "T = %.17g K: value %g", rows[i].t, a.value);
     }
     kel_record_free(record);
 }
 END_TEST
 
-/* The quoted 0.03e-6/K taken as a standard uncertainty: one constant mode, so u(e) = 0.03e-6 |T - 293 K| to the rounding of
-   a sum of one term, and any two answers are fully correlated. */
+/* The quoted 0.03e-6/K taken as a standard uncertainty: one constant mode, so u(e) = 0.03e-6 |T - 293 K| to the
+   rounding of a sum of one term, and any two answers are fully correlated. */
 START_TEST(stated_uncertainty)
 {
     const char *const settings[] = { "uncertainty: 0.03 [1e-6/K]" };

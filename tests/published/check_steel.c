@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Structural carbon steel as EN 1993-1-2:2005, 3.4.1.1 has it: three pieces, a plateau, and a step of -8.4e-6 at 750 degC.
-   Adopted from the published elongation, adopted from its derivative with the step declared, and fitted to sampled values.
+/* Structural carbon steel as EN 1993-1-2:2005, 3.4.1.1 has it: three pieces, a plateau, and a step of -8.4e-6 at 750
+   degC. Adopted from the published elongation, adopted from its derivative with the step declared, and fitted to
+   sampled values.
 
    e(t) = 1.2e-5 t + 0.4e-8 t^2 - 2.416e-4 below 750 degC, 1.1e-2 from there to 860 degC, 2e-5 t - 6.2e-3 above.
    The constants are decimals, so the terms carry roundings of eps times 2.2e-2 (the largest term): the adopted curve is
@@ -72,8 +73,8 @@ hold(const kel_record *record, const char *way, double limit, double limit_a)
         worst_e = fmax(worst_e, fabs((double)((quad)e - elongation(t))));
         worst_a = fmax(worst_a, fabs((double)((quad)a - slope(t))));
     }
-    printf("steel, %-32s expansion off by %.1e (limit %.1e), coefficient by %.1e 1/K (limit %.1e)\n", way, worst_e, limit,
-           worst_a, limit_a);
+    printf("steel, %-32s expansion off by %.1e (limit %.1e), coefficient by %.1e 1/K (limit %.1e)\n", way, worst_e,
+           limit, worst_a, limit_a);
     ck_assert_abs_for(way, worst_e, 0.0, limit, "1");
     ck_assert_abs_for(way, worst_a, 0.0, limit_a, "1/K");
 
@@ -82,7 +83,8 @@ hold(const kel_record *record, const char *way, double limit, double limit_a)
     ck_assert_abs_for(way, below, 1.10084e-2, limit, "1");
     ck_assert_abs_for(way, ask(record, KEL_EXPANSION, 0.0, 1023.15).value, 1.1e-2, limit, "1");
     ck_assert_abs_for(way, ask(record, KEL_INTEGRAL, 1023.15, 1133.15).value, 0.0, limit, "1");
-    ck_assert_abs_for(way, ask(record, KEL_INTEGRAL, kelvin(700.0), kelvin(900.0)).value, 0.0118 - 0.0101184, limit, "1");
+    ck_assert_abs_for(way, ask(record, KEL_INTEGRAL, kelvin(700.0), kelvin(900.0)).value, 0.0118 - 0.0101184, limit,
+                      "1");
     ck_assert_abs_for(way, ask(record, KEL_EXPANSION, 293.15, 293.15).value, 0.0, 0.0, "1");
 
     const double outside[] = { nextafter(293.15, 0.0), nextafter(1473.15, 2000.0), 77.0, 1500.0 };
@@ -100,7 +102,8 @@ START_TEST(adopted_elongation)
     ck_assert_uint_ge(report->warning_count, 1);
     bool said = false;
     for (size_t i = 0; i < report->warning_count; i++)
-        said |= strstr(report->warnings[i].text, "1023.15 K") != NULL || strstr(report->warnings[i].text, "750 degC") != NULL;
+        said |= strstr(report->warnings[i].text, "1023.15 K") != NULL
+                || strstr(report->warnings[i].text, "750 degC") != NULL;
     ck_assert(said);
     hold(record, "adopted elongation", ROUNDING, ROUNDING / 100.0);
     kel_adopt_report_free(report);
@@ -116,8 +119,8 @@ START_TEST(adopted_coefficient)
 }
 END_TEST
 
-/* Sampled every 10 K, with a row just below the step beside the one at it. Both ways of declaring the step. The samples are
-   rounded at 1e-15 as text; least squares passes on at most sqrt(n) cond of that, n rows in all. */
+/* Sampled every 10 K, with a row just below the step beside the one at it. Both ways of declaring the step. The samples
+   are rounded at 1e-15 as text; least squares passes on at most sqrt(n) cond of that, n rows in all. */
 static void
 fitted(const char *transition, const char *way)
 {

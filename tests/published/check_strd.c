@@ -1,11 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* NIST StRD, linear least squares: certified coefficients, standard deviations, residual deviation, R^2 and residual sum of
-   squares through the solver that makes every fit.
+/* NIST StRD, linear least squares: certified coefficients, standard deviations, residual deviation, R^2 and residual
+   sum of squares through the solver that makes every fit.
 
    How many digits can be asked for follows from the set, not from what came out. A backward stable solution in the
-   Chebyshev basis A (n by p, A = QR) on the range of x is the exact one of data disturbed by D = K u (|b| + |A| |c|), with
-   u = eps/2 and K = n; the coefficient of x^k is row m of the map from Chebyshev to powers, so (first order; A. Bjorck,
-   Numerical Methods for Least Squares Problems, 1996, theorem 1.4.6)
+   Chebyshev basis A (n by p, A = QR) on the range of x is the exact one of data disturbed by D = K u (|b| + |A| |c|),
+   with u = eps/2 and K = n; the coefficient of x^k is row m of the map from Chebyshev to powers, so (first order; A.
+   Bjorck, Numerical Methods for Least Squares Problems, 1996, theorem 1.4.6)
 
        |dB| <= |m R^-1| (D + K u |A| |r| |R^-1|) + u sum |m_j c_j|
        |d sd|/sd <= K u |A| |R^-1| + u sum |m_j| |(R^-1)_j| / |m R^-1| + |d s|/s,      |d s| <= D/sqrt(nu)
@@ -197,7 +197,8 @@ START_TEST(certified)
         ck_assert_lre_for("certified against 33 digits", (double)exact, want, SHOWN);
         hold(set, item, b[k], want, lever * (D + K * U * q.norm_a * q.norm_r * q.norm_inverse) + rounding);
         snprintf(item, sizeof item, "sd(B%zu)", k + q.skip);
-        hold(set, item, sd[k], want_sd, s * (lever * K * U * q.norm_a * q.norm_inverse + rounding_sd) + lever * error_s);
+        hold(set, item, sd[k], want_sd,
+             s * (lever * K * U * q.norm_a * q.norm_inverse + rounding_sd) + lever * error_s);
         ck_assert_lre_for("variance", covariance[k * q.p + k], sd[k] * sd[k], 15.0);
     }
     size_t row = figures_row(f, "dataset", set, "item", "residual_sd");

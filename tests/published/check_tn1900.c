@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* NIST TN 1900, example E13: mean coefficient of a copper bar from its lengths at two temperatures, and its uncertainty,
+/* NIST TN 1900, example E13: mean coefficient of a copper bar from its lengths at two temperatures, and its
+   uncertainty,
 
        alpha = (L1 - L0)/[L0 (T1 - T0)].
 
@@ -37,10 +38,13 @@ read_bar(void)
     bar b = { .T0 = (double)v[2], .T1 = (double)v[3], .e = (L1 - L0) / L0 };
     b.alpha = b.e / d;
     /* d alpha/d L0 = -L1/(L0^2 d), d alpha/d L1 = 1/(L0 d), d alpha/d T1 = -alpha/d = -d alpha/d T0 */
-    b.u = quad_sqrt(square(L1 / (L0 * L0 * d) * v[4]) + square(v[5] / (L0 * d)) + square(b.alpha / d) * (square(v[6]) + square(v[7])));
+    b.u = quad_sqrt(square(L1 / (L0 * L0 * d) * v[4]) + square(v[5] / (L0 * d))
+                    + square(b.alpha / d) * (square(v[6]) + square(v[7])));
     b.u_e = b.u * d; /* the temperatures' part goes along: a table that prints e has it in u too */
-    snprintf(b.alpha_text, sizeof b.alpha_text, "%s", figures_text(f, figures_row(f, "item", "alpha computed", NULL, NULL), "value"));
-    snprintf(b.u_text, sizeof b.u_text, "%s", figures_text(f, figures_row(f, "item", "u(alpha) computed", NULL, NULL), "value"));
+    snprintf(b.alpha_text, sizeof b.alpha_text, "%s",
+             figures_text(f, figures_row(f, "item", "alpha computed", NULL, NULL), "value"));
+    snprintf(b.u_text, sizeof b.u_text, "%s",
+             figures_text(f, figures_row(f, "item", "u(alpha) computed", NULL, NULL), "value"));
     figures_free(f);
     return b;
 }
@@ -53,8 +57,8 @@ START_TEST(by_hand)
 }
 END_TEST
 
-/* What any record of the one value must answer. A chain of a few operations on doubles: 15 digits less one for the division
-   by 85 K. A constant alpha has one parameter, so u of the mean is u of the row itself. */
+/* What any record of the one value must answer. A chain of a few operations on doubles: 15 digits less one for the
+   division by 85 K. A constant alpha has one parameter, so u of the mean is u of the row itself. */
 static void
 hold(const kel_record *record, const bar *b, const char *way)
 {
@@ -65,7 +69,8 @@ hold(const kel_record *record, const bar *b, const char *way)
     ck_assert_abs_for(way, c->range.lo, b->T0, 0.0, "K");
     ck_assert_abs_for(way, c->range.hi, b->T1, 0.0, "K");
     kel_answer mean = ask(record, KEL_MEAN, b->T0, b->T1);
-    printf("TN 1900 E13, %-20s alpha = %.15g 1/K (%s), u = %.9g 1/K (%s)\n", way, mean.value, b->alpha_text, mean.u, b->u_text);
+    printf("TN 1900 E13, %-20s alpha = %.15g 1/K (%s), u = %.9g 1/K (%s)\n", way, mean.value, b->alpha_text, mean.u,
+           b->u_text);
     ck_assert_published_for(way, mean.value, b->alpha_text);
     ck_assert_published_for(way, mean.u, b->u_text);
     ck_assert_lre_for(way, mean.value, (double)b->alpha, 14.0);
@@ -83,8 +88,10 @@ START_TEST(mean_row)
 {
     bar b = read_bar();
     char text[512];
-    snprintf(text, sizeof text, "# material: copper bar\n# reference temperature: 288.15 K\n"
-             "from [K],to [K],mean coefficient [1/K],uncertainty [1/K]\n288.15,373.10,%.17g,%.17g\n", (double)b.alpha, (double)b.u);
+    snprintf(text, sizeof text,
+             "# material: copper bar\n# reference temperature: 288.15 K\n"
+             "from [K],to [K],mean coefficient [1/K],uncertainty [1/K]\n288.15,373.10,%.17g,%.17g\n",
+             (double)b.alpha, (double)b.u);
     kel_table *table = make_table(text);
     const kel_table *const tables[] = { table };
     kel_fit_options options = KEL_FIT_OPTIONS_INIT;
@@ -114,7 +121,8 @@ START_TEST(arrays)
 }
 END_TEST
 
-/* Counted from 20 degC instead, alpha' = alpha/[1 + e(20 degC)]; asked in the bar's own reference the figures return. */
+/* Counted from 20 degC instead, alpha' = alpha/[1 + e(20 degC)]; asked in the bar's own reference the figures return.
+ */
 START_TEST(other_reference)
 {
     bar b = read_bar();

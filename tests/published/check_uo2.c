@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Martin's uranium dioxide: two pieces of alpha = (1/L) dL/dT, base `current length`, so e = exp(integral) - 1.
 
-   The published coefficient and the published length do not agree, neither with each other nor at 923 K. What is adopted here
-   is the coefficient; so the record is held to quadrature of that (33 digits, another method than the library's), and the
-   source's own difference is shown and bounded on both sides: it must neither be larger than known nor be smoothed away.
+   The published coefficient and the published length do not agree, neither with each other nor at 923 K. What is
+   adopted here is the coefficient; so the record is held to quadrature of that (33 digits, another method than the
+   library's), and the source's own difference is shown and bounded on both sides: it must neither be larger than known
+   nor be smoothed away.
 
    Figures and source: uo2_martin1988.csv (coefficient), uo2_martin1988_length.csv, uo2_martin1988_values.csv. */
 #include <float.h>
@@ -70,9 +71,11 @@ START_TEST(own_quadrature)
     const kel_content *c = kel_record_content(record);
     ck_assert_int_eq(c->base, KEL_BASE_CURRENT);
     ck_assert_uint_eq(c->piece_count, 2);
-    const struct { double from, to; } rows[] = {
-        { 273, 273.15 }, { 273, 293.15 }, { 293.15, 600 }, { 273, 923 }, { 922.999, 923 }, { 923, 923.001 }, { 922.5, 923.5 },
-        { 300, 1500 }, { 923, 3120 }, { 273, 3120 }, { 3120, 273 }, { 2000, 2000.001 }, { 1500, 600 },
+    const struct { double from, to;
+    } rows[] = {
+        { 273, 273.15 },  { 273, 293.15 },    { 293.15, 600 }, { 273, 923 },  { 922.999, 923 },
+        { 923, 923.001 }, { 922.5, 923.5 },   { 300, 1500 },   { 923, 3120 }, { 273, 3120 },
+        { 3120, 273 },    { 2000, 2000.001 }, { 1500, 600 },
     };
     /* The terms of alpha at 3120 K sum to 66e-6 1/K in absolute value before they cancel: that times eps is what a
        coefficient can be off after its change of basis; with (2n + 4) roundings for a cubic. */
@@ -83,10 +86,12 @@ START_TEST(own_quadrature)
         snprintf(label, sizeof label, "from %.10g K to %.10g K", a, b);
         quad want = integral((quad)a, (quad)b), ratio = quad_exp(want);
         ck_assert_abs_for(label, ask(record, KEL_INTEGRAL, a, b).value, (double)want, unit * width, "1");
-        ck_assert_abs_for(label, ask(record, KEL_LENGTH_RATIO, a, b).value, (double)ratio, unit * width + 2 * DBL_EPSILON, "1");
+        ck_assert_abs_for(label, ask(record, KEL_LENGTH_RATIO, a, b).value, (double)ratio,
+                          unit * width + 2 * DBL_EPSILON, "1");
         /* [e(b) - e(a)]/(b - a), e counted from 273 K */
         quad mean = quad_exp(integral((quad)LOW, (quad)a)) * (ratio - 1) / ((quad)b - (quad)a);
-        ck_assert_abs_for(label, ask(record, KEL_MEAN, a, b).value, (double)mean, 2.0 * unit + 8 * DBL_EPSILON * 66e-6, "1/K");
+        ck_assert_abs_for(label, ask(record, KEL_MEAN, a, b).value, (double)mean, 2.0 * unit + 8 * DBL_EPSILON * 66e-6,
+                          "1/K");
         /* a part's change: L(b)/L(a) - 1, without the cancellation */
         ck_assert_abs_for(label, ask(record, KEL_CHANGE, a, b).value, (double)(ratio - 1), unit * width * 2.0, "1");
     }
@@ -116,7 +121,8 @@ START_TEST(coefficient_rows)
     }
     ck_assert_int_eq(held, 21);
     /* alpha jumps up at the join, by 2.309e-10 1/K: held to the digits of the two figures. */
-    double jump = ask(record, KEL_COEFFICIENT, JOIN, JOIN).value - ask(record, KEL_COEFFICIENT, 0, nextafter(JOIN, 0.0)).value;
+    double jump =
+        ask(record, KEL_COEFFICIENT, JOIN, JOIN).value - ask(record, KEL_COEFFICIENT, 0, nextafter(JOIN, 0.0)).value;
     ck_assert_abs(jump, 10.35768358e-6 - 10.35745274e-6, 1e-14, "1/K");
     figures_free(f);
     kel_record_free(record);
@@ -136,7 +142,8 @@ START_TEST(difference_of_the_source)
         quad published = published_length(f, piece, quad_read(figures_text(values, i, "T_K")));
         ck_assert_published((double)published, figures_text(values, i, "L_over_L273"));
         double t = figures_number(values, i, "T_K");
-        listed[piece] = fmax(listed[piece], fabs((double)(published - 1 - (quad)ask(record, KEL_EXPANSION, t, t).value)));
+        listed[piece] =
+            fmax(listed[piece], fabs((double)(published - 1 - (quad)ask(record, KEL_EXPANSION, t, t).value)));
     }
     double least[2] = { 1.0, 1.0 }, most[2] = { 0.0, 0.0 }, at[2] = { 0.0, 0.0 };
     for (double t = LOW; t <= HIGH; t += 1.0) {

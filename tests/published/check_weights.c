@@ -1,10 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What a row weighs. Rows without stated u have u_i^2 = s^2 w_i^2 + resolution^2/12 with w = 1, or 1/|Tb - Ta| for a mean, and
-   s >= 0 solves sum r_i^2/u_i^2 = n - sum h_i, or is 0 where the sum is smaller already. A shared error weighs nothing: it
-   moves no curve and does not shrink with the number of rows.
+/* What a row weighs. Rows without stated u have u_i^2 = s^2 w_i^2 + resolution^2/12 with w = 1, or 1/|Tb - Ta| for a
+   mean, and s >= 0 solves sum r_i^2/u_i^2 = n - sum h_i, or is 0 where the sum is smaller already. A shared error
+   weighs nothing: it moves no curve and does not shrink with the number of rows.
 
-   Leverages are computed here by normal equations in 33 digits from the u that the record states, so that the equation is
-   tested and not the library's bookkeeping. */
+   Leverages are computed here by normal equations in 33 digits from the u that the record states, so that the equation
+   is tested and not the library's bookkeeping. */
 #include <math.h>
 
 #include "../support/making.h"
@@ -79,12 +79,17 @@ START_TEST(scatter_solves_its_equation)
     const kel_kind kind = columns[_i].kind;
     const double unit = kind == KEL_KIND_EXPANSION ? 1e-5 : 1e-6, resolution = unit * pow(10.0, -columns[_i].decimals);
     char text[1024];
-    int n = sprintf(text, "# reference temperature: 293 K\ntemperature [K],%s\n", kind == KEL_KIND_COEFFICIENT ? "coefficient [1e-6/K]"
-                    : kind == KEL_KIND_MEAN ? "mean coefficient [1e-6/K]" : "expansion [1e-5]");
+    int n = sprintf(text, "# reference temperature: 293 K\ntemperature [K],%s\n",
+                    kind == KEL_KIND_COEFFICIENT ? "coefficient [1e-6/K]"
+                    : kind == KEL_KIND_MEAN      ? "mean coefficient [1e-6/K]"
+                                                 : "expansion [1e-5]");
     for (int i = 0; i < N; i++) {
-        /* steps of 100 K: alpha(T) = ..93.15e-8 + ... ends after the fourth decimal, so a row of no noise is off by 0.15e-9 alone */
+        /* steps of 100 K: alpha(T) = ..93.15e-8 + ... ends after the fourth decimal, so a row of no noise is off by
+         * 0.15e-9 alone */
         double t = 95.0 + 25.0 * i;
-        double value = kind == KEL_KIND_COEFFICIENT ? alpha(t) : kind == KEL_KIND_EXPANSION ? expansion(t) : expansion(t) / (t - 293.0);
+        double value = kind == KEL_KIND_COEFFICIENT ? alpha(t)
+                       : kind == KEL_KIND_EXPANSION ? expansion(t)
+                                                    : expansion(t) / (t - 293.0);
         double noise = columns[_i].noise * error_of(i);
         if (kind == KEL_KIND_MEAN)
             noise *= 50.0 / fabs(t - 293.0);
@@ -102,8 +107,8 @@ START_TEST(scatter_solves_its_equation)
     double left, right;
     equation(&left, &right, c);
     ck_assert_lre_for(columns[_i].name, column->degrees_of_freedom, right, 10.0);
-    printf("%-38s s = %.3g, resolution/sqrt 12 = %.3g, sum r^2/u^2 = %.9g, n - sum h = %.9g\n", columns[_i].name, column->scatter,
-           resolution / sqrt(12.0), left, right);
+    printf("%-38s s = %.3g, resolution/sqrt 12 = %.3g, sum r^2/u^2 = %.9g, n - sum h = %.9g\n", columns[_i].name,
+           column->scatter, resolution / sqrt(12.0), left, right);
     if (columns[_i].floored) {
         ck_assert_ulp_for(columns[_i].name, column->scatter, 0.0, 0);
         ck_assert_double_lt(left, right);
@@ -151,7 +156,8 @@ START_TEST(mean_at_its_reference)
     kel_observation means[N];
     for (int i = 0; i < N; i++) {
         double t = i == 8 ? 293.0 : 95.0 + 25.0 * i; /* neighbours: 270 K, the nearer one, and 320 K */
-        means[i] = observe(KEL_KIND_MEAN, 293.0, t, (i == 8 ? alpha(t) : expansion(t) / (t - 293.0)) + 1e-7 * error_of(i), 0.0);
+        means[i] = observe(KEL_KIND_MEAN, 293.0, t,
+                           (i == 8 ? alpha(t) : expansion(t) / (t - 293.0)) + 1e-7 * error_of(i), 0.0);
     }
     const int degree = 1;
     kel_fit_options options = degree_of(&degree);
@@ -165,7 +171,8 @@ START_TEST(mean_at_its_reference)
 }
 END_TEST
 
-/* 1,000 rows of 1 % scatter: with a shared error of 3 % the curve is what it is without (1e-9), and 3 % stay in its u. */
+/* 1,000 rows of 1 % scatter: with a shared error of 3 % the curve is what it is without (1e-9), and 3 % stay in its u.
+ */
 START_TEST(thousand_rows)
 {
     enum { ROWS = 1000 };
@@ -175,13 +182,16 @@ START_TEST(thousand_rows)
     kel_fit_options options = degree_of(&degree);
     for (int k = 0; k < 2; k++) {
         ck_assert_ptr_nonnull(text[k]);
-        int n = sprintf(text[k], "# reference temperature: 293.15 K\n# uncertainty: 1 %% independent\n%stemperature [K],coefficient [1e-6/K]\n",
+        int n = sprintf(text[k],
+                        "# reference temperature: 293.15 K\n# uncertainty: 1 %% independent\n%stemperature "
+                        "[K],coefficient [1e-6/K]\n",
                         k == 1 ? "# uncertainty: 3 % shared\n" : "");
         for (int i = 0; i < ROWS; i++) {
             double t = 70.0 + 0.25 * i, sum = 0.0; /* twelve equal distributions: a standard normal one, nearly */
             for (int j = 1; j <= 12; j++)
                 sum += fmod((12 * i + j) * 0.6180339887498949, 1.0) - 0.5;
-            n += sprintf(text[k] + n, "%.2f,%.4f\n", t, (14.0 + 0.04 * (t - 200.0) - 1e-4 * (t - 200.0) * (t - 200.0)) * (1.0 + 0.01 * sum));
+            n += sprintf(text[k] + n, "%.2f,%.4f\n", t,
+                         (14.0 + 0.04 * (t - 200.0) - 1e-4 * (t - 200.0) * (t - 200.0)) * (1.0 + 0.01 * sum));
         }
         record[k] = make_fit_of(make_table(text[k]), &options);
         free(text[k]);
@@ -192,7 +202,8 @@ START_TEST(thousand_rows)
         kel_answer without = ask(record[0], KEL_COEFFICIENT, t, t), with = ask(record[1], KEL_COEFFICIENT, t, t);
         worst = fmax(worst, fabs(with.value / without.value - 1.0));
         ck_assert_abs(with.value, without.value, 1e-9 * without.value, "1/K");
-        /* The error's column is the curve itself, so its mode is 3 % of the curve, and the scatter's part is untouched. */
+        /* The error's column is the curve itself, so its mode is 3 % of the curve, and the scatter's part is untouched.
+         */
         ck_assert_abs(with.u_shared, 0.03 * with.value, 1e-9 * with.value, "1/K");
         ck_assert_abs(with.u_fit, without.u_fit, 1e-9 * with.value, "1/K");
         ck_assert_lre(with.u, hypot(with.u_fit, with.u_shared), 12.0);

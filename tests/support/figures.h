@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Published figures: small CSV files with `#` lines of provenance, a header, and cells kept as the text that was printed.
-   A reader of its own, so that the figures do not pass through the code that they test. Quoted cells do not occur. */
+/* Published figures: small CSV files with `#` lines of provenance, a header, and cells kept as the text that was
+   printed. A reader of its own, so that the figures do not pass through the code that they test. Quoted cells do not
+   occur. */
 #ifndef KEL_TEST_FIGURES_H
 #define KEL_TEST_FIGURES_H
 

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Reference arithmetic for tests in 113 bits (33 digits): decimals, exp, integrals, a record's curve and small normal equations.
+/* Reference arithmetic for tests in 113 bits (33 digits): decimals, exp, integrals, a record's curve and small normal
+   equations.
 
    Everything here goes another way than the library does: antiderivatives and their differences, Taylor series, normal
    equations. In 33 digits the loss that such ways have (6 digits for an interval of 1 mK in 1000 K, the square of the

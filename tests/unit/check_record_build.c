@@ -152,7 +152,7 @@ static const struct annotation { const char *label, *given, *kept, *message; siz
     { "no JSON", "{\"a\": }", NULL, "annotations: not valid JSON: ", 1, 7 },
     { "nothing", "", NULL, "annotations: not valid JSON: ", 1, 1 },
     { "second line", "{\"a\": 1,\n \"b\" 2}", NULL, "annotations: not valid JSON: ", 2, 6 },
-    { "duplicate", "{\"a\": 1, \"a\": 1}", NULL, "annotations: not valid JSON: a key occurs twice", 1, 12 },
+    { "duplicate", "{\"a\": 1, \"a\": 1}", NULL, "annotations: not valid JSON: the key that ends here occurs twice", 1, 12 },
     { "second member", "{}, \"more\": {}", NULL, "annotations: more is not a known key", 0, 0 },
     { "closes more than it opens", "{}}, {", NULL, "annotations: not valid JSON: ", 1, 4 },
     { "invalid UTF-8", "{\"a\": \"\xFF\"}", NULL, "annotations: not valid JSON: ", 0, 0 },

@@ -485,7 +485,7 @@ START_TEST(duplicate_keys)
         kel_text_add_bytes(&other, quote, (size_t)(colon + 3 - quote));
         kel_text_add(&other, "0, ");
         kel_text_add(&other, quote);
-        refused("duplicate", other.bytes, other.size, KEL_E_SYNTAX, "not valid JSON: a key occurs twice near ");
+        refused("duplicate", other.bytes, other.size, KEL_E_SYNTAX, "not valid JSON: the key that ends here occurs twice");
         kel_text_free(&other);
         keys++;
     }
@@ -560,7 +560,7 @@ static const struct fault { const char *label, *find, *put; kel_status status; c
     { "lone surrogate", "\"NT-40\"", "\"\\ud800\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
     { "invalid UTF-8", "\"NT-40\"", "\"\xB0\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
     { "control byte", "\"NT-40\"", "\"\x1B[31m\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
-    { "text behind", "]}\n}\n", "]}\n}\n{}", KEL_E_SYNTAX, "something stands behind its end", 0 },
+    { "text behind", "]}\n}\n", "]}\n}\n{}", KEL_E_SYNTAX, "not valid JSON: wrong syntax near '{'", 0 },
     { "annotations no object", "\"annotations\": {\"approved\": {\"by\": \"QA\", \"limit\": 1.50},\n  \"tags\": [\"}\", \"\\\"]\"]}",
       "\"annotations\": [1]", KEL_E_DATA, "annotations is not an object", 0 },
     { "digit of a coefficient", "3.9e-6", "3.8e-6", KEL_E_DIGEST, "the content does not match its digest", 0 },
@@ -605,11 +605,16 @@ START_TEST(no_records)
 {
     static const char nul[] = "{\"kelspan_record\": 1,\n\0}";
     refused("list", "[]", 2, KEL_E_DATA, "not a record");
-    refused("number", "293", 3, KEL_E_SYNTAX, "not valid JSON: ");
+    refused("number", "293", 3, KEL_E_DATA, "not a record: its JSON text is not an object");
     refused("empty object", "{}", 2, KEL_E_DATA, "not a record: the key kelspan_record is missing");
     refused("other object", "{\"form\": 1}", 11, KEL_E_DATA, "not a record: the key kelspan_record is missing");
     refused("only a version", "{\"kelspan_record\": 1}", 21, KEL_E_DATA, "form is missing");
     refused("a table", "# material: NT-40\n", 18, KEL_E_SYNTAX, "not valid JSON: ");
+    refused("second value", "{}, {}", 6, KEL_E_SYNTAX, "not valid JSON: something stands behind its end");
+    refused("closing bracket", "{}]", 3, KEL_E_SYNTAX, "not valid JSON: something stands behind its end");
+    refused("two closing brackets", "{}]]", 4, KEL_E_SYNTAX, "not valid JSON: something stands behind its end");
+    refused("cut", "{\"kelspan_record\": [1", 21, KEL_E_SYNTAX, "not valid JSON: it ends too early");
+    refused("cut in a string", "{\"kelspan_rec", 13, KEL_E_SYNTAX, "not valid JSON: it ends too early");
     refused("blanks", " \n", 2, KEL_E_SYNTAX, "not valid JSON: ");
     refused("NUL", nul, sizeof nul - 1, KEL_E_SYNTAX, "it holds a NUL byte");
     kel_error err;
