@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Answers at one temperature T: the coefficient alpha(T), and from the reference temperature r the mean coefficient
-   e(T)/(T - r), the expansion e(T) and the length ratio L(T)/L(r). One of them is the main quantity, which the flags and the
-   exit status follow; the others that lean on the curve outside the validity range are named beside it. */
+   e(T)/(T - r), the expansion e(T) and the length ratio L(T)/L(r). One of them is the main quantity, which the flags
+   and the exit status follow; the others that lean on the curve outside the validity range are named beside it. */
 #include "answers.h"
 
 #include "messages.h"
@@ -9,8 +9,8 @@
 #include <string.h>
 
 const option_group answer_group = { "Question", (const option_entry[]){
-    { OPT_QUANTITY, 0, "quantity", "Q", false, "the main quantity, which reservations and status follow: coefficient (default), "
-      "mean, expansion or ratio" },
+    { OPT_QUANTITY, 0, "quantity", "Q", false, "the main quantity, which reservations and status follow: coefficient "
+      "(default), mean, expansion or ratio" },
     { OPT_REFERENCE, 0, "reference", "T", false, "reference temperature of the answers, default the record's" },
     { OPT_BASE, 0, "base", "reference|current", false, "length to which the coefficient refers, default the record's" },
     { 0, 0, NULL, NULL, false, NULL } } };

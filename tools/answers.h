@@ -29,8 +29,8 @@ int answers_at(const job *j, answers *out, const question *q, double t);
 /* Keeps the main quantity's reservations. */
 int answers_reserve(job *j, const answers *a, const question *q);
 
-/* Writes a result in the layout that the job asks for: begin, a call for each row, end, and free in any case. The rows pass
-   through the sink, so that their number is not limited by memory. EXIT_FINE or EXIT_FAILED. */
+/* Writes a result in the layout that the job asks for: begin, a call for each row, end, and free in any case. The
+   rows pass through the sink, so that their number is not limited by memory. EXIT_FINE or EXIT_FAILED. */
 typedef struct answer_writer {
     const job *j;
     const question *q;

@@ -11,7 +11,8 @@
 
 const option_group adopt_options = { "Record", (const option_entry[]){
     { OPT_OUTPUT, 'o', "output", "RECORD", false, "save the record; - puts it on stdout and the report on stderr" },
-    { OPT_SET, 0, "set", "'KEY: VALUE'", true, "metadata that the file lacks, for example 'reference temperature: 293 K'" },
+    { OPT_SET, 0, "set", "'KEY: VALUE'", true, "metadata that the file lacks, for example 'reference temperature: "
+      "293 K'" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 static int

@@ -14,10 +14,12 @@
 const option_group fit_options = { "Fit", (const option_entry[]){
     { OPT_OUTPUT, 'o', "output", "RECORD", false, "save the record; - puts it on stdout and the report on stderr" },
     { OPT_FORM, 0, "form", "FORM", false, "polynomial, or piecewise (which --joins implies)" },
-    { OPT_DEGREE, 0, "degree", "N|N,N,..|auto", false, "degree of alpha(T), one for each piece or one for all; auto (default) "
-      "chooses the lowest that leaves no structure" },
+    { OPT_DEGREE, 0, "degree", "N|N,N,..|auto", false,
+      "degree of alpha(T), one for each piece or one for all; auto (default) chooses the lowest that leaves no "
+      "structure" },
     { OPT_JOINS, 0, "joins", "T,T..", false, "where pieces meet, beside the declared transitions" },
-    { OPT_CONTINUITY, 0, "continuity", "C|C,C,..", false, "of alpha at the joins: value (default), slope, curvature, or none" },
+    { OPT_CONTINUITY, 0, "continuity", "C|C,C,..", false,
+      "of alpha at the joins: value (default), slope, curvature, or none" },
     { OPT_REFERENCE, 0, "reference", "T", false, "reference temperature of the record, default the first table's" },
     { OPT_BASE, 0, "base", "reference|current", false, "length to which alpha refers, default the first table's" },
     { OPT_RANGE, 0, "range", "LO:HI", false, "take only rows whose printed temperatures lie inside" },
@@ -57,7 +59,8 @@ fit(job *j, work *w)
     progress_begin(&p, j, "fitting");
     w->settings.options.progress = progress_share;
     w->settings.options.progress_context = &p;
-    kel_status done = kel_fit(&w->record, &w->report, (const kel_table *const *)w->tables, w->count, &w->settings.options, &err);
+    kel_status done = kel_fit(&w->record, &w->report, (const kel_table *const *)w->tables, w->count,
+                              &w->settings.options, &err);
     progress_end(&p);
     const char *name = w->count == 1 ? j->operands[0] : NULL;
     if (done < 0)

@@ -46,7 +46,10 @@ add_group(kel_text *out, const option_group *g)
         kel_text_add(out, "    ");
         if (e->letter != 0)
             kel_text_printf(out, "-%c, ", e->letter);
-        kel_text_printf(out, "--%s%s%s\n", e->name, e->argument != NULL ? " " : "", e->argument != NULL ? e->argument : "");
+        kel_text_printf(out, "--%s", e->name);
+        if (e->argument != NULL)
+            kel_text_printf(out, " %s", e->argument);
+        kel_text_add(out, "\n");
         add_wrapped(out, e->help, OPTION_INDENT, 0);
     }
 }
@@ -77,7 +80,8 @@ int
 help_all(const job *j)
 {
     kel_text text = KEL_TEXT_INIT;
-    kel_text_add(&text, "kelspan COMMAND [options] ...\n\nFits tables of linear thermal expansion and answers from the fit with "
+    kel_text_add(&text, "kelspan COMMAND [options] ...\n\nFits tables of linear thermal expansion and answers from "
+                        "the fit with "
                         "uncertainty and flags.\n\n");
     for (const command *c = commands; c->name != NULL; c++) {
         kel_text_printf(&text, "    %-11s ", c->name);

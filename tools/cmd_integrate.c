@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* kelspan integrate: from one temperature to another, the integral of alpha, the length ratio, the mean coefficient, and
-   with a length its change. */
+/* kelspan integrate: from one temperature to another, the integral of alpha, the length ratio, the mean coefficient,
+   and with a length its change. */
 #include "commands.h"
 #include "interval.h"
 #include "messages.h"
@@ -13,8 +13,8 @@ const option_group integrate_options = { "Interval", (const option_entry[]){
     { OPT_TO, 0, "to", "T", false, "where it ends" },
     { OPT_LENGTH, 0, "length", "L", false, "a part's length, for its change" },
     { OPT_LENGTH_AT, 0, "length-at", "T", false, "the temperature at which the part has that length, default --from" },
-    { OPT_PAIRS, 0, "pairs", "FILE|-", false, "instead: CSV rows 'from [K],to [K]' and perhaps 'length [mm]', a row of CSV out for "
-      "each" },
+    { OPT_PAIRS, 0, "pairs", "FILE|-", false, "instead: CSV rows 'from [K],to [K]' and perhaps 'length [mm]', a row "
+      "of CSV out for each" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 static const char *const keys[QUANTITIES] = { "integral", "length_ratio", "mean_coefficient_per_K", "change_m" };

@@ -10,9 +10,9 @@
 #include <unistd.h>
 
 const option_group read_options = { "Output of tables", (const option_entry[]){
-    { OPT_AS, 0, "as", "csv", false, "write the table in the product's own layout, units and digits as printed (one table)" },
+    { OPT_AS, 0, "as", "csv", false, "write the table in the product's own layout, units and digits as printed (one "
+      "table)" },
     { OPT_OUTPUT, 'o', "output", "FILE", false, "write that into a file instead of stdout" },
-    { OPT_TEMPERATURE_UNIT, 0, "temperature-unit", "UNIT", false, "K, degC, degF or degR in text" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 static void

@@ -102,7 +102,8 @@ text_result(const subject *s, const units *in, sink *out)
     const kel_content *c = s->content;
     kel_text *text = &out->pending;
     add_file_name(text, s->name);
-    kel_text_printf(text, ": %s, %zu observations, u is the standard uncertainty of a row%s\n\n", c->form, c->observations,
+    kel_text_printf(text, ": %s, %zu observations, u is the standard uncertainty of a row%s\n\n", c->form,
+                    c->observations,
                     c->thinned ? "; a thinned set of the rows" : "");
     text_residuals(text, c, in, false);
 }
@@ -120,7 +121,8 @@ run_residuals(job *j)
     if (status != EXIT_FINE)
         return status;
     if (strcmp(s.content->form, "adopted") == 0) {
-        status = fail_text(j, s.name, "adopted from published coefficients: it holds no observations, so there are no residuals");
+        status = fail_text(j, s.name, "adopted from published coefficients: it holds no observations, so there are no "
+                                      "residuals");
     } else {
         sink out;
         sink_begin(&out, STDOUT_FILENO);

@@ -10,8 +10,8 @@
 #include <unistd.h>
 
 const option_group show_options = { "Content", (const option_entry[]){
-    { OPT_POWERS, 0, "powers", NULL, false, "each piece's coefficients of powers of T with standard uncertainties, in the units "
-      "asked for; with --csv as a file that adopt reads" },
+    { OPT_POWERS, 0, "powers", NULL, false, "each piece's coefficients of powers of T with standard uncertainties, "
+      "in the units asked for; with --csv as a file that adopt reads" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 /* Powers of one piece with their u; the caller's job owns the memory. t = (T - centre)/scale. */
@@ -24,7 +24,8 @@ powers_of(job *j, const subject *s, size_t piece, double centre, double scale, d
     *u = kel_arena_take(j->memory, n, sizeof **u);
     if (*power == NULL || *u == NULL)
         return fail_memory(j);
-    return kel_record_powers(*power, *u, s->record, piece, centre, scale, &err) < 0 ? fail(j, s->name, &err) : EXIT_FINE;
+    kel_status status = kel_record_powers(*power, *u, s->record, piece, centre, scale, &err);
+    return status < 0 ? fail(j, s->name, &err) : EXIT_FINE;
 }
 
 /* --- JSON --- */
@@ -152,7 +153,8 @@ text_powers(job *j, kel_text *out, const subject *s, const units *in)
     const kel_content *c = s->content;
     double centre, scale;
     unit_frame(&in->temperature, &centre, &scale);
-    kel_text_printf(out, "\nPowers: alpha in %s is the sum of coefficient times T^power, T in %s\n", in->coefficient.name,
+    kel_text_printf(out, "\nPowers: alpha in %s is the sum of coefficient times T^power, T in %s\n",
+                    in->coefficient.name,
                     in->temperature.name);
     static const char *const headings[] = { "piece", "power", "coefficient", "standard uncertainty" };
     columns *table = columns_new(headings, 4);

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* kelspan tabulate: the answers at even steps. The steps are counted in the unit of the question and each temperature is
-   rounded there to 15 digits before it becomes kelvin, so that 20 degC and steps of 0.1 degC give 20.3 degC, not
+/* kelspan tabulate: the answers at even steps. The steps are counted in the unit of the question and each temperature
+   is rounded there to 15 digits before it becomes kelvin, so that 20 degC and steps of 0.1 degC give 20.3 degC, not
    20.299999999999997. */
 #include "answers.h"
 #include "commands.h"

@@ -1,12 +1,13 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* A table of cells for people. A column of numbers is aligned at the decimal points, one of words at the left. The rows wait
-   until they are flushed; the widths that were found stay, so that a long table can be flushed in parts. */
+/* A table of cells for people. A column of numbers is aligned at the decimal points, one of words at the left. The
+   rows wait until they are flushed; the widths that were found stay, so that a long table can be flushed in parts. */
 #include "output.h"
 
 #include <stdlib.h>
 #include <string.h>
 
-typedef struct shape { size_t head, tail, words; } shape; /* columns of the screen left and right of the point, and of words */
+/* Places on the screen left and right of the decimal point, and of words. */
+typedef struct shape { size_t head, tail, words; } shape;
 
 struct columns {
     const char *const *headings;

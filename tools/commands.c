@@ -10,37 +10,41 @@
 
 const command commands[] = {
     { "read", "say what was understood of tables before anyone fits them", "TABLE...",
-      "Reads tables of thermal expansion and prints their kinds, units, reference temperature, base, range, gaps, the rows left "
-      "out and why, and what is known of their uncertainty. With --as csv a table is written in the product's own layout, in the "
-      "units and digits printed.", run_read, GROUPS(&read_options, &table_group, &output_group) },
+      "Reads tables of thermal expansion and prints their kinds, units, reference temperature, base, range, gaps, "
+      "the rows left out and why, and what is known of their uncertainty. With --as csv a table is written in the "
+      "product's own layout, in the units and digits printed.", run_read, GROUPS(&read_options, &temperature_unit_group, &table_group, &output_group) },
     { "fit", "fit alpha(T) to tables and save the coefficients in a record", "TABLE...",
-      "Fits one curve alpha(T) to all values of all tables by weighted least squares: coefficients, mean coefficients and "
-      "expansions each as what they are. Prints a report; with -o the record is saved, from which the other commands answer.",
+      "Fits one curve alpha(T) to all values of all tables by weighted least squares: coefficients, mean "
+      "coefficients and expansions each as what they are. Prints a report; with -o the record is saved, from which "
+      "the other commands answer.",
       run_fit, GROUPS(&fit_options, &table_group, &unit_group, &output_group) },
     { "adopt", "make a record from published coefficients", "COEFFICIENTS.csv",
       "Reads polynomials that someone else has fitted, one row for each piece, and makes a record of them.",
       run_adopt, GROUPS(&adopt_options, &unit_group, &output_group) },
     { "show", "show what a record holds", "RECORD",
-      "Shows pieces, validity range, gaps, transitions, uncertainty and sources of a record; --powers gives each piece's "
-      "coefficients as powers of the temperature with their standard uncertainties.",
+      "Shows pieces, validity range, gaps, transitions, uncertainty and sources of a record; --powers gives each "
+      "piece's coefficients as powers of the temperature with their standard uncertainties.",
       run_show, GROUPS(&show_options, &csv_group, &unit_group, &table_group, &output_group) },
     { "residuals", "list the observations with fitted values and residuals", "RECORD",
-      "Lists each observation that was fitted, the curve's value there, the residual, the share of a table's shared error and the "
-      "standard uncertainty, and the rows that were left out with the reason.",
+      "Lists each observation that was fitted, the curve's value there, the residual, the share of a table's shared "
+      "error and the standard uncertainty, and the rows that were left out with the reason.",
       run_residuals, GROUPS(&csv_group, &unit_group, &table_group, &output_group) },
     { "value", "coefficient, mean coefficient, expansion and length ratio at temperatures", "RECORD T...",
-      "Answers at each temperature T. The mean coefficient, the expansion and the length ratio count from the reference "
-      "temperature.", run_value,
+      "Answers at each temperature T. The mean coefficient, the expansion and the length ratio count from the "
+      "reference temperature.", run_value,
       GROUPS(&answer_group, &csv_group, &reservation_group, &unit_group, &table_group, &output_group) },
     { "integrate", "integral, change in length and mean coefficient between two temperatures", "RECORD",
-      "Answers for the interval from one temperature to another, or with --pairs for a stream of intervals in constant memory.",
+      "Answers for the interval from one temperature to another, or with --pairs for a stream of intervals in "
+      "constant memory.",
       run_integrate,
       GROUPS(&integrate_options, &reservation_group, &unit_group, &length_unit_group, &table_group, &output_group) },
     { "tabulate", "a table of alpha, mean coefficient and expansion at even steps", "RECORD",
       "Answers from one temperature to another in steps, both ends included where the step divides the interval.",
       run_tabulate,
-      GROUPS(&tabulate_options, &answer_group, &csv_group, &reservation_group, &unit_group, &table_group, &output_group) },
-    { "help", "help on a command", "[COMMAND]", "Without COMMAND the list of commands.", run_help, GROUPS(&output_group) },
+      GROUPS(&tabulate_options, &answer_group, &csv_group, &reservation_group, &unit_group, &table_group,
+             &output_group) },
+    { "help", "help on a command", "[COMMAND]", "Without COMMAND the list of commands.", run_help,
+      GROUPS(&output_group) },
     { NULL, NULL, NULL, NULL, NULL, NULL },
 };
 

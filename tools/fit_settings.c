@@ -31,7 +31,8 @@ read_degrees(job *j, kel_fit_options *o)
         for (size_t i = 0; i < size && good; i++)
             n = 10 * n + (item[i] - '0');
         if (!good || n > KEL_DEGREE_MAX)
-            return usage(j, "--degree is auto or a whole number from 0 to %d, or one for each piece, not %s", KEL_DEGREE_MAX,
+            return usage(j, "--degree is auto or a whole number from 0 to %d, or one for each piece, not %s",
+                         KEL_DEGREE_MAX,
                          option_value(j, OPT_DEGREE));
         degrees[o->degree_count++] = n;
     }

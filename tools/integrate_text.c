@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The answer of `integrate` for people: the change first if a length was given, then what it comes from, what its uncertainty
-   covers, and all that its user has to know. */
+/* The answer of `integrate` for people: the change first if a length was given, then what it comes from, what its
+   uncertainty covers, and all that its user has to know. */
 #include "interval.h"
 
 #include "messages.h"
@@ -60,7 +60,8 @@ add_shares(kel_text *out, const subject *s, const kel_answer *a)
     kel_text_add(out, "\n");
 }
 
-/* The factor for 95 % of this answer: its degrees of freedom by Welch and Satterthwaite, the other parts counting as known. */
+/* The factor for 95 % of this answer: its degrees of freedom by Welch and Satterthwaite, the other parts counting as
+   known. */
 static void
 add_factor(kel_text *out, const subject *s, const kel_answer *a)
 {
@@ -104,7 +105,8 @@ add_cautions(kel_text *out, const interval *v)
     bool cold = fmin(v->from, v->to) < cold_limit, hot = fmax(v->from, v->to) > hot_limit;
     if (!cold && !hot)
         return;
-    kel_text_printf(out, "\n%s: a computed temperature is not a procedure. How parts are %s safely is settled by the site's rules\n"
+    kel_text_printf(out, "\n%s: a computed temperature is not a procedure. How parts are %s safely is settled by the "
+                         "site's rules\n"
                     "and by people competent for it.\n",
                     cold && hot ? "Deep cold and heat" : cold ? "Deep cold" : "Heat",
                     cold && hot ? "cooled and heated" : cold ? "cooled" : "heated");
@@ -175,10 +177,8 @@ interval_text(kel_text *out, const job *j, const subject *s, const interval *v, 
     kel_text_add(out, " to ");
     add_temperature(out, &in->temperature, s->content->range.hi);
     if (v->outside > 0) {
-        kel_unit difference = in->temperature;
-        difference.offset_e2 = 0;
         kel_text_add(out, ", ");
-        add_temperature(out, &difference, v->outside);
+        add_difference(out, &in->temperature, v->outside);
         kel_text_add(out, " of the interval lie outside");
     }
     kel_text_add(out, "\n");

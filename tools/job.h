@@ -10,7 +10,8 @@ struct command;
 
 enum exit_status { EXIT_FINE = 0, EXIT_FAILED = 1, EXIT_USAGE = 2, EXIT_RESERVED = 3 };
 
-/* Something to say beside the answer: a warning or a reservation. Equal code, text and file are one note with a count. */
+/* Something to say beside the answer: a warning or a reservation. Equal code, text and file are one note with a
+   count. */
 typedef struct note {
     const char *code, *text, *file; /* file: NULL if the note belongs to none */
     size_t line, count;             /* of its first place; 0: it has no line */

@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Errors and warnings. An error is one line `kelspan: FILE:LINE:COLUMN: message` on stderr, or with --json one object there;
-   nothing else is said by a run that fails. Warnings wait until the answer stands, then appear one line for each kind
-   and file with their count and first place, or with --json as a member of the result. */
+/* Errors and warnings. An error is one line `kelspan: FILE:LINE:COLUMN: message` on stderr, or with --json one object
+   there; nothing else is said by a run that fails. Warnings wait until the answer stands, then appear one line for
+   each kind and file with their count and first place, or with --json as a member of the result. */
 #include "messages.h"
 
 #include "commands.h"
@@ -196,7 +196,8 @@ say_warnings(const job *j)
         add_place(&line, n->file, n->line, 0);
         kel_text_printf(&line, "warning: %s", n->text);
         if (count > 1)
-            kel_text_printf(&line, n->line != 0 ? " (%zu times, first here)" : " (%zu times, this is the first)", count);
+            kel_text_printf(&line, n->line != 0 ? " (%zu times, first here)" : " (%zu times, this is the first)",
+                            count);
         say_text(&line);
     }
 }

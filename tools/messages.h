@@ -13,8 +13,8 @@ int fail_memory(const job *j);
 /* Wrong usage: the error, then where help is. Gives EXIT_USAGE. */
 int usage(const job *j, const char *format, ...) __attribute__((format(printf, 2, 3)));
 
-/* Keeps a warning for the end of the run: a command that fails says its error only. The strings are copied. count is how
-   often it occurred (at least once). */
+/* Keeps a warning for the end of the run: a command that fails says its error only. The strings are copied. count is
+   how often it occurred (at least once). */
 int warn(job *j, const char *code, const char *file, size_t line, size_t count, const char *text);
 /* Those of a table, of a fit or of adopted coefficients. */
 int warn_all(job *j, const char *file, const kel_warning *warnings, size_t n);

@@ -8,8 +8,8 @@
 #include <string.h>
 
 const option_group output_group = { "Output", (const option_entry[]){
-    { OPT_JSON, 0, "json", NULL, false, "one JSON object on stdout with all digits, SI units in the keys; warnings stand in it, "
-      "an error is an object on stderr" },
+    { OPT_JSON, 0, "json", NULL, false, "one JSON object on stdout with all digits, SI units in the keys; warnings "
+      "stand in it, an error is an object on stderr" },
     { OPT_QUIET, 'q', "quiet", NULL, false, "no warnings and no progress on stderr" },
     { OPT_HELP, 'h', "help", NULL, false, "this help" },
     { 0, 0, NULL, NULL, false, NULL } } };
@@ -21,7 +21,8 @@ const option_group csv_group = { "", (const option_entry[]){
 const option_group reservation_group = { "Answers with a reservation (status 3)", (const option_entry[]){
     { OPT_ACCEPT, 0, "accept", "CODE[,CODE]", true, "keep the note but give status 0 for these: extrapolated, gap, "
       "transition, unreachable, unknown-uncertainty" },
-    { OPT_WITHIN_RANGE, 0, "within-range", NULL, false, "refuse an extrapolated answer: status 1 and nothing on stdout" },
+    { OPT_WITHIN_RANGE, 0, "within-range", NULL, false,
+      "refuse an extrapolated answer: status 1 and nothing on stdout" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 const option_group temperature_unit_group = { "", (const option_entry[]){
@@ -30,24 +31,29 @@ const option_group temperature_unit_group = { "", (const option_entry[]){
 
 const option_group unit_group = { "Units", (const option_entry[]){
     { OPT_TEMPERATURE_UNIT, 0, "temperature-unit", "UNIT", false, "K, degC, degF or degR in text and CSV" },
-    { OPT_COEFFICIENT_UNIT, 0, "coefficient-unit", "UNIT", false, "for example 1e-6/K, ppm/degF or um/(m.K), in text and CSV" },
+    { OPT_COEFFICIENT_UNIT, 0, "coefficient-unit", "UNIT", false,
+      "for example 1e-6/K, ppm/degF or um/(m.K), in text and CSV" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 const option_group length_unit_group = { "", (const option_entry[]){
-    { OPT_LENGTH_UNIT, 0, "length-unit", "UNIT", false, "for example mm, um, in or mil, for lengths and their change in text" },
+    { OPT_LENGTH_UNIT, 0, "length-unit", "UNIT", false,
+      "for example mm, um, in or mil, for lengths and their change in text" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
 const option_group table_group = { "Reading tables", (const option_entry[]){
-    { OPT_COLUMN, 0, "column", "'QUANTITY [UNIT]=COLUMN'", true, "what a column of a foreign file is; COLUMN is its name there "
-      "or its number from 1" },
-    { OPT_SET, 0, "set", "'KEY: VALUE'", true, "metadata that the file lacks, for example 'reference temperature: 20 degC'" },
+    { OPT_COLUMN, 0, "column", "'QUANTITY [UNIT]=COLUMN'", true,
+      "what a column of a foreign file is; COLUMN is its name there or its number from 1" },
+    { OPT_SET, 0, "set", "'KEY: VALUE'", true, "metadata that the file lacks, for example 'reference temperature: 20 "
+      "degC'" },
     { OPT_HEADER, 0, "header", "none|N", false, "the header stands in line N, or there is none" },
-    { OPT_DELIMITER, 0, "delimiter", "WORD", false, "comma, semicolon, tab, or blanks for a table copied out of a document" },
+    { OPT_DELIMITER, 0, "delimiter", "WORD", false,
+      "comma, semicolon, tab, or blanks for a table copied out of a document" },
     { OPT_TRANSPOSE, 0, "transpose", NULL, false, "temperatures stand across the top" },
     { OPT_INCLUDE_MARKED, 0, "include-marked", NULL, false, "take rows with a status mark too" },
     { OPT_LEAVE_OUT, 0, "leave-out", "FILE:LINE=REASON", true, "leave a row out; the reason is kept in the record" },
     { OPT_SERIES, 0, "series", "LABEL", false, "which material's columns to take" },
-    { OPT_KIND, 0, "kind", "KIND", false, "which of several columns of one measurement: coefficient, mean, expansion, or all" },
+    { OPT_KIND, 0, "kind", "KIND", false, "which of several columns of one measurement: coefficient, mean, "
+      "expansion, or all" },
     { OPT_GAP, 0, "gap", "D", false, "a stretch without observations longer than this difference is a gap" },
     { 0, 0, NULL, NULL, false, NULL } } };
 

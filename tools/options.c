@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Options. Every command's tables go to getopt_long as they are, so that what help shows is what is accepted. Options may
-   stand anywhere behind the command's name: getopt is asked to hand operands over in order (a leading '-'), and an
-   argument that starts with '-' and a digit or point is taken as an operand before getopt sees it: -321degF is a
+/* Options. Every command's tables go to getopt_long as they are, so that what help shows is what is accepted. Options
+   may stand anywhere behind the command's name: getopt is asked to hand operands over in order (a leading '-'), and
+   an argument that starts with '-' and a digit or point is taken as an operand before getopt sees it: -321degF is a
    temperature. */
 #include "options.h"
 

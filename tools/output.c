@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Numbers for people. The value is rounded at the place where its expanded uncertainty U = 2u has its second significant digit,
-   as is usual in certificates; further digits would promise what the data do not hold. */
+/* Numbers for people. The value is rounded at the place where its expanded uncertainty U = 2u has its second
+   significant digit, as is usual in certificates; further digits would promise what the data do not hold. */
 #include "output.h"
 
 #include "messages.h"
@@ -175,6 +175,15 @@ add_temperature(kel_text *out, const kel_unit *unit, double kelvin)
 }
 
 void
+add_difference(kel_text *out, const kel_unit *unit, double kelvin)
+{
+    kel_unit degree = *unit;
+    degree.offset_e2 = 0;
+    add_temperature_number(out, &degree, kelvin);
+    kel_text_printf(out, " %s", strcmp(unit->name, "degC") == 0 ? "K" : unit->name);
+}
+
+void
 add_unit(kel_text *out, const char *name)
 {
     if (strncmp(name, "1e", 2) == 0 || strncmp(name, "1/", 2) == 0)
@@ -213,7 +222,8 @@ add_covers(kel_text *out, const kel_content *c)
             found = found || (int)c->modes[i].kind == kind;
         if (found) {
             kel_text_add(out, before);
-            kel_text_add(out, kind == KEL_MODE_SHARED && c->variance == KEL_VARIANCE_STATED ? "the coefficients' stated uncertainty"
+            kel_text_add(out, kind == KEL_MODE_SHARED && c->variance == KEL_VARIANCE_STATED
+                         ? "the coefficients' stated uncertainty"
                                                                                               : names[kind]);
             before = ", ";
         }

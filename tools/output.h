@@ -20,11 +20,14 @@ kel_unit change_unit(const units *u, double change);
 
 /* "293.15 K". */
 void add_temperature(kel_text *out, const kel_unit *unit, double kelvin);
+/* A difference of temperatures in the unit's degrees: "73 K" for K and degC. */
+void add_difference(kel_text *out, const kel_unit *unit, double kelvin);
 /* "293.15", in the unit, at most `4` decimals without trailing zeros. */
 void add_temperature_number(kel_text *out, const kel_unit *unit, double kelvin);
 
-/* Decimals at which an uncertainty U shows two significant digits; for a U that is not known or 0 those at which the value
-   shows six. Never so many that the value shows more than 12 digits. May be negative: 2 digits of 1234 are 12 hundreds. */
+/* Decimals at which an uncertainty U shows two significant digits; for a U that is not known or 0 those at which the
+   value shows six. Never so many that the value shows more than 12 digits. May be negative: 2 digits of 1234 are 12
+   hundreds. */
 int decimals_for(double value, double U);
 /* x at so many decimals; "not known" for NaN. */
 void add_rounded(kel_text *out, double x, int decimals);
@@ -48,9 +51,11 @@ double student_factor(double nu);
 /* A line about it, or nothing. */
 void add_student(kel_text *out, const kel_content *c);
 
-/* A table of text cells. Numbers are aligned at their decimal point, words at their left. A cell belongs to the current row. */
+/* A table of text cells. Numbers are aligned at their decimal point, words at their left. A cell belongs to the
+   current row. */
 typedef struct columns columns;
-columns *columns_new(const char *const *headings, size_t count); /* a heading may have two lines, parted by \n; NULL: no memory */
+columns *columns_new(const char *const *headings, size_t count); /* a heading may have two lines,
+    parted by \n; NULL: no memory */
 void columns_add(columns *c, const char *text);  /* NULL: an empty cell */
 void columns_add_text(columns *c, kel_text *text);   /* takes the text over, and clears it */
 /* Appends the rows so far and forgets them; the widths are kept. The headings come with the first rows. */

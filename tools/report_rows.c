@@ -64,7 +64,8 @@ residual_cells(columns *table, kel_text *cell, const kel_content *c, const kel_f
 {
     double U = 2 * show_value(in, f->kind, f->u), res = show_value(in, f->kind, c->columns[f->column].resolution);
     /* Two digits more than were printed show the residual of a value that was rounded. */
-    int d = decimals_for(show_value(in, f->kind, f->observed), isfinite(U) && U > 0 ? fmin(U, res > 0 ? res : U) : res) + 1;
+    int d = decimals_for(show_value(in, f->kind, f->observed), isfinite(U) && U > 0 ? fmin(U, res > 0 ? res : U)
+                         : res) + 1;
     if (sources) {
         add_file_name(cell, c->sources[f->source].name);
         columns_add_text(table, cell);

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What is said of a fit or of adopted coefficients, for people: how it was made, how well it meets its observations, where it
-   holds, what its uncertainty covers. */
+/* What is said of a fit or of adopted coefficients, for people: how it was made, how well it meets its observations,
+   where it holds, what its uncertainty covers. */
 #include "report.h"
 
 #include "messages.h"
@@ -84,7 +84,8 @@ text_form(kel_text *out, const kel_content *c, const kel_fit_report *r, const un
         kel_text_printf(out, ", degree %zu", c->pieces[i].count - 1);
         if (i > 0 && i - 1 < c->continuity_count) {
             int k = c->continuity[i - 1];
-            kel_text_printf(out, k < 0 ? ", alpha may jump at its start" : ", continuous %s of alpha at its start", joins[k + 1]);
+            kel_text_printf(out, k < 0 ? ", alpha may jump at its start" : ", continuous %s of alpha at its start",
+                            joins[k + 1]);
         }
         kel_text_add(out, "\n");
     }
@@ -185,7 +186,8 @@ text_summary(kel_text *out, const kel_content *c, const kel_fit_report *r, const
     add_label(out, "base");
     kel_text_printf(out, "%s\n", kel_base_name(c->base));
     add_label(out, "uncertainty");
-    static const char *const variances[] = { "of the rows not known", "of the rows as stated", "of the rows estimated from the residuals",
+    static const char *const variances[] = { "of the rows not known", "of the rows as stated",
+                                            "of the rows estimated from the residuals",
                                              "of the rows partly stated, partly estimated from the residuals",
                                              "stated for the curve" };
     kel_text_printf(out, "%s\n", variances[c->variance]);

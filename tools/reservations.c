@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Reservations. Each has a code for scripts and a sentence for people; they stand beside their number on stdout and once on
-   stderr, or in the object with --json. Status 3 tells of them, unless --accept names their codes. */
+/* Reservations. Each has a code for scripts and a sentence for people; they stand beside their number on stdout and
+   once on stderr, or in the object with --json. Status 3 tells of them, unless --accept names their codes. */
 #include "reservations.h"
 
 #include "messages.h"
@@ -34,7 +34,8 @@ reservations_begin(job *j)
             while (k < CODES && (strlen(codes[k].code) != size || memcmp(codes[k].code, item, size) != 0))
                 k++;
             if (k == CODES)
-                return usage(j, "--accept knows extrapolated, gap, transition, unreachable and unknown-uncertainty, not %.*s",
+                return usage(j, "--accept knows extrapolated, gap, transition, unreachable and unknown-uncertainty, "
+                                "not %.*s",
                              (int)size, item);
             j->accepted |= codes[k].flag;
         }
@@ -100,7 +101,8 @@ add_extrapolated(kel_text *out, const subject *s, const concern *about)
         kel_text_add(out, " is outside the validity range ");
     } else {
         kel_text_add(out, "the reference temperature ");
-        add_temperature(out, about->unit, isnan(about->reference) ? s->content->reference_temperature : about->reference);
+        add_temperature(out, about->unit, isnan(about->reference) ? s->content->reference_temperature
+                        : about->reference);
         kel_text_add(out, " is outside the validity range ");
     }
     add_range(out, s, about);

@@ -27,8 +27,9 @@ typedef struct concern {
 /* The words of one flag. */
 void add_reservation_text(kel_text *out, const subject *s, const concern *about, unsigned flag);
 
-/* Keeps the reservations among the flags of one answer for stderr and the exit status. EXIT_FINE; EXIT_FAILED with the error
-   said where --within-range refuses the answer. place: a line of an input, 0 if there is none; input: its name or NULL. */
+/* Keeps the reservations among the flags of one answer for stderr and the exit status. EXIT_FINE; EXIT_FAILED with
+   the error said where --within-range refuses the answer. place: a line of an input, 0 if there is none; input: its
+   name or NULL. */
 int reserve(job *j, const subject *s, const concern *about, unsigned flags, const char *input, size_t place);
 
 /* Adds the member `reservations` of one answer, or with flags = 0 an empty list. */

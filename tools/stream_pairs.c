@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* kelspan integrate --pairs: a row in, a row out, in constant memory. Rows are gathered into batches for the library's array
-   call. At a bad row the output stops before it: the rows that stand are right, the error names the line. */
+/* kelspan integrate --pairs: a row in, a row out, in constant memory. Rows are gathered into batches for the
+   library's array call. At a bad row the output stops before it: the rows that stand are right, the error names the
+   line. */
 #include "stream_pairs.h"
 
 #include "messages.h"
@@ -85,7 +86,8 @@ read_header_cell(stream *p, const kel_row *row, size_t k)
         }
     kel_text shown = KEL_TEXT_INIT;
     kel_text_quote(&shown, c->bytes, c->size);
-    kel_error_set(&err, KEL_E_SYNTAX, 0, 0, "a header of pairs is 'from [K],to [K]' and perhaps 'length [mm]', not '%s'",
+    kel_error_set(&err, KEL_E_SYNTAX, 0, 0, "a header of pairs is 'from [K],to [K]' and perhaps 'length [mm]', not "
+                                            "'%s'",
                   shown.bytes != NULL ? shown.bytes : "");
     kel_text_free(&shown);
     return fail_at(p, row->line, c->column, &err);
@@ -193,7 +195,8 @@ write_batch(stream *p)
     batch *b = p->now;
     kel_error err = { 0 };
     size_t good = b->n;
-    kel_status worst = kel_record_integral_n(b->integral, b->u, b->flags, p->s->record, b->in[FROM], b->in[TO], b->n, &err);
+    kel_status worst = kel_record_integral_n(b->integral, b->u, b->flags, p->s->record, b->in[FROM], b->in[TO], b->n,
+                                             &err);
     if (worst < 0)
         good = err.line < b->n ? err.line : 0;
     int status = EXIT_FINE;
@@ -214,7 +217,8 @@ read_row(stream *p, const kel_row *row, kel_error *err)
 {
     batch *b = p->now;
     if (row->count != p->cells)
-        return kel_error_set(err, KEL_E_SYNTAX, row->line, 1, "%zu cells, but the header has %zu", row->count, p->cells);
+        return kel_error_set(err, KEL_E_SYNTAX, row->line, 1, "%zu cells, but the header has %zu", row->count,
+                             p->cells);
     for (int i = 0; i < INPUTS; i++) {
         if (p->cell[i] == 0)
             continue;
@@ -239,7 +243,8 @@ run(stream *p)
     const kel_row *row = NULL;
     kel_error err = { 0 };
     kel_status in = KEL_OK;
-    while (status == EXIT_FINE && (in = next_row(p, &row, &err)) >= 0 && row != NULL && (in = read_row(p, row, &err)) >= 0)
+    while (status == EXIT_FINE && (in = next_row(p, &row, &err)) >= 0 && row != NULL && (in = read_row(p, row,
+        &err)) >= 0)
         if (p->now->n == BATCH)
             status = write_batch(p);
     /* What waits stands before the bad row; an error found there is the earlier one, and the only one said. */

@@ -5,7 +5,8 @@
 
 #include "files.h"
 
-/* Reads CSV rows `from,to[,length]` of the file and writes a row with the integral for each on stdout. Gives the exit status. */
+/* Reads CSV rows `from,to[,length]` of the file and writes a row with the integral for each on stdout. Gives the exit
+   status. */
 int stream_pairs(job *j, const subject *s, const char *name);
 
 #endif

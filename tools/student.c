@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The factor by which a standard uncertainty with nu degrees of freedom is multiplied for 95 % coverage: the 97.5 % point of
-   Student's distribution. Its two tails beyond t hold I_x(nu/2, 1/2) with x = nu/(nu + t^2), the regularised incomplete beta
-   function, here by its continued fraction evaluated with the modified Lentz algorithm (Lentz 1976; Thompson and Barnett
-   1986). nu need not be whole. Relative error below 1e-9, far beyond the three digits that are printed. */
+/* The factor by which a standard uncertainty with nu degrees of freedom is multiplied for 95 % coverage: the 97.5 %
+   point of Student's distribution. Its two tails beyond t hold I_x(nu/2, 1/2) with x = nu/(nu + t^2), the regularised
+   incomplete beta function, here by its continued fraction evaluated with the modified Lentz algorithm (Lentz 1976;
+   Thompson and Barnett 1986). nu need not be whole. Relative error below 1e-9, far beyond the three digits that are
+   printed. */
 #include "output.h"
 
 /* The continued fraction of I_x(a, b); converges fast for x < (a + 1)/(a + b + 2). */
@@ -43,8 +44,8 @@ tails(double t, double nu)
 double
 student_factor(double nu)
 {
-    /* The factor lies between that of the normal distribution and, at nu = 0.1, some 1e11; halving the logarithm's range is
-       quick enough and cannot fail. */
+    /* The factor lies between that of the normal distribution and, at nu = 0.1, some 1e11; halving the logarithm's
+       range is quick enough and cannot fail. */
     double lo = log(1.9), hi = log(1e13);
     for (int i = 0; i < 100; i++) {
         double middle = (lo + hi) / 2;

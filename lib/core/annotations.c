@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* A user's annotations: any JSON object, kept to the byte.
 
-   It is checked in the place where it will stand, as a member of an object, so that a depth which is fine alone but too deep
-   there is refused, and by the parser that will read it. */
+   It is checked in the place where it will stand, as a member of an object, so that a depth which is fine alone but
+   too deep there is refused, and by the parser that will read it. */
 #include "json_read.h"
 #include "record_parts.h"
 

@@ -1,14 +1,16 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Check values: alpha and e at a few temperatures, kept in the record and worked out again when it is read. The digest shows that
-   no digit was changed; the check values show that whoever reads the file understands it as the writer did.
+/* Check values: alpha and e at a few temperatures, kept in the record and worked out again when it is read. The
+   digest shows that no digit was changed; the check values show that whoever reads the file understands it as the
+   writer did.
 
-   Temperatures: the ends of the validity range, its middle and quarter points, and the reference temperature if it is inside.
+   Temperatures: the ends of the validity range, its middle and quarter points, and the reference temperature if it
+   is inside.
 
-   Tolerance: 1e-12 of the largest term. For alpha this is S = sum |c_k| of the piece; for e the integral of S from the
-   reference, with the steps on the way, times the derivative 1 + e in the base `current length`. Outside the pieces (the
-   reference may lie there) S counts |T_k(x)| at the far end, where it is largest. This leaves evaluation on another
-   machine, with another order of sums, a hundred times its error bound of (2n + 4) eps at n = 20 and seventeen times at the
-   largest degree. */
+   Tolerance: 1e-12 of the largest term. For alpha this is S = sum |c_k| of the piece; for e the integral of S from
+   the reference, with the steps on the way, times the derivative 1 + e in the base `current length`. Outside the
+   pieces (the reference may lie there) S counts |T_k(x)| at the far end, where it is largest. This leaves evaluation
+   on another machine, with another order of sums, a hundred times its error bound of (2n + 4) eps at n = 20 and
+   seventeen times at the largest degree. */
 #include "curve.h"
 #include "record_parts.h"
 
@@ -47,7 +49,8 @@ kel__checks_make(kel_record *record, kel_error *err)
         if (status < KEL_OK || !isfinite(coefficient.value) || !isfinite(expansion.value)) {
             char at[KEL_NUMBER_SIZE];
             kel_number_format(at, checks[i].at);
-            return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "the curve has no finite coefficient and expansion at %s K", at);
+            return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "the curve has no finite coefficient and expansion at %s K",
+                                 at);
         }
         checks[i].coefficient = coefficient.value;
         checks[i].expansion = expansion.value;
@@ -94,8 +97,8 @@ mismatch(const char *what, double at, double want, double got, const char *unit,
     kel_number_format(t, at);
     kel_number_format(w, want);
     kel_number_format(g, got);
-    return kel_error_set(err, KEL_E_DIGEST, 0, 0, "the check value of the %s at %s K is %s%s, but the curve gives %s%s", what, t, w,
-                         unit, g, unit);
+    return kel_error_set(err, KEL_E_DIGEST, 0, 0, "the check value of the %s at %s K is %s%s, but the curve gives %s%s",
+                         what, t, w, unit, g, unit);
 }
 
 kel_status

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* The rules of a record's content, so that no code that uses a record has to look again. This file: how a breach is reported,
-   and the curve with its pieces, transitions, modes, range and gaps. The data behind the curve: content_check_data.c.
+/* The rules of a record's content, so that no code that uses a record has to look again. This file: how a breach is
+   reported, and the curve with its pieces, transitions, modes, range and gaps. The data behind the curve:
+   content_check_data.c.
 
    The same rules hold for content that a program gives and for a file; places are named as in the file. */
 #include "content_check.h"
@@ -42,7 +43,8 @@ kel__check_number(kel__checker *checker, kel__place place, double x, kel__rule r
     if ((isnan(x) && may_be_unknown) || (isfinite(x) && (x >= 0.0 || may_be_negative)))
         return;
     kel_number_format(got, x);
-    kel_error_set(&what, KEL_OK, 0, 0, "= %s %s", got, isfinite(x) ? "must not be negative" : "must be a finite number");
+    kel_error_set(&what, KEL_OK, 0, 0, "= %s %s", got,
+                  isfinite(x) ? "must not be negative" : "must be a finite number");
     /* NaN is how null was read. */
     kel__breach(checker, place, isnan(x) ? "must be a finite number" : what.message);
 }

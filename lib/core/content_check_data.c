@@ -119,16 +119,18 @@ check_rows(kel__checker *checker, const kel_content *content)
         fitted += content->rows[i].left_out == NULL;
     }
     if (checker->status == KEL_OK && !content->thinned)
-        check_count(checker, (kel__place){ .key = "observations" }, content->observations, "rows that were fitted", fitted);
+        check_count(checker, (kel__place){ .key = "observations" }, content->observations, "rows that were fitted",
+                    fitted);
 }
 
 void
 kel__check_data(kel__checker *checker, const kel_content *content)
 {
     kel__check_word(checker, (kel__place){ .key = "variance" }, &kel__variances, (int)content->variance);
-    kel__check_number(checker, (kel__place){ .key = "degrees_of_freedom" }, content->degrees_of_freedom, KEL__FINITE_OR_NAN);
-    kel__check_number(checker, (kel__place){ .key = "residual_standard_deviation" }, content->residual_standard_deviation,
-                      KEL__NOT_NEGATIVE_OR_NAN);
+    kel__check_number(checker, (kel__place){ .key = "degrees_of_freedom" }, content->degrees_of_freedom,
+                      KEL__FINITE_OR_NAN);
+    kel__check_number(checker, (kel__place){ .key = "residual_standard_deviation" },
+                      content->residual_standard_deviation, KEL__NOT_NEGATIVE_OR_NAN);
     kel__check_number(checker, (kel__place){ .key = "chi2" }, content->chi2, KEL__NOT_NEGATIVE_OR_NAN);
     check_sources(checker, content);
     check_columns(checker, content);

@@ -18,7 +18,8 @@ kel__io_error(kel_error *err, const char *action, const char *path, int reason)
     kel_text quoted = KEL_TEXT_INIT;
     kel_text_quote(&quoted, path + skipped, n - skipped);
     locale_t c = newlocale(LC_ALL_MASK, "C", (locale_t)0);
-    const char *text = c == (locale_t)0 ? "the system gave a reason that there is no memory to tell" : strerror_l(reason, c);
+    const char *text =
+        c == (locale_t)0 ? "the system gave a reason that there is no memory to tell" : strerror_l(reason, c);
     /* Without memory for the path the reason still counts. */
     kel_error_set(err, KEL_E_IO, 0, 0, "cannot %s '%s%s': %s", action, skipped != 0 ? "..." : "",
                   quoted.failed || quoted.bytes == NULL ? "" : quoted.bytes, text);

@@ -5,7 +5,8 @@
 
 #include "core.h"
 
-/* KEL_E_IO "cannot write 'nt40.json': No space left on device"; `action` is "write", "read". reason: a value of errno. */
+/* KEL_E_IO "cannot write 'nt40.json': No space left on device"; `action` is "write", "read". reason: a value of
+   errno. */
 kel_status kel__io_error(kel_error *err, const char *action, const char *path, int reason);
 
 #endif

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* JSON (RFC 8259) with one fixed layout, so that equal calls give equal bytes.
 
-   A level is an object or an array and is laid out either a member a line or all on one line; what stands inside a level on
-   one line stands on that line too. The levels are bits of two words, which limits the depth to 63: a deeper call marks the
-   text as failed, for no output of this library comes near. */
+   A level is an object or an array and is laid out either a member a line or all on one line; what stands inside a
+   level on one line stands on that line too. The levels are bits of two words, which limits the depth to 63: a
+   deeper call marks the text as failed, for no output of this library comes near. */
 #include "core.h"
 #include "utf8.h"
 

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* What the strict JSON reader builds on its parser: places in messages, counts, words, arrays of numbers. Knows no parser. */
+/* What the strict JSON reader builds on its parser: places in messages, counts, words, arrays of numbers. Knows no
+   parser. */
 #include "json_read.h"
 
 #include <math.h>

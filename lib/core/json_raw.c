@@ -1,8 +1,9 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* Finds where things stand in a JSON text.
 
-   What users keep in a record's annotations is theirs to the byte: 1.50 stays 1.50, and their layout stays. A parsed tree has
-   lost that, so the text is walked again. It was parsed before, so nothing but strings and brackets needs to be told apart. */
+   What users keep in a record's annotations is theirs to the byte: 1.50 stays 1.50, and their layout stays. A parsed
+   tree has lost that, so the text is walked again. It was parsed before, so nothing but strings and brackets needs
+   to be told apart. */
 #include "json_raw.h"
 
 #include <stdbool.h>

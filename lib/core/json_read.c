@@ -1,15 +1,16 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* The strict JSON reader, on jansson. The only file that knows jansson.
 
-   Numbers: jansson is asked to take integers as reals too, so that -0 keeps its sign and every number is read by one rule: to
-   the nearest double. It mends the decimal point for the C library's locale, which is not safe against another thread that
-   changes the locale meanwhile. Integers are recognised by value.
+   Numbers: jansson is asked to take integers as reals too, so that -0 keeps its sign and every number is read by one
+   rule: to the nearest double. It mends the decimal point for the C library's locale, which is not safe against
+   another thread that changes the locale meanwhile. Integers are recognised by value.
 
-   Lack of memory: jansson collects each token in a buffer that it doubles, ignores when that fails, and may then run past the end
-   of a token that lost its last byte. So the text is fed to it as the second element of an array whose first one is a string
-   longer than any token of the text: the buffer grows there, in the middle of a string of equal bytes, where a lost byte
-   does no harm and shows in the string's length. Other failures of allocation come out as wrong syntax; what is wrong
-   with a text is wrong every time, so a failure is believed when it happens twice in the same place.
+   Lack of memory: jansson collects each token in a buffer that it doubles, ignores when that fails, and may then run
+   past the end of a token that lost its last byte. So the text is fed to it as the second element of an array whose
+   first one is a string longer than any token of the text: the buffer grows there, in the middle of a string of
+   equal bytes, where a lost byte does no harm and shows in the string's length. Other failures of allocation come
+   out as wrong syntax; what is wrong with a text is wrong every time, so a failure is believed when it happens twice
+   in the same place.
 
    The depth is limited by jansson (2048 levels, one of them the array). */
 #include "json_read.h"
@@ -51,8 +52,8 @@ give(void *buffer, size_t size, void *context)
     return n;
 }
 
-/* The least power of two above the text's longest token and a byte read ahead. With so many x the buffer grows for the last
-   time two bytes before the string's closing quote. */
+/* The least power of two above the text's longest token and a byte read ahead. With so many x the buffer grows for
+   the last time two bytes before the string's closing quote. */
 static size_t
 enough_filling(const char *bytes, size_t n)
 {
@@ -75,7 +76,8 @@ load(const char *bytes, size_t n, size_t filling, json_error_t *failure)
     return NULL;
 }
 
-/* jansson's reason in words that fit a text which is not alone; its " near '...'", which it has for short tokens, is kept. */
+/* jansson's reason in words that fit a text which is not alone; its " near '...'", which it has for short tokens, is
+   kept. */
 static kel_status
 explain(kel_error *err, const json_error_t *failure, const char *bytes, size_t n, size_t head)
 {
@@ -89,7 +91,8 @@ explain(kel_error *err, const json_error_t *failure, const char *bytes, size_t n
         { json_error_end_of_input_expected, KEL_E_SYNTAX, "something stands behind its end" },
     };
     const enum json_error_code code = json_error_code(failure);
-    const size_t position = failure->position < 0 || (size_t)failure->position < head ? 0 : (size_t)failure->position - head;
+    const size_t position =
+        failure->position < 0 || (size_t)failure->position < head ? 0 : (size_t)failure->position - head;
     const char *near = strstr(failure->text, " near ");
     near = near == NULL ? "" : near;
     for (size_t i = 0; i < sizeof reasons / sizeof reasons[0]; i++)
@@ -121,7 +124,8 @@ kel__tree_parse(kel__tree **out, const char *bytes, size_t n, kel_error *err)
     /* "{}, {}" would do as elements of an array. */
     if (json_array_size(array) != 2) {
         json_decref(array);
-        return kel__json_fail(err, KEL_E_SYNTAX, bytes, n, kel__json_value_size(bytes, n) + 1, "something stands behind its end", "");
+        return kel__json_fail(err, KEL_E_SYNTAX, bytes, n, kel__json_value_size(bytes, n) + 1,
+                              "something stands behind its end", "");
     }
     *out = (kel__tree *)array;
     return KEL_OK;
@@ -279,8 +283,8 @@ kel__read_string_or_null(kel__reader *reader, const kel__node *object, const cha
 const char *
 kel__read_raw(kel__reader *reader, const kel__node *root, const char *key, const char *bytes, size_t n)
 {
-    /* jansson keeps the order of the text, and there are no duplicates: the place among its siblings finds the member, however
-       its key is written. */
+    /* jansson keeps the order of the text, and there are no duplicates: the place among its siblings finds the
+       member, however its key is written. */
     json_t *value = (json_t *)(uintptr_t)root->value;
     size_t place = 0, size;
     for (void *i = json_object_iter(value); i != NULL; i = json_object_iter_next(value, i), place++)

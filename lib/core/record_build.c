@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* A record from content that a program holds: checked, copied, given its check values and its digest.
 
-   What cannot be written and read back is refused here and not only when it is saved: that includes annotations that are no
-   JSON object and a text above the largest file. */
+   What cannot be written and read back is refused here and not only when it is saved: that includes annotations that
+   are no JSON object and a text above the largest file. */
 #include "record_parts.h"
 
 #include <stdlib.h>

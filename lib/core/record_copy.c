@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* Deep copy of a record's content. Strings are mended to valid UTF-8 on the way, so that a record holds what its file will
-   say, and a record that is read back equals the one that was written. */
+/* Deep copy of a record's content. Strings are mended to valid UTF-8 on the way, so that a record holds what its
+   file will say, and a record that is read back equals the one that was written. */
 #include "record_parts.h"
 #include "utf8.h"
 
@@ -78,8 +78,8 @@ copy_sources(copier *c, kel_content *out, const kel_content *content)
     kel_source *sources = copy_array(c, content->sources, content->source_count, sizeof *sources);
     for (size_t i = 0; i < content->source_count && !c->failed; i++) {
         kel_source *s = &sources[i];
-        const char **const strings[] = { &s->name, &s->digest, &s->material, &s->condition, &s->direction, &s->product_form,
-                                         &s->source, &s->lineage, &s->scale, &s->branch };
+        const char **const strings[] = { &s->name,         &s->digest, &s->material, &s->condition, &s->direction,
+                                         &s->product_form, &s->source, &s->lineage,  &s->scale,     &s->branch };
         /* "" is how a table made of arrays says that it has none. */
         if (s->digest != NULL && s->digest[0] == '\0')
             s->digest = NULL;

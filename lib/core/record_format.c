@@ -1,7 +1,7 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* The JSON text of a record, kelspan-record(5): order and layout of the keys are fixed, every key is always there (but for
-   `annotations`), and numbers have the fewest digits that read back as the same double. So equal content gives equal bytes,
-   which the digest rests on. Adding, removing or moving a key needs a new KEL__RECORD_VERSION. */
+/* The JSON text of a record, kelspan-record(5): order and layout of the keys are fixed, every key is always there
+   (but for `annotations`), and numbers have the fewest digits that read back as the same double. So equal content
+   gives equal bytes, which the digest rests on. Adding, removing or moving a key needs a new KEL__RECORD_VERSION. */
 #include "record_parts.h"
 #include "names.h"
 

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* A record from a file. It is read to its end, for what is no regular file has no size; a file that is too large is given up
-   as soon as that is seen. */
+/* A record from a file. It is read to its end, for what is no regular file has no size; a file that is too large is
+   given up as soon as that is seen. */
 #include "io_error.h"
 #include "record_parts.h"
 

@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* A record from its JSON text. In this order, so that the first thing reported is what helps most: is it a record, is its
-   format known, has it the right keys and types, does its content keep the rules, is it what was written (digest, over our own writing of
-   the content, so that layout does not matter), and does its curve give the values that it gave where it was written. */
+/* A record from its JSON text. In this order, so that the first thing reported is what helps most: is it a record,
+   is its format known, has it the right keys and types, does its content keep the rules, is it what was written
+   (digest, over our own writing of the content, so that layout does not matter), and does its curve give the values
+   that it gave where it was written. */
 #include "record_parts.h"
 #include "record_read.h"
 
@@ -20,8 +21,8 @@ check_version(kel__reader *reader, const kel__node *root)
     /* Before unknown keys are looked for: a newer format has some. */
     if (reader->status == KEL_OK && version > KEL__RECORD_VERSION)
         reader->status = kel_error_set(reader->err, KEL_E_VERSION, 0, 0,
-                                       "written by a newer kelspan (record version %zu, this one reads up to %d)", version,
-                                       KEL__RECORD_VERSION);
+                                       "written by a newer kelspan (record version %zu, this one reads up to %d)",
+                                       version, KEL__RECORD_VERSION);
     if (reader->status == KEL_OK && version < 1)
         reader->status = kel_error_set(reader->err, KEL_E_DATA, 0, 0, "%s = 0 is no version, the first is 1", key);
     return reader->status;

@@ -1,14 +1,15 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* From the JSON tree of a record to its content: the mirror of record_format.c, key by key.
 
-   Each object lists its keys, and must have these and no others. Getters are sticky (json_read.h), so that a loop only has to
-   stop early for the sake of time and never for safety: lengths are zero after a failure. */
+   Each object lists its keys, and must have these and no others. Getters are sticky (json_read.h), so that a loop
+   only has to stop early for the sake of time and never for safety: lengths are zero after a failure. */
 #include "record_read.h"
 
 #include <math.h>
 #include <string.h>
 
-#define KEYS(...) (const char *const[]){ __VA_ARGS__ }, sizeof(const char *const[]){ __VA_ARGS__ } / sizeof(const char *)
+#define KEYS(...) \
+    (const char *const[]){ __VA_ARGS__ }, sizeof(const char *const[]){ __VA_ARGS__ } / sizeof(const char *)
 
 /* All numbers of an array, which must be `want` of them. */
 static double *
@@ -165,8 +166,9 @@ read_sources(kel__reader *reader, const kel__node *root, kel_content *content)
         const kel__node e = kel__read_element(reader, &list, i);
         kel_source *s = &sources[i];
         kel__read_keys(reader, &e,
-                       KEYS("name", "digest", "material", "condition", "direction", "product_form", "source", "lineage", "scale",
-                            "branch", "reference_temperature_K", "base", "rows", "left_out", "uncertainty", "notes"),
+                       KEYS("name", "digest", "material", "condition", "direction", "product_form", "source", "lineage",
+                            "scale", "branch", "reference_temperature_K", "base", "rows", "left_out", "uncertainty",
+                            "notes"),
                        NULL);
         s->name = kel__read_string(reader, &e, "name");
         s->digest = kel__read_string_or_null(reader, &e, "digest");
@@ -197,8 +199,8 @@ read_columns(kel__reader *reader, const kel__node *root, kel_content *content)
         const kel__node e = kel__read_element(reader, &list, i);
         kel_fit_column *c = &columns[i];
         kel__read_keys(reader, &e,
-                       KEYS("source", "kind", "label", "observations", "degrees_of_freedom", "residual_standard_deviation",
-                            "scatter", "resolution", "variance"),
+                       KEYS("source", "kind", "label", "observations", "degrees_of_freedom",
+                            "residual_standard_deviation", "scatter", "resolution", "variance"),
                        NULL);
         c->source = kel__read_count(reader, &e, "source");
         c->kind = (kel_kind)kel__read_word(reader, &e, "kind", &kel__kinds);
@@ -222,8 +224,8 @@ read_rows(kel__reader *reader, const kel__node *root, kel_content *content)
         const kel__node e = kel__read_element(reader, &list, i);
         kel_fitted *r = &rows[i];
         kel__read_keys(reader, &e,
-                       KEYS("source", "column", "line", "kind", "from_K", "to_K", "observed", "fitted", "residual", "shared_term",
-                            "u", "side", "left_out"),
+                       KEYS("source", "column", "line", "kind", "from_K", "to_K", "observed", "fitted", "residual",
+                            "shared_term", "u", "side", "left_out"),
                        NULL);
         r->source = kel__read_count(reader, &e, "source");
         r->column = kel__read_count(reader, &e, "column");
@@ -262,10 +264,10 @@ void
 kel__content_read(kel_content *content, kel__reader *reader, const kel__node *root)
 {
     kel__read_keys(reader, root,
-                   KEYS("kelspan_record", "form", "base", "reference_temperature_K", "reference_defaulted", "range_K", "gaps_K",
-                        "pieces", "continuity", "transitions", "modes", "variance", "scatter_known", "observations",
-                        "parameters", "degrees_of_freedom", "residual_standard_deviation", "chi2", "lot_spread", "sources",
-                        "columns", "rows_thinned", "rows", "checks", "digest"),
+                   KEYS("kelspan_record", "form", "base", "reference_temperature_K", "reference_defaulted", "range_K",
+                        "gaps_K", "pieces", "continuity", "transitions", "modes", "variance", "scatter_known",
+                        "observations", "parameters", "degrees_of_freedom", "residual_standard_deviation", "chi2",
+                        "lot_spread", "sources", "columns", "rows_thinned", "rows", "checks", "digest"),
                    "annotations");
     content->form = kel__read_string(reader, root, "form");
     content->base = (kel_base)kel__read_word(reader, root, "base", &kel__bases);

@@ -5,8 +5,8 @@
 
 #include "json_read.h"
 
-/* Fills content from the root of a record's tree, annotations left out. Types, keys and lengths are checked here, the rules
-   of the content are not. Failures go to the reader. */
+/* Fills content from the root of a record's tree, annotations left out. Types, keys and lengths are checked here,
+   the rules of the content are not. Failures go to the reader. */
 void kel__content_read(kel_content *content, kel__reader *reader, const kel__node *root);
 
 #endif

@@ -1,10 +1,11 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* Files written so that a failure leaves what was there.
 
-   A regular target, or none yet: the bytes go to a new file beside it, which is synchronised and then renamed over it; POSIX
-   makes the renaming atomic. A symbolic link is followed, so that what it points to is replaced and the link stays. The new
-   file has the permissions of the old one, and its owner and group as far as the caller may give them; a file that the caller
-   may not write is not replaced. Access control lists, extended attributes and other hard links are not carried over.
+   A regular target, or none yet: the bytes go to a new file beside it, which is synchronised and then renamed over
+   it; POSIX makes the renaming atomic. A symbolic link is followed, so that what it points to is replaced and the
+   link stays. The new file has the permissions of the old one, and its owner and group as far as the caller may give
+   them; a file that the caller may not write is not replaced. Access control lists, extended attributes and other
+   hard links are not carried over.
 
    Anything else (a device, a pipe, a socket) is opened and written: replacing it by a file would destroy it. */
 #include "io_error.h"
@@ -40,8 +41,8 @@ write_bytes(int fd, const char *bytes, size_t n)
     return 0;
 }
 
-/* Writing to a pipe that nobody reads raises SIGPIPE, which would end the caller's program. It is held back in this thread, and
-   one that this write raised is taken away, so that EPIPE is reported and nothing else changes. */
+/* Writing to a pipe that nobody reads raises SIGPIPE, which would end the caller's program. It is held back in this
+   thread, and one that this write raised is taken away, so that EPIPE is reported and nothing else changes. */
 static int
 write_quietly(int fd, const char *bytes, size_t n)
 {
@@ -98,7 +99,8 @@ create_beside(int *fd, char *name, const char *target, mode_t mode)
     return EEXIST;
 }
 
-/* Owner and group are a matter of what the caller is allowed to; without them bits that lend an identity would be wrong. */
+/* Owner and group are a matter of what the caller is allowed to; without them bits that lend an identity would be
+   wrong. */
 static int
 adopt_permissions(int fd, const struct stat *old)
 {
@@ -112,7 +114,8 @@ adopt_permissions(int fd, const struct stat *old)
     return fchmod(fd, mode) != 0 ? errno : 0;
 }
 
-/* So that the new name outlives a failure of power. Where a directory cannot be synchronised the file is in place all the same. */
+/* So that the new name outlives a failure of power. Where a directory cannot be synchronised the file is in place
+   all the same. */
 static void
 sync_directory(const char *target)
 {

@@ -5,8 +5,8 @@
 
 #include <stddef.h>
 
-/* Where path leads when symbolic links in its last component are followed, also where nothing is there yet. To be freed. Returns 0 or
-   a value of errno; *target is NULL then. */
+/* Where path leads when symbolic links in its last component are followed, also where nothing is there yet. To be
+   freed. Returns 0 or a value of errno; *target is NULL then. */
 int kel__path_follow(char **target, const char *path);
 
 /* The directory part, "." where there is none. To be freed; NULL if memory ran out. */

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* A text buffer that grows by doubling, and data made fit for a message.
 
-   The buffer remembers that memory ran out instead of saying so at each call, so that code which writes a long text stays
-   readable: one look at `failed` at the end tells whether all of it is there. That includes kel_text_clear: a stream that is
-   written out piece by piece keeps the memory of a lost piece until kel_text_free. */
+   The buffer remembers that memory ran out instead of saying so at each call, so that code which writes a long text
+   stays readable: one look at `failed` at the end tells whether all of it is there. That includes kel_text_clear: a
+   stream that is written out piece by piece keeps the memory of a lost piece until kel_text_free. */
 #include "core.h"
 #include "utf8.h"
 

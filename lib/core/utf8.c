@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* UTF-8 as RFC 3629 (section 3) defines it. One decoder for all, so that what one part of the library writes as valid is never
-   refused by another. */
+/* UTF-8 as RFC 3629 (section 3) defines it. One decoder for all, so that what one part of the library writes as
+   valid is never refused by another. */
 #include "utf8.h"
 
 size_t

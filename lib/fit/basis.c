@@ -6,6 +6,8 @@
    row over 1 mK is as exact as one over 1000 K. */
 #include "problem.h"
 
+enum { NODES = (KEL_DEGREE_MAX + 1) / 2 + 1 };
+
 size_t
 kel__piece_at(const kel__layout *layout, double t, int side)
 {
@@ -47,18 +49,28 @@ kel__add_value(double *row, const kel__layout *layout, double t, int side, doubl
     add_chebyshev(row + piece->first, piece->count, local(piece, t), factor);
 }
 
-/* a <= b */
+/* a <= b. All nodes climb the recurrence side by side: their sums do not wait for each other. */
 static void
 add_part(double *row, const kel__layout *l, const kel_piece *piece, double a, double b, double factor)
 {
-    double half = (b - a) / 2;
-    if (piece->count == 1) {
-        row[piece->first] += factor * (b - a);
+    double half = (b - a) / 2, *c = row + piece->first, x[NODES], before[NODES], now[NODES];
+    c[0] += factor * (b - a);
+    if (piece->count == 1)
         return;
-    }
     for (size_t i = 0; i < l->node_count; i++) {
-        double t = a + half * (1 + l->nodes[i]);
-        add_chebyshev(row + piece->first, piece->count, local(piece, t), factor * half * l->weights[i]);
+        x[i] = local(piece, a + half * (1 + l->nodes[i]));
+        before[i] = 1;
+        now[i] = x[i];
+    }
+    for (size_t n = 1; n < piece->count; n++) {
+        double sum = 0;
+        for (size_t i = 0; i < l->node_count; i++) {
+            double next = 2 * x[i] * now[i] - before[i];
+            sum += l->weights[i] * now[i];
+            before[i] = now[i];
+            now[i] = next;
+        }
+        c[n] += factor * half * sum;
     }
 }
 

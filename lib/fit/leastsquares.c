@@ -2,8 +2,8 @@
 /* Polynomial least squares on plain arrays, by the solver of the fits: Chebyshev rows in t = (x - c)/h on -1..1, a triangular factor, the reduced
    problem; then powers of x by the linear map from Chebyshev coefficients to powers, worked in twice the precision of a double.
 
-   Without constant term the basis is t_n(x) - t_n(x at 0), which vanishes at x = 0 and spans x, x^2, ...  The covariance of the powers is
-   P (R'R)^-1 P' with P the same map. What is lost for badly conditioned sets is what one rounding of R costs: about condition times 1e-16. */
+   Without constant term the basis is x T_n(t), which spans x, x^2, ... and has no differences of large numbers where 0 lies far from the x. The
+   covariance of the powers is P (R'R)^-1 P' with P the same map. What is lost for badly conditioned sets is what one rounding of R costs: about condition times 1e-16. */
 #include "problem.h"
 
 #include <string.h>
@@ -46,26 +46,22 @@ typedef struct frame { size_t n; bool constant; double middle, half; } frame; /*
 static void
 basis_row(double *row, const frame *f, double x)
 {
-    size_t skip = f->constant ? 0 : 1;
-    double t[2] = { (x - f->middle) / f->half, -f->middle / f->half }, before[2] = { 1, 1 }, now[2] = { t[0], t[1] };
-    if (f->constant)
-        row[0] = 1;
-    for (size_t n = 1; n < f->n + skip; n++) {
-        row[n - skip] = now[0] - (f->constant ? 0 : now[1]);
-        for (int i = 0; i < 2; i++) {
-            double next = 2 * t[i] * now[i] - before[i];
-            before[i] = now[i];
-            now[i] = next;
-        }
+    double t = (x - f->middle) / f->half, before = 1, now = t, first = f->constant ? 1 : x;
+    row[0] = first;
+    for (size_t n = 1; n < f->n; n++) {
+        row[n] = first * now;
+        double next = 2 * t * now - before;
+        before = now;
+        now = next;
     }
 }
 
-/* map[j * n + k]: coefficient of x^(j + skip) in basis function k, as pairs. Without constant the subtraction only removes x^0, which is dropped.
+/* map[j * n + k]: coefficient of x^j in T_k, as pairs; without constant all powers are one higher.
    T_(n+1) = 2 t T_n - T_(n-1) with t = (x - middle)/half, polynomial arithmetic on powers of x. */
 static kel_status
 powers_map(pair **out, const frame *f, kel_arena *memory, kel_error *err)
 {
-    size_t skip = f->constant ? 0 : 1, m = f->n + skip;
+    size_t m = f->n;
     pair *t = kel_arena_take(memory, m * (m + 1), sizeof *t), *map = kel_arena_take(memory, f->n * f->n, sizeof *map);
     if (t == NULL || map == NULL)
         return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory in a polynomial fit");
@@ -85,7 +81,7 @@ powers_map(pair **out, const frame *f, kel_arena *memory, kel_error *err)
     }
     for (size_t k = 0; k < f->n; k++)
         for (size_t j = 0; j < f->n; j++)
-            map[j * f->n + k] = t[(k + skip) * m + j + skip];
+            map[j * f->n + k] = t[k * m + j];
     *out = map;
     return KEL_OK;
 }

@@ -104,12 +104,27 @@ refuse(const kel__cell *c, kel_status code, const char *at, const char *what, ke
     return status;
 }
 
+static bool
+is_digit(const char *p, const char *end)
+{
+    return p < end && *p >= '0' && *p <= '9';
+}
+
+/* Most cells are plain numbers, and those need not be compared with every mark: no mark starts or ends as they do. */
+static bool
+is_plain(const char *p, size_t n)
+{
+    return n > 0 && is_digit(p + n - 1, p + n) && (is_digit(p, p + 1) || *p == '-' || *p == '+' || *p == '.');
+}
+
 kel__cell
 kel__cell_of(const char *bytes, size_t n, size_t line, size_t column)
 {
     const char *p = bytes;
     kel__trim(&p, &n);
     kel__cell c = { .p = p, .n = n, .core = p, .core_n = n, .line = line, .column = column + (size_t)(p - bytes) };
+    if (is_plain(p, n))
+        return c;
     for (size_t i = 0; i < sizeof empty_cells / sizeof empty_cells[0] && !c.empty; i++)
         c.empty = kel__is_word(p, n, empty_cells[i]);
     while (!c.empty && (take_parentheses(&c) || take_before(&c) || take_behind(&c)))
@@ -158,12 +173,6 @@ kel__cell_number(double *out, double *resolution, const kel__cell *c, const kel_
     if (status == KEL_E_RANGE && negative && unit->dimension == KEL_DIM_TEMPERATURE && strcmp(unit->name, "K") == 0)
         return refuse(c, KEL_E_RANGE, c->core, "a temperature below 0 K: perhaps the column is in degC", err);
     return kel__error_at(err, &inner, c->line, place(c, c->core));
-}
-
-static bool
-is_digit(const char *p, const char *end)
-{
-    return p < end && *p >= '0' && *p <= '9';
 }
 
 /* Bytes of the sign at p, or 0. */

@@ -155,7 +155,8 @@ kel_status kel__modes(double **out, size_t *scatter_count, const kel__problem *p
 
 /* solve.c */
 kel_status kel__solve(kel__solution *solution, const kel__problem *problem, kel_arena *memory, const int *degrees, kel_error *err);
-/* Uniform linear problems: factor once at the highest degrees, then solve for any lower ones from that. */
+/* Linear problems whose weights are known beforehand (uniform or fixed): factor once at the highest degrees, then solve for any lower ones from
+   that. With fixed weights leverages are not summed. */
 kel_status kel__factor_all(kel__factor *factor, kel__layout *layout, const kel__problem *problem, kel_arena *memory, const int *degrees, kel_error *err);
 kel_status kel__solve_from(kel__solution *solution, const kel__problem *problem, kel_arena *memory, const kel__factor *factor, const kel__layout *full,
                            const int *degrees, kel_error *err);
@@ -166,8 +167,10 @@ kel__row_result kel__row_evaluate(const kel__problem *problem, const kel__soluti
 /* variance.c */
 kel_status kel__solution_arrays(kel__solution *solution, const kel__problem *problem, kel_arena *memory, kel_error *err);
 double kel__row_u(const kel__problem *problem, const kel__solution *solution, const kel__row *row, double value);
-/* Sums of a solution over its rows, and the scatter that they show; *change: the largest relative change of a scatter. */
-kel_status kel__estimate_scatter(double *change, kel__solution *solution, const kel__problem *problem, kel_arena *memory, kel_error *err);
+/* Sums of a solution over its rows, and the scatter that they show; *change: the largest relative change of a scatter. Without `leverages`, which
+   scatter needs and stated u do not, those sums stay 0. */
+kel_status kel__estimate_scatter(double *change, kel__solution *solution, const kel__problem *problem, bool leverages, kel_arena *memory,
+                                 kel_error *err);
 void kel__uniform_scatter(kel__solution *solution, const kel__problem *problem);
 
 /* degree.c: the degrees asked for, or the automatic choice; and their solution. */

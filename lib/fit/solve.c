@@ -74,10 +74,11 @@ kel__factor_all(kel__factor *factor, kel__layout *layout, const kel__problem *pr
     double *row = kel_arena_take(memory, 2 * (layout->unknowns + 1), sizeof *row), *zero = kel_arena_take(memory, layout->unknowns, sizeof *zero);
     if (row == NULL || zero == NULL)
         return no_memory(err);
+    const kel__solution none = { .factor = 1 }; /* stated absolute u do not look at it */
     for (size_t i = 0; i < problem->row_count; i++) {
         kel__model model = kel__model_row(row, row + layout->unknowns + 1, problem, layout, &problem->rows[i], zero);
         row[layout->unknowns] = problem->rows[i].seen->value - model.constant;
-        kel__factor_add(factor, row, 1);
+        kel__factor_add(factor, row, problem->uniform ? 1 : 1 / kel__row_u(problem, &none, &problem->rows[i], 0));
     }
     kel__factor_flush(factor);
     return KEL_OK;
@@ -101,6 +102,10 @@ kel__solve_from(kel__solution *solution, const kel__problem *problem, kel_arena 
     memcpy(r + l->coefficients * height, factor->r + full->coefficients * height, (l->unknowns + 1 - l->coefficients) * height * sizeof *r);
     if ((status = kel__reduce(solution, memory, r, height, err)) < 0)
         return status;
+    if (!problem->uniform) {
+        double change;
+        return kel__estimate_scatter(&change, solution, problem, false, memory, err);
+    }
     solution->rss[0] = solution->residual * solution->residual;
     kel__uniform_scatter(solution, problem);
     double u = kel__row_u(problem, solution, &problem->rows[0], 0);
@@ -160,7 +165,7 @@ iterate(kel__solution *s, const kel__problem *p, kel_arena *memory, kel_error *e
         if (status == KEL_OK) {
             memcpy(x, s->x, l->unknowns * sizeof *x);
             s->x = x;
-            status = kel__estimate_scatter(&change, s, p, scratch, err);
+            status = kel__estimate_scatter(&change, s, p, true, scratch, err);
         }
         if (status == KEL_OK) {
             change = fmax(change, relative_change(l, x, before));

@@ -44,6 +44,34 @@ distinct_ends(double *t, const kel_interval *support, size_t n)
     return distinct;
 }
 
+/* Moves the k-th smallest of n numbers to d[k], no larger ones before it (Hoare's FIND, Algorithm 65, with the middle
+   as pivot). Unlike sorting it needs no second array, which for a long table would be its largest. */
+static void
+select_kth(double *d, size_t n, size_t k)
+{
+    size_t lo = 0, hi = n - 1;
+    while (lo < hi) {
+        double pivot = d[lo + (hi - lo) / 2];
+        size_t i = lo, j = hi;
+        for (;; i++, j--) {
+            while (d[i] < pivot)
+                i++;
+            while (d[j] > pivot)
+                j--;
+            if (i >= j)
+                break;
+            double swap = d[i];
+            d[i] = d[j];
+            d[j] = swap;
+        }
+        /* d[lo..j] <= pivot <= d[j+1..hi], and j < hi because the pivot stands left of hi. */
+        if (k <= j)
+            hi = j;
+        else
+            lo = j + 1;
+    }
+}
+
 /* The length above which a stretch is a gap. d: room for m - 1 numbers, m >= 2. */
 static double
 gap_limit(double *d, const double *t, size_t m, kel_interval range)
@@ -51,9 +79,18 @@ gap_limit(double *d, const double *t, size_t m, kel_interval range)
     size_t n = m - 1;
     for (size_t i = 0; i < n; i++)
         d[i] = t[i + 1] - t[i];
-    qsort(d, n, sizeof *d, ascending);
-    double median = n % 2 == 1 ? d[n / 2] : 0.5 * (d[n / 2 - 1] + d[n / 2]);
-    return fmax(4 * median, (range.hi - range.lo) / 10);
+    double tenth = (range.hi - range.lo) / 10, longest = 0;
+    for (size_t i = 0; i < n; i++)
+        longest = fmax(longest, d[i]);
+    if (longest <= tenth)
+        return tenth; /* none is a gap whatever the median is */
+    select_kth(d, n, n / 2);
+    double median = d[n / 2];
+    if (n % 2 == 0) {
+        select_kth(d, n / 2, n / 2 - 1); /* all of them are below the middle */
+        median = 0.5 * (d[n / 2 - 1] + median);
+    }
+    return fmax(4 * median, tenth);
 }
 
 /* Stretch i cut to the range; lo >= hi if nothing is left of it. */

@@ -9,8 +9,9 @@
                                       w = d_a + 2 d_e/(T_2 - T_1) + 3 (T_2 - T_1)^2 |a''|/12
 
    The last term is three times what a parabola can rise above both of its ends in the mean, with a'' the larger of the
-   second differences on either side. Without e, m (T - r) stands for it with d_m |T - r|. In the base `current length` s is the slope of ln(1 + e). Pairs across a
-   declared transition, rows that are left out, marked values and means over intervals take no part. */
+   second differences on either side. Without e, m (T - r) stands for it with d_m |T - r|. In the base `current length`
+   s is the slope of ln(1 + e). Pairs across a declared transition, rows that are left out, marked values and means over
+   intervals take no part. */
 #include "table_inner.h"
 
 #include <math.h>

@@ -246,7 +246,7 @@ finish(pass *p, kel_error *err)
     struct kel__table *in = t->inner;
     for (size_t i = 0; i < in->leave_out_count; i++)
         if (!in->leave_out[i].met)
-            return kel_error_set(err, KEL_E_DATA, in->leave_out[i].row, 1,
+            return kel_error_set(err, KEL_E_DATA, t->transposed ? 0 : in->leave_out[i].row, t->transposed ? 0 : 1,
                                  "no row of data on %s %zu, so it cannot be left out",
                                  t->transposed ? "column" : "line", in->leave_out[i].row);
     if (t->observation_count == 0)

@@ -10,6 +10,11 @@
    their pooled equation; below 1 pooled degree the scatter is not known, and rows count with their rounding alone. */
 #include "problem.h"
 
+/* Degrees of freedom at these limits are whole numbers off by rounding. Where a column's rule changes the weights so that the other rule would
+   hold, there is no fixed point: from this iteration on a column that is pooled stays so, and a scatter that is not known. */
+static const double ENOUGH = 2 - 1e-9, POOLED_ENOUGH = 1 - 1e-9;
+enum { SETTLED = 6 };
+
 kel_status
 kel__solution_arrays(kel__solution *solution, const kel__problem *problem, kel_arena *memory, kel_error *err)
 {
@@ -80,13 +85,12 @@ pool_few(kel__solution *s, const kel__problem *p, const double *freedom, double 
     double sum = 0, pooled = 0;
     bool any = false;
     for (size_t c = 0; c < p->column_count; c++)
-        if (p->columns[c].stated < p->columns[c].rows && freedom[c] < 2) {
+        if (p->columns[c].stated < p->columns[c].rows && isnan(s->scatter[c])) {
             sum += scaled[c];
             pooled += freedom[c];
             any = true;
-            s->scatter[c] = NAN;
         }
-    s->scatter_known = !any || pooled >= 1 - 1e-9;
+    s->scatter_known = !any || (pooled >= POOLED_ENOUGH && (s->scatter_known || s->iterations < SETTLED));
     s->factor = s->scatter_known && any ? fmax(1, sqrt(sum / pooled)) : 1;
 }
 
@@ -144,7 +148,7 @@ clear(kel__solution *s, const kel__problem *p)
 }
 
 kel_status
-kel__estimate_scatter(double *change, kel__solution *solution, const kel__problem *problem, kel_arena *memory, kel_error *err)
+kel__estimate_scatter(double *change, kel__solution *solution, const kel__problem *problem, bool leverages, kel_arena *memory, kel_error *err)
 {
     kel__solution *s = solution;
     const kel__problem *p = problem;
@@ -154,9 +158,16 @@ kel__estimate_scatter(double *change, kel__solution *solution, const kel__proble
     if (t.residual == NULL || t.freedom == NULL || t.scaled == NULL || work == NULL)
         return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory in a fit of %zu rows", p->row_count);
     clear(s, p);
+    /* The leverages of all rows add up to the parameters: where nothing else is asked of them, that is enough. */
+    bool one_sum = p->column_count == 1 && p->shared_count == 0 && p->columns[0].stated % p->columns[0].rows == 0;
     for (size_t i = 0; i < p->row_count; i++) {
-        kel__row_result r = kel__row_evaluate(p, s, &p->rows[i], true, work);
+        kel__row_result r = kel__row_evaluate(p, s, &p->rows[i], leverages && !one_sum, work);
         add_row(s, p, &t, i, &r);
+    }
+    if (one_sum) {
+        s->leverage[0] = (double)s->parameters;
+        s->stated_leverage = s->stated > 0 ? s->leverage[0] : 0;
+        t.freedom[0] = (double)p->row_count - s->leverage[0];
     }
     double typical2 = s->stated > 0 ? exp(2 * t.log_u / (double)s->stated) : 1;
     s->relative_rss = s->chi2 * typical2;
@@ -168,13 +179,15 @@ kel__estimate_scatter(double *change, kel__solution *solution, const kel__proble
 
     *change = 0;
     double factor = s->factor;
-    for (size_t c = 0; c < p->column_count; c++)
-        if (p->columns[c].stated < p->columns[c].rows && t.freedom[c] >= 2) {
-            double before = s->scatter[c], now = solve_scatter(p, c, t.residual, t.freedom[c]);
-            double small = 1e-3 * p->columns[c].least * p->columns[c].typical_width;
-            *change = fmax(*change, isnan(before) ? 1 : fabs(now - before) / fmax(now, small));
-            s->scatter[c] = now;
-        }
+    for (size_t c = 0; c < p->column_count; c++) {
+        double before = s->scatter[c], now = NAN;
+        if (t.freedom[c] >= ENOUGH && p->columns[c].stated < p->columns[c].rows && !(isnan(before) && s->iterations >= SETTLED))
+            now = solve_scatter(p, c, t.residual, t.freedom[c]);
+        double small = 1e-3 * p->columns[c].least * p->columns[c].typical_width;
+        if (!(isnan(before) && isnan(now)))
+            *change = fmax(*change, isnan(before) || isnan(now) ? 1 : fabs(now - before) / fmax(now, small));
+        s->scatter[c] = now;
+    }
     pool_few(s, p, t.freedom, t.scaled);
     *change = fmax(*change, fabs(s->factor - factor) / factor);
     return KEL_OK;

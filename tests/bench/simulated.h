@@ -16,7 +16,7 @@ static const double REFERENCE = 293.15;
 /* ---- curves ---- */
 
 /* Heat capacity of a Debye solid over its limit, 3 y^3 int_0^(1/y) x^4 e^x/(e^x - 1)^2 dx with y = T/theta, by
- * Simpson's rule. */
+   Simpson's rule. */
 static double
 debye(double y)
 {
@@ -54,8 +54,7 @@ bump(double t)
     return 12e-6 + 4e-9 * (t - 293.0) + 4e-6 * exp(-x * x);
 }
 
-static const struct { const char *name; double (*alpha)(double); double lo, hi;
-} curves[] = {
+static const struct { const char *name; double (*alpha)(double); double lo, hi; } curves[] = {
     { "cold", cold, 10.0, 300.0 },
     { "steel", steel, 293.15, 1000.0 },
     { "line", line, 293.15, 600.0 },

@@ -124,7 +124,7 @@ hold_rows(const kel_record *record, const solid *s, const figures *values, doubl
 }
 
 /* Fits rows of one kind, exact to a double, or the same as text with digits to 1e-17 (expansion) or 1e-20 1/K
- * (coefficient). */
+   (coefficient). */
 static void
 recover(kel_kind kind, bool text, int row)
 {
@@ -159,8 +159,7 @@ recover(kel_kind kind, bool text, int row)
     double printed = !text ? 0.0 : kind == KEL_KIND_EXPANSION ? 0.5e-17 : 0.5e-20 * (HIGH - s.low);
     hold(record, &s, s.low, report->condition, 16.0 * DBL_EPSILON * size + printed,
          kind == KEL_KIND_EXPANSION ? text ? "expansion, text" : "expansion"
-         : text                     ? "coefficient, text"
-                                    : "coefficient");
+                                    : text ? "coefficient, text" : "coefficient");
     hold_rows(record, &s, values, s.low);
     kel_fit_report_free(report);
     kel_record_free(record);
@@ -175,7 +174,7 @@ START_TEST(from_expansion_text) { recover(KEL_KIND_EXPANSION, true, _i); } END_T
 START_TEST(from_coefficient_text) { recover(KEL_KIND_COEFFICIENT, true, _i); } END_TEST
 
 /* With the plateau below T_low as a second piece: the correlation steps there by the printed jump, and the step is
- * fitted. */
+   fitted. */
 START_TEST(plateau)
 {
     figures *f = figures_read("tests/published/nist_cryogenic.csv"),

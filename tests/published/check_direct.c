@@ -5,8 +5,8 @@
        V = D + sum F_j F_j',   H = (A' V^-1 A)^-1 A' V^-1,   c = H y,
        part of the scatter  g' H D H' g,   of error j  (g' H F_j)^2,   together  g' (A' V^-1 A)^-1 g
    for an answer g. Here V is made and inverted as it stands, in 33 digits, on powers of (T - 200 K)/100 K; relative
-   errors are iterated to the curve's own value. The library never forms V; its errors are parameters with prior rows.
- */
+   errors are iterated to the curve's own value. The library never forms V; its errors are parameters with prior
+   rows. */
 #include <math.h>
 
 #include "../support/making.h"
@@ -36,8 +36,8 @@ integral_row(quad row[K], quad a, quad b)
 
 typedef struct direct {
     quad a[N][K], y[N];
-    quad absolute[N], relative[N],
-        resolution; /* independent u: absolute^2 + (relative curve)^2, with resolution^2/12 where relative */
+    /* independent u^2 = absolute^2 + (relative curve)^2, and with relative != 0 resolution^2/12 */
+    quad absolute[N], relative[N], resolution;
     quad shared_relative[N], shared_absolute[N];
     quad c[K], h[K][N], d[N], f[SHARED][N], covariance[K * K];
 } direct;
@@ -55,8 +55,8 @@ static void
 direct_solve(direct *q)
 {
     static quad v[N * N];
-    for (int step = 0; step < 40;
-         step++) { /* gains a factor of some hundred each; the first step starts from the printed values */
+    /* Each step gains a factor of some hundred; the first one starts from the printed values. */
+    for (int step = 0; step < 40; step++) {
         for (int i = 0; i < N; i++) {
             quad fitted = step == 0 ? q->y[i] : dot(q->a[i], q->c), r = q->relative[i] * fitted;
             q->d[i] =
@@ -116,8 +116,7 @@ static void
 hold(const kel_record *record, const direct *q, double digits, const char *what)
 {
     enum { ANSWERS = 9 };
-    static const struct { kel_quantity quantity; double from, to;
-    } list[ANSWERS] = {
+    static const struct { kel_quantity quantity; double from, to; } list[ANSWERS] = {
         { KEL_COEFFICIENT, 100, 100 },  { KEL_COEFFICIENT, 230, 230 }, { KEL_COEFFICIENT, 310, 310 },
         { KEL_EXPANSION, 80, 80 },      { KEL_EXPANSION, 310, 310 },   { KEL_INTEGRAL, 100, 200 },
         { KEL_INTEGRAL, 250, 250.001 }, { KEL_MEAN, 120, 300 },        { KEL_MEAN, 150, 150 },
@@ -250,9 +249,7 @@ START_TEST(stated_errors)
         double t = sample_at(i);
         long units = lround((double)truth((quad)t) * 1e8) + (i * 7 % 5 - 2) * 12; /* of 0.01e-6/K */
         n += sprintf(text + n, "%.0f,%.2f%s\n", t, (double)units / 100.0,
-                     !stated[_i].column ? ""
-                     : i % 2            ? ",0.3"
-                                        : ",0.2");
+                     !stated[_i].column ? "" : i % 2 ? ",0.3" : ",0.2");
         value_row(q.a[i], (quad)t);
         q.y[i] = (quad)units / 100000000;
         q.absolute[i] = stated[_i].column ? quad_read(i % 2 ? "0.3e-6" : "0.2e-6") : (quad)stated[_i].u_absolute;

@@ -40,7 +40,7 @@ error_of(int i)
 }
 
 /* Curve, expansion and, where known, their u agree: within `limit` of the largest coefficient, and of it times the
- * range. */
+   range. */
 static void
 same_curve(const kel_record *a, const kel_record *b, double limit, const char *what)
 {
@@ -134,28 +134,17 @@ END_TEST
 /* The same table in two sets of units, every number exactly convertible: T in degC in fives is T in degF in nines, and
    0.09e-6/K is 0.05e-6/degF. Read with one rounding each, both give the same doubles. The printed resolution is another
    one; it enters the weights of mean values without stated u, so those state one. */
-static const struct { const char *name; bool degF; kel_kind kind; const char *header[2];
-} unit_cases[] = {
-    { "1e-6/degF",
-      true,
-      KEL_KIND_COEFFICIENT,
+static const struct { const char *name; bool degF; kel_kind kind; const char *header[2]; } unit_cases[] = {
+    { "1e-6/degF", true, KEL_KIND_COEFFICIENT,
       { "temperature [degC],coefficient [1e-6/K]", "temperature [degF],coefficient [1e-6/degF]" } },
-    { "ppm/degF",
-      true,
-      KEL_KIND_COEFFICIENT,
+    { "ppm/degF", true, KEL_KIND_COEFFICIENT,
       { "temperature [degC],coefficient [1e-6/degC]", "T [degF],alpha [ppm/degF]" } },
-    { "uin/in/degF",
-      true,
-      KEL_KIND_COEFFICIENT,
+    { "uin/in/degF", true, KEL_KIND_COEFFICIENT,
       { "temperature [degC],coefficient [um/(m.K)]", "T [degF],alpha [uin/in/degF]" } },
-    { "mean",
-      true,
-      KEL_KIND_MEAN,
+    { "mean", true, KEL_KIND_MEAN,
       { "# uncertainty: 0.18 [1e-6/K] independent\ntemperature [degC],mean coefficient [1e-6/K]",
         "# uncertainty: 0.1 [1e-6/degF] independent\ntemperature [degF],mean coefficient [1e-6/degF]" } },
-    { "percent and ppm",
-      false,
-      KEL_KIND_EXPANSION,
+    { "percent and ppm", false, KEL_KIND_EXPANSION,
       { "temperature [degC],expansion [%]", "temperature [degC],expansion [ppm]" } },
 };
 
@@ -210,8 +199,7 @@ referred_to(kel_kind kind, double r, int odd)
     return make_arrays(rows, ROWS / 2, kind, r, KEL_BASE_REFERENCE);
 }
 
-static const struct { const char *name; double r;
-} references[] = {
+static const struct { const char *name; double r; } references[] = {
     { "20 degC", 293.15 }, { "70 degF", (70.0 + 459.67) * 5.0 / 9.0 }, { "0 degC", 273.15 }, { "4 K", 4.0 },
     { "700 K", 700.0 },
 };
@@ -272,8 +260,8 @@ START_TEST(base_of_the_record)
         double t = 20.25 + 3.6 * i;
         kel_answer e;
         ck_assert_int_ge(kel_record_expansion(&e, record, t, NULL), 0);
-        /* alpha/(1 + e) continued as a series in e: the ninth power of 5e-3 and less, 1e-14 with what degree 8 leaves
-         */
+        /* alpha/(1 + e) continued as a series in e: the ninth power of 5e-3 and less, 1e-14 with what degree 8
+           leaves */
         ck_assert_abs_for(references[_i].name, e.value, expansion(t), 1e-12, "1");
     }
     kel_record_free(record);

@@ -178,7 +178,7 @@ START_TEST(additive_and_antisymmetric)
                       limit * 1.1 + 8.0 * DBL_EPSILON, "1");
         ck_assert_abs(ask(record, KEL_LENGTH_RATIO, b, a).value * ratio, 1.0, limit * 1.1 + 8.0 * DBL_EPSILON, "1");
         /* a mean over nothing is the coefficient there, in the record's reference and base 1 + e times it for current
-         * length */
+           length */
         double alpha = ask(record, KEL_COEFFICIENT, a, a).value;
         double grown =
             kel_record_content(record)->base == KEL_BASE_CURRENT ? 1.0 + ask(record, KEL_EXPANSION, a, a).value : 1.0;

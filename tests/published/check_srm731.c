@@ -2,8 +2,8 @@
 /* NIST SRM 731, borosilicate glass: the certificate's cubic adopted for 293 K to 640 K gives the published expansions,
    and says so where it is used outside.
 
-   Figures and source: srm731.csv (the coefficients) and srm731_table.csv. Tolerances: half a unit of the printed digit.
- */
+   Figures and source: srm731.csv (the coefficients) and srm731_table.csv. Tolerances: half a unit of the printed
+   digit. */
 #include <math.h>
 
 #include "../support/making.h"

@@ -121,8 +121,8 @@ START_TEST(arrays)
 }
 END_TEST
 
-/* Counted from 20 degC instead, alpha' = alpha/[1 + e(20 degC)]; asked in the bar's own reference the figures return.
- */
+/* Counted from 20 degC instead, alpha' = alpha/[1 + e(20 degC)]; asked in the bar's own reference the figures
+   return. */
 START_TEST(other_reference)
 {
     bar b = read_bar();

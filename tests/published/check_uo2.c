@@ -71,8 +71,7 @@ START_TEST(own_quadrature)
     const kel_content *c = kel_record_content(record);
     ck_assert_int_eq(c->base, KEL_BASE_CURRENT);
     ck_assert_uint_eq(c->piece_count, 2);
-    const struct { double from, to;
-    } rows[] = {
+    const struct { double from, to; } rows[] = {
         { 273, 273.15 },  { 273, 293.15 },    { 293.15, 600 }, { 273, 923 },  { 922.999, 923 },
         { 923, 923.001 }, { 922.5, 923.5 },   { 300, 1500 },   { 923, 3120 }, { 273, 3120 },
         { 3120, 273 },    { 2000, 2000.001 }, { 1500, 600 },

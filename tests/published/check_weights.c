@@ -84,9 +84,7 @@ START_TEST(scatter_solves_its_equation)
                     : kind == KEL_KIND_MEAN      ? "mean coefficient [1e-6/K]"
                                                  : "expansion [1e-5]");
     for (int i = 0; i < N; i++) {
-        /* steps of 100 K: alpha(T) = ..93.15e-8 + ... ends after the fourth decimal, so a row of no noise is off by
-         * 0.15e-9 alone */
-        double t = 95.0 + 25.0 * i;
+        double t = 95.0 + 25.0 * i; /* alpha(T) then ends at the second decimal: a row of no noise is exact */
         double value = kind == KEL_KIND_COEFFICIENT ? alpha(t)
                        : kind == KEL_KIND_EXPANSION ? expansion(t)
                                                     : expansion(t) / (t - 293.0);
@@ -171,8 +169,8 @@ START_TEST(mean_at_its_reference)
 }
 END_TEST
 
-/* 1,000 rows of 1 % scatter: with a shared error of 3 % the curve is what it is without (1e-9), and 3 % stay in its u.
- */
+/* 1,000 rows of 1 % scatter: with a shared error of 3 % the curve is what it is without (1e-9), and 3 % stay in
+   its u. */
 START_TEST(thousand_rows)
 {
     enum { ROWS = 1000 };
@@ -183,8 +181,8 @@ START_TEST(thousand_rows)
     for (int k = 0; k < 2; k++) {
         ck_assert_ptr_nonnull(text[k]);
         int n = sprintf(text[k],
-                        "# reference temperature: 293.15 K\n# uncertainty: 1 %% independent\n%stemperature "
-                        "[K],coefficient [1e-6/K]\n",
+                        "# reference temperature: 293.15 K\n# uncertainty: 1 %% independent\n%s"
+                        "temperature [K],coefficient [1e-6/K]\n",
                         k == 1 ? "# uncertainty: 3 % shared\n" : "");
         for (int i = 0; i < ROWS; i++) {
             double t = 70.0 + 0.25 * i, sum = 0.0; /* twelve equal distributions: a standard normal one, nearly */
@@ -202,8 +200,8 @@ START_TEST(thousand_rows)
         kel_answer without = ask(record[0], KEL_COEFFICIENT, t, t), with = ask(record[1], KEL_COEFFICIENT, t, t);
         worst = fmax(worst, fabs(with.value / without.value - 1.0));
         ck_assert_abs(with.value, without.value, 1e-9 * without.value, "1/K");
-        /* The error's column is the curve itself, so its mode is 3 % of the curve, and the scatter's part is untouched.
-         */
+        /* The error's column is the curve itself, so its mode is 3 % of the curve, and the scatter's part
+           is untouched. */
         ck_assert_abs(with.u_shared, 0.03 * with.value, 1e-9 * with.value, "1/K");
         ck_assert_abs(with.u_fit, without.u_fit, 1e-9 * with.value, "1/K");
         ck_assert_lre(with.u, hypot(with.u_fit, with.u_shared), 12.0);

@@ -12,8 +12,9 @@
 
 #define KEL_TEST_HEX "0123456789abcdef0123456789abcdef0123456789abcdef0123456789abcdef"
 
-/* Three pieces with a transition at one join and one outside, two modes, two sources, all kinds of rows, unknown numbers, text that needs
-   escapes. The arrays are the caller's to change, which is how a test breaks one rule at a time. */
+/* Three pieces with a transition at one join and one outside, two modes, two sources, all kinds of rows, unknown
+   numbers, text that needs escapes. The arrays are the caller's to change, which is how a test breaks one rule at a
+   time. */
 typedef struct rich {
     kel_interval gaps[2];
     kel_piece pieces[3];
@@ -48,13 +49,18 @@ rich_content(rich *r)
     };
     r->modes[0] = (kel_mode){ KEL_MODE_FIT, "scatter", { r->first, r->first_steps } };
     r->modes[1] = (kel_mode){ KEL_MODE_LOT, "lot spread 2 %", { r->second, r->second_steps } };
-    r->sources[0] = (kel_source){ "nt-40.csv", KEL_TEST_HEX, "NT-40", "annealed", "rolling", "sheet", "bench log 7", "one dilatometer", "ITS-90",
+    r->sources[0] = (kel_source){ "nt-40.csv", KEL_TEST_HEX, "NT-40", "annealed", "rolling", "sheet", "bench log 7",
+        "one dilatometer", "ITS-90",
                                   "heating", 293.15, KEL_BASE_REFERENCE, 12, 3, r->uncertainty, 2, r->notes, 1 };
-    r->sources[1] = (kel_source){ .name = "stra\xC3\x9F" "e.csv", .reference_temperature = NAN, .base = KEL_BASE_CURRENT };
-    r->columns[0] = (kel_fit_column){ 0, KEL_KIND_COEFFICIENT, "NT-40 annealed", 2, 1.25, 3e-08, 2e-08, 1e-08, KEL_VARIANCE_ESTIMATED };
+    r->sources[1] = (kel_source){ .name = "stra\xC3\x9F" "e.csv", .reference_temperature = NAN, .base =
+        KEL_BASE_CURRENT };
+    r->columns[0] = (kel_fit_column){ 0, KEL_KIND_COEFFICIENT, "NT-40 annealed", 2, 1.25, 3e-08, 2e-08, 1e-08,
+        KEL_VARIANCE_ESTIMATED };
     r->columns[1] = (kel_fit_column){ 1, KEL_KIND_MEAN, NULL, 1, NAN, NAN, NAN, NAN, KEL_VARIANCE_GIVEN };
-    r->rows[0] = (kel_fitted){ 0, 0, 4, KEL_KIND_COEFFICIENT, 77.0, 77.0, 7.9e-06, 7.8e-06, 1e-07, 0.0, 2e-08, 0, NULL };
-    r->rows[1] = (kel_fitted){ 0, 0, 5, KEL_KIND_COEFFICIENT, 200.0, 200.0, 1.1e-05, 1.1e-05, 0.0, -1e-09, NAN, -1, NULL };
+    r->rows[0] = (kel_fitted){ 0, 0, 4, KEL_KIND_COEFFICIENT, 77.0, 77.0, 7.9e-06, 7.8e-06, 1e-07, 0.0, 2e-08, 0,
+        NULL };
+    r->rows[1] = (kel_fitted){ 0, 0, 5, KEL_KIND_COEFFICIENT, 200.0, 200.0, 1.1e-05, 1.1e-05, 0.0, -1e-09, NAN, -1,
+        NULL };
     r->rows[2] = (kel_fitted){ 1, 1, 9, KEL_KIND_MEAN, 293.15, 200.0, 1.2e-05, 1.3e-05, -1e-06, 0.0, 1e-07, 1, NULL };
     r->rows[3] = (kel_fitted){ 0, 0, 6, KEL_KIND_EXPANSION, NAN, 5.0, NAN, NAN, NAN, NAN, NAN, 0, "status mark '*'" };
     r->content = (kel_content){
@@ -65,7 +71,8 @@ rich_content(rich *r)
         .variance = KEL_VARIANCE_MIXED, .scatter_known = true, .observations = 3, .parameters = 6,
         .degrees_of_freedom = -3.0, .residual_standard_deviation = NAN, .chi2 = 1.0 / 3.0, .sources = r->sources,
         .source_count = 2, .columns = r->columns, .column_count = 2, .rows = r->rows, .row_count = 4,
-        .lot_spread = "2 %", .annotations = " {\"approved\": {\"by\": \"QA\", \"limit\": 1.50},\n  \"tags\": [\"}\", \"\\\"]\"]} ",
+        .lot_spread = "2 %", .annotations =
+            " {\"approved\": {\"by\": \"QA\", \"limit\": 1.50},\n  \"tags\": [\"}\", \"\\\"]\"]} ",
     };
     return &r->content;
 }
@@ -76,7 +83,8 @@ small_content(void)
 {
     static const kel_piece pieces[] = { { 100.0, 300.0, 0, 2 } };
     static const double mean[] = { 1.5e-05, 2e-06 };
-    return (kel_content){ .form = "adopted", .reference_temperature = 293.15, .range = { 100.0, 300.0 }, .pieces = pieces,
+    return (kel_content){ .form = "adopted", .reference_temperature = 293.15, .range = { 100.0, 300.0 }, .pieces =
+        pieces,
                           .piece_count = 1, .coefficient_count = 2, .mean = { mean, NULL }, .parameters = 2,
                           .degrees_of_freedom = NAN, .residual_standard_deviation = NAN, .chi2 = NAN };
 }

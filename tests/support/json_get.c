@@ -1,7 +1,11 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Prints a value of a JSON text on stdin by its path, for the command-line tests:   json_get rows.0.temperature_K < FILE
-   Steps are parted by points; a number counts elements from 0; `#` gives the number of members; no path prints everything.
-   Strings are printed bare, numbers with 17 digits, the rest as compact JSON. Status 1: not JSON; 2: no such path. */
+/* Prints a value of a JSON text on stdin by its path, for the command-line tests:
+
+       json_get rows.0.temperature_K < FILE
+
+   Steps are parted by points; a number counts elements from 0; `#` gives the number of members; no path prints
+   everything. Strings are printed bare, numbers with 17 digits, the rest as compact JSON. Status 1: not JSON; 2: no such
+   path. */
 #include <jansson.h>
 #include <stdlib.h>
 #include <string.h>

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Each rule of a record's content broken alone: refused, with the key in the message; and what is just allowed is allowed. */
+/* Each rule of a record's content broken alone: refused, with the key in the message; and what is just allowed is
+   allowed. */
 #include "../support/contents.h"
 
 #include "record_parts.h"
@@ -26,7 +27,8 @@ BREAK(piece_nan, r->pieces[2].to = NAN)
 BREAK(piece_reversed, r->pieces[2].to = 199.0)
 BREAK(piece_no_width, r->pieces[2].to = 200.0)
 BREAK(piece_no_coefficients, r->pieces[1].count = 0)
-BREAK(piece_too_many, r->pieces[2].count = KEL_COEFFICIENTS_MAX + 1; r->content.coefficient_count = 4 + KEL_COEFFICIENTS_MAX + 1)
+BREAK(piece_too_many, r->pieces[2].count = KEL_COEFFICIENTS_MAX + 1; r->content.coefficient_count =
+      4 + KEL_COEFFICIENTS_MAX + 1)
 BREAK(piece_first_off, r->pieces[1].first = 2)
 BREAK(piece_first_huge, r->pieces[1].first = SIZE_MAX)
 BREAK(piece_count_beyond, r->pieces[2].count = 4)
@@ -108,19 +110,24 @@ BREAK(observations_off, r->content.observations = 4)
 
 #define ROW(name, key) { #name, name, key }
 static const struct row { const char *label; breaker *apply; const char *key; } rows[] = {
-    ROW(no_form, "form"), ROW(other_form, "form"), ROW(other_base, "base"), ROW(reference_nan, "reference_temperature_K"),
+    ROW(no_form, "form"), ROW(other_form, "form"), ROW(other_base, "base"), ROW(reference_nan,
+        "reference_temperature_K"),
     ROW(reference_negative, "reference_temperature_K"), ROW(no_pieces, "pieces"), ROW(pieces_null, "pieces"),
-    ROW(piece_gap, "pieces[1].from_K"), ROW(piece_overlap, "pieces[1].from_K"), ROW(piece_below_zero, "pieces[0].from_K"),
+    ROW(piece_gap, "pieces[1].from_K"), ROW(piece_overlap, "pieces[1].from_K"), ROW(piece_below_zero,
+        "pieces[0].from_K"),
     ROW(piece_infinite, "pieces[2].to_K"), ROW(piece_nan, "pieces[2].to_K"), ROW(piece_reversed, "pieces[2].to_K"),
     ROW(piece_no_width, "pieces[2].to_K"), ROW(piece_no_coefficients, "pieces[1].chebyshev_per_K"),
     ROW(piece_too_many, "pieces[2].chebyshev_per_K"), ROW(piece_first_off, "pieces[1].chebyshev_per_K"),
     ROW(piece_first_huge, "pieces[1].chebyshev_per_K"), ROW(piece_count_beyond, "pieces[2].chebyshev_per_K"),
     ROW(coefficients_left_over, "pieces"), ROW(continuity_short, "continuity"), ROW(continuity_null, "continuity"),
-    ROW(continuity_below, "continuity"), ROW(continuity_above, "continuity"), ROW(transition_unsorted, "transitions[1].at_K"),
+    ROW(continuity_below, "continuity"), ROW(continuity_above, "continuity"), ROW(transition_unsorted,
+        "transitions[1].at_K"),
     ROW(transition_twice, "transitions[1].at_K"), ROW(transition_inside_piece, "transitions[1].at_K"),
     ROW(transition_nan, "transitions[2].at_K"), ROW(transition_below_zero, "transitions[0].at_K"),
-    ROW(transition_kind, "transitions[0].step"), ROW(transitions_null, "transitions"), ROW(step_undeclared, "length_step"),
-    ROW(step_infinite, "length_step"), ROW(mode_step_undeclared, "modes[1].length_steps"), ROW(steps_null, "length_step"),
+    ROW(transition_kind, "transitions[0].step"), ROW(transitions_null, "transitions"), ROW(step_undeclared,
+        "length_step"),
+    ROW(step_infinite, "length_step"), ROW(mode_step_undeclared, "modes[1].length_steps"), ROW(steps_null,
+        "length_step"),
     ROW(mean_null, "chebyshev_per_K"), ROW(mean_nan, "chebyshev_per_K"), ROW(mode_infinite, "modes[1].chebyshev_per_K"),
     ROW(mode_kind, "modes[1].kind"), ROW(mode_label_null, "modes[0].label"), ROW(mode_label_empty, "modes[0].label"),
     ROW(mode_null, "modes[1].chebyshev_per_K"), ROW(modes_null, "modes"), ROW(range_nan, "range_K"),
@@ -130,10 +137,13 @@ static const struct row { const char *label; breaker *apply; const char *key; } 
     ROW(deviation_negative, "residual_standard_deviation"), ROW(chi2_negative, "chi2"), ROW(sources_null, "sources"),
     ROW(source_name, "sources[1].name"), ROW(source_digest_short, "sources[0].digest"),
     ROW(source_digest_case, "sources[0].digest"), ROW(source_reference, "sources[0].reference_temperature_K"),
-    ROW(source_base, "sources[0].base"), ROW(source_note, "sources[0].notes"), ROW(source_notes_null, "sources[0].notes"),
-    ROW(source_uncertainty, "sources[0].uncertainty"), ROW(columns_null, "columns"), ROW(column_source, "columns[1].source"),
+    ROW(source_base, "sources[0].base"), ROW(source_note, "sources[0].notes"), ROW(source_notes_null,
+        "sources[0].notes"),
+    ROW(source_uncertainty, "sources[0].uncertainty"), ROW(columns_null, "columns"), ROW(column_source,
+        "columns[1].source"),
     ROW(column_kind, "columns[1].kind"), ROW(column_variance, "columns[1].variance"),
-    ROW(column_freedom, "columns[0].degrees_of_freedom"), ROW(column_deviation, "columns[0].residual_standard_deviation"),
+    ROW(column_freedom, "columns[0].degrees_of_freedom"), ROW(column_deviation,
+                                                              "columns[0].residual_standard_deviation"),
     ROW(column_scatter, "columns[0].scatter"), ROW(column_resolution, "columns[0].resolution"),
     ROW(column_observations, "observations"), ROW(rows_null, "rows"), ROW(row_source, "rows[0].source"),
     ROW(row_column, "rows[0].column"), ROW(row_foreign_column, "rows[0].column"), ROW(row_kind, "rows[0].kind"),
@@ -154,7 +164,8 @@ START_TEST(refuses)
     kel_status status = kel__content_check(content, KEL_E_ARGUMENT, &err);
     ck_assert_msg(status == KEL_E_ARGUMENT && err.code == status, "%s: status %d", row->label, (int)status);
     size_t n = strlen(row->key);
-    ck_assert_msg(strncmp(err.message, row->key, n) == 0 && err.message[n] == ' ', "%s: got '%s', expected it at %s", row->label,
+    ck_assert_msg(strncmp(err.message, row->key, n) == 0 && err.message[n] == ' ', "%s: got '%s', expected it at %s",
+                  row->label,
                   err.message, row->key);
 }
 END_TEST

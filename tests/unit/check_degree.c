@@ -79,7 +79,7 @@ START_TEST(criterion_with_u)
     kel_fit_report *r = fit(&h, NULL, &k);
     ck_assert_uint_eq(k, 3);
     for (int d = 0; d <= 10; d++)
-        ck_assert_abs(r->candidates[d].criterion, r->candidates[d].chi2 + 2 * (d + 1), 1e-9 * r->candidates[d].chi2, "1");
+        ck_assert_abs(r->candidates[d].criterion, r->candidates[d].chi2 + 4 * (d + 1), 1e-9 * r->candidates[d].chi2, "1");
     ck_assert_ptr_nonnull(strstr(r->criterion, "chi2"));
     ck_assert_double_gt(r->chi2_probability, 0.001);
     kel_fit_report_free(r);

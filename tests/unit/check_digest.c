@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* SHA-256 against the examples of FIPS 180-2, appendix B, and the digest of nothing (NIST CAVP, SHA256ShortMsg.rsp, Len = 0). */
+/* SHA-256 against the examples of FIPS 180-2, appendix B, and the digest of nothing (NIST CAVP, SHA256ShortMsg.rsp,
+   Len = 0). */
 #include "../support/unit.h"
 
 #include <kelspan.h>

@@ -70,7 +70,8 @@ static const struct {
 static void
 assert_word(const char *label, kel__word got, const char *want)
 {
-    ck_assert_msg(got.n == strlen(want) && (got.n == 0 || memcmp(got.p, want, got.n) == 0), "%s: got '%.*s', expected '%s'", label,
+    ck_assert_msg(got.n == strlen(want) && (got.n == 0 || memcmp(got.p, want, got.n) == 0),
+                  "%s: got '%.*s', expected '%s'", label,
                   (int)got.n, got.n == 0 ? "" : got.p, want);
 }
 
@@ -79,7 +80,8 @@ START_TEST(understood)
     const char *head = heads[_i].head;
     kel__heading h;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(kel__heading_parse(&h, head, strlen(head), LINE, COLUMN, &err) == KEL_OK, "%s: %s", head, err.message);
+    ck_assert_msg(kel__heading_parse(&h, head, strlen(head), LINE, COLUMN, &err) == KEL_OK, "%s: %s", head,
+                  err.message);
     ck_assert_msg(h.quantity == heads[_i].quantity, "%s: quantity %d", head, (int)h.quantity);
     assert_word(head, h.label, heads[_i].label);
     assert_word(head, h.unit_text, heads[_i].unit);
@@ -94,7 +96,8 @@ static const struct {
     size_t at;                 /* byte of the head, from 0 */
     const char *message;
 } refused[] = {
-    { "CTE [1e-6/K]", KEL_E_SYNTAX, 0, "`coefficient` for the instantaneous one (the slope at T) or `mean coefficient`" },
+    { "CTE [1e-6/K]", KEL_E_SYNTAX, 0,
+      "`coefficient` for the instantaneous one (the slope at T) or `mean coefficient`" },
     { " cte [1e-6/K]", KEL_E_SYNTAX, 1, "'cte' can mean two things" },
     { "thermal expansion coefficient [1e-6/K]", KEL_E_SYNTAX, 0, "can mean two things" },
     { "coefficient", KEL_E_UNIT, 0, "has no unit: write for example coefficient [1e-6/K]" },
@@ -129,8 +132,10 @@ START_TEST(refusals)
     const char *head = refused[_i].head;
     kel__heading h;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(kel__heading_parse(&h, head, strlen(head), LINE, COLUMN, &err) == refused[_i].code, "%s: %s", head, err.message);
-    ck_assert_msg(err.line == LINE && err.column == COLUMN + refused[_i].at, "%s: at %zu:%zu, %s", head, err.line, err.column, err.message);
+    ck_assert_msg(kel__heading_parse(&h, head, strlen(head), LINE, COLUMN, &err) == refused[_i].code, "%s: %s", head,
+                  err.message);
+    ck_assert_msg(err.line == LINE && err.column == COLUMN + refused[_i].at, "%s: at %zu:%zu, %s", head, err.line,
+                  err.column, err.message);
     ck_assert_msg(strstr(err.message, refused[_i].message) != NULL, "%s: %s", head, err.message);
     ck_assert_int_eq(kel__heading_parse(&h, head, strlen(head), LINE, COLUMN, NULL), refused[_i].code);
 }
@@ -150,7 +155,8 @@ START_TEST(named)
     kel__heading h;
     kel__word name;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(kel__heading_option(&h, &name, options[_i].text, &err) == KEL_OK, "%s: %s", options[_i].text, err.message);
+    ck_assert_msg(kel__heading_option(&h, &name, options[_i].text, &err) == KEL_OK, "%s: %s", options[_i].text,
+                  err.message);
     ck_assert_int_eq(h.quantity, options[_i].quantity);
     assert_word(options[_i].text, name, options[_i].name);
 }
@@ -171,7 +177,8 @@ START_TEST(wrongly_named)
     kel__heading h;
     kel__word name;
     kel_error err = { KEL_OK, 9, 9, "" };
-    ck_assert_msg(kel__heading_option(&h, &name, wrong[_i].text, &err) == wrong[_i].code, "%s: %s", wrong[_i].text, err.message);
+    ck_assert_msg(kel__heading_option(&h, &name, wrong[_i].text, &err) == wrong[_i].code, "%s: %s", wrong[_i].text,
+                  err.message);
     ck_assert_msg(strstr(err.message, wrong[_i].message) != NULL, "%s: %s", wrong[_i].text, err.message);
     ck_assert_uint_eq(err.line, 0);
     ck_assert_uint_eq(err.column, 0);
@@ -181,8 +188,10 @@ END_TEST
 /* What kelspan writes for a quantity is read back as that quantity. */
 START_TEST(names)
 {
-    static const char *const units[] = { [KEL__TEMPERATURE] = "K", [KEL__FROM] = "K", [KEL__TO] = "K", [KEL__INTERVAL] = "K",
-        [KEL__COEFFICIENT] = "1/K", [KEL__MEAN] = "1/K", [KEL__EXPANSION] = "1", [KEL__CONTRACTION] = "1", [KEL__UNCERTAINTY] = "1",
+    static const char *const units[] = { [KEL__TEMPERATURE] = "K", [KEL__FROM] = "K", [KEL__TO] = "K",
+                                         [KEL__INTERVAL] = "K",
+        [KEL__COEFFICIENT] = "1/K", [KEL__MEAN] = "1/K", [KEL__EXPANSION] = "1", [KEL__CONTRACTION] = "1",
+            [KEL__UNCERTAINTY] = "1",
         [KEL__SOURCE] = NULL, [KEL__STATUS] = NULL };
     kel__quantity q = (kel__quantity)_i;
     char head[80];

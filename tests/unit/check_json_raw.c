@@ -23,7 +23,8 @@ START_TEST(finds_members)
     const struct member *m = &members[_i];
     size_t size;
     const char *text = kel__json_member_text(&size, m->place, m->text, strlen(m->text));
-    ck_assert_msg(size == strlen(m->want) && memcmp(text, m->want, size) == 0, "%s: got '%.*s'", m->label, (int)size, text);
+    ck_assert_msg(size == strlen(m->want) && memcmp(text, m->want, size) == 0, "%s: got '%.*s'", m->label, (int)size,
+                  text);
 }
 END_TEST
 

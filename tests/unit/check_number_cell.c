@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Cells of numbers: marks taken off, numbers read whole or not at all, intervals, and cells written out again. Also over cell_text.c. */
+/* Cells of numbers: marks taken off, numbers read whole or not at all, intervals, and cells written out again. Also
+   over cell_text.c. */
 #include "unit.h"
 
 #include <math.h>
@@ -61,7 +62,8 @@ START_TEST(stripped)
     ck_assert_msg(c.empty == (cells[_i].core == NULL), "'%s': empty %d", text, c.empty);
     ck_assert_msg(c.marks == cells[_i].marks, "'%s': marks %x", text, c.marks);
     if (!c.empty)
-        ck_assert_msg(c.core_n == strlen(cells[_i].core) && memcmp(c.core, cells[_i].core, c.core_n) == 0, "'%s': core '%.*s'", text,
+        ck_assert_msg(c.core_n == strlen(cells[_i].core) && memcmp(c.core, cells[_i].core, c.core_n) == 0,
+                      "'%s': core '%.*s'", text,
                       (int)c.core_n, c.core);
 }
 END_TEST
@@ -89,9 +91,11 @@ START_TEST(read)
     kel_unit unit;
     double value, resolution;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_int_eq(kel_unit_parse(&unit, numbers[_i].dimension, numbers[_i].unit, strlen(numbers[_i].unit), NULL), KEL_OK);
+    ck_assert_int_eq(kel_unit_parse(&unit, numbers[_i].dimension, numbers[_i].unit, strlen(numbers[_i].unit), NULL),
+                     KEL_OK);
     kel__cell c = kel__cell_of(text, strlen(text), LINE, COLUMN);
-    ck_assert_msg(kel__cell_number(&value, &resolution, &c, &unit, numbers[_i].comma, &err) == KEL_OK, "%s: %s", text, err.message);
+    ck_assert_msg(kel__cell_number(&value, &resolution, &c, &unit, numbers[_i].comma, &err) == KEL_OK, "%s: %s",
+                  text, err.message);
     ck_assert_ulp_for(text, value, numbers[_i].value, 0); /* one rounding of number and unit together */
     ck_assert_ulp_for(text, resolution, numbers[_i].resolution, 1);
 }
@@ -136,8 +140,10 @@ START_TEST(refusals)
     kel_error err = { KEL_OK, 0, 0, "" };
     ck_assert_int_eq(kel_unit_parse(&unit, KEL_DIM_TEMPERATURE, "K", 1, NULL), KEL_OK);
     kel__cell c = kel__cell_of(text, strlen(text), LINE, COLUMN);
-    ck_assert_msg(kel__cell_number(&value, NULL, &c, &unit, refused[_i].comma, &err) == refused[_i].code, "%s: %s", text, err.message);
-    ck_assert_msg(err.line == LINE && err.column == COLUMN + refused[_i].at, "%s: %zu:%zu %s", text, err.line, err.column, err.message);
+    ck_assert_msg(kel__cell_number(&value, NULL, &c, &unit, refused[_i].comma, &err) == refused[_i].code, "%s: %s",
+                  text, err.message);
+    ck_assert_msg(err.line == LINE && err.column == COLUMN + refused[_i].at, "%s: %zu:%zu %s", text, err.line,
+                  err.column, err.message);
     ck_assert_msg(strstr(err.message, refused[_i].message) != NULL, "%s: %s", text, err.message);
     ck_assert_int_eq(kel__cell_number(&value, NULL, &c, &unit, refused[_i].comma, NULL), refused[_i].code);
 }
@@ -183,7 +189,8 @@ static const struct { const char *cell, *from, *to; size_t from_at, to_at; } int
 static void
 assert_end(const char *label, const kel__cell *got, const char *want, size_t at)
 {
-    ck_assert_msg(got->core_n == strlen(want) && memcmp(got->core, want, got->core_n) == 0, "%s: '%.*s'", label, (int)got->core_n,
+    ck_assert_msg(got->core_n == strlen(want) && memcmp(got->core, want, got->core_n) == 0, "%s: '%.*s'", label,
+                  (int)got->core_n,
                   got->core);
     ck_assert_msg(got->line == LINE && got->column == COLUMN + at, "%s: %zu:%zu", label, got->line, got->column);
 }
@@ -202,7 +209,8 @@ END_TEST
 
 START_TEST(no_interval)
 {
-    static const char *const wrong[] = { "20", "-50", "20-", "20 to", "to 20", "a-b", "20..100", "20 100", "20/100", "-", "until 100" };
+    static const char *const wrong[] = { "20", "-50", "20-", "20 to", "to 20", "a-b", "20..100", "20 100", "20/100",
+                                         "-", "until 100" };
     const char *text = wrong[_i];
     kel__cell c = kel__cell_of(text, strlen(text), LINE, COLUMN), from, to;
     kel_error err = { KEL_OK, 0, 0, "" };

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Building: a deep copy with mended strings, check values where they belong, a digest of the right bytes, annotations as given. */
+/* Building: a deep copy with mended strings, check values where they belong, a digest of the right bytes,
+   annotations as given. */
 #include "../support/contents.h"
 
 #include "record_parts.h"
@@ -38,7 +39,8 @@ START_TEST(refuses_by_argument)
 }
 END_TEST
 
-/* alpha = 1.5e-5 + 2e-6 x, x = (T - 200)/100: e(T) = 1.5e-5 (T - R) + 1e-8 [(T - 200)^2 - (R - 200)^2], R = 293.15 K. */
+/* alpha = 1.5e-5 + 2e-6 x, x = (T - 200)/100: e(T) = 1.5e-5 (T - R) + 1e-8 [(T - 200)^2 - (R - 200)^2], R = 293.15
+   K. */
 START_TEST(makes_check_values)
 {
     static const struct { const char *label; double at; const char *coefficient, *expansion; } want[] = {
@@ -146,17 +148,20 @@ static const struct annotation { const char *label, *given, *kept, *message; siz
     { "none", NULL, NULL, NULL, 0, 0 },
     { "empty", "{}", "{}", NULL, 0, 0 },
     { "blanks around", "\n {\"a\" :1.50 }\t\n", "{\"a\" :1.50 }", NULL, 0, 0 },
-    { "brackets in strings", "{\"}\": \"{\\\"\", \"b\": [\"]\", {}]}", "{\"}\": \"{\\\"\", \"b\": [\"]\", {}]}", NULL, 0, 0 },
+    { "brackets in strings", "{\"}\": \"{\\\"\", \"b\": [\"]\", {}]}", "{\"}\": \"{\\\"\", \"b\": [\"]\", {}]}", NULL,
+      0, 0 },
     { "integer beyond a double's", "{\"n\": 12345678901234567890}", "{\"n\": 12345678901234567890}", NULL, 0, 0 },
     { "not an object", "[1]", NULL, "annotations: annotations is not an object", 0, 0 },
     { "no JSON", "{\"a\": }", NULL, "annotations: not valid JSON: ", 1, 7 },
     { "nothing", "", NULL, "annotations: not valid JSON: ", 1, 1 },
     { "second line", "{\"a\": 1,\n \"b\" 2}", NULL, "annotations: not valid JSON: ", 2, 6 },
-    { "duplicate", "{\"a\": 1, \"a\": 1}", NULL, "annotations: not valid JSON: the key that ends here occurs twice", 1, 12 },
+    { "duplicate", "{\"a\": 1, \"a\": 1}", NULL, "annotations: not valid JSON: the key that ends here occurs twice", 1,
+      12 },
     { "second member", "{}, \"more\": {}", NULL, "annotations: more is not a known key", 0, 0 },
     { "closes more than it opens", "{}}, {", NULL, "annotations: not valid JSON: ", 1, 4 },
     { "invalid UTF-8", "{\"a\": \"\xFF\"}", NULL, "annotations: not valid JSON: ", 0, 0 },
-    { "beyond a double", "{\"a\": 1e400}", NULL, "annotations: not valid JSON: a number is beyond the range of a double", 1, 11 },
+    { "beyond a double", "{\"a\": 1e400}", NULL,
+      "annotations: not valid JSON: a number is beyond the range of a double", 1, 11 },
 };
 
 START_TEST(keeps_annotations)
@@ -174,7 +179,8 @@ START_TEST(keeps_annotations)
     } else {
         ck_assert_msg(status == KEL_E_ARGUMENT, "%s: status %d", a->label, (int)status);
         ck_assert_msg(strncmp(err.message, a->message, strlen(a->message)) == 0, "%s: got '%s'", a->label, err.message);
-        ck_assert_msg(a->line == 0 || (err.line == a->line && err.column == a->column), "%s: at %zu:%zu", a->label, err.line,
+        ck_assert_msg(a->line == 0 || (err.line == a->line && err.column == a->column), "%s: at %zu:%zu", a->label,
+                      err.line,
                       err.column);
     }
     kel_record_free(record);
@@ -207,7 +213,8 @@ START_TEST(limits_the_size)
 }
 END_TEST
 
-KEL_TCASE(single, copies_deeply, refuses_by_argument, makes_check_values, refuses_a_curve_beyond_doubles, digests_the_text,
+KEL_TCASE(single, copies_deeply, refuses_by_argument, makes_check_values, refuses_a_curve_beyond_doubles,
+          digests_the_text,
           mends_strings, limits_the_size)
 
 static TCase *

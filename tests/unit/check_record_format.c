@@ -82,7 +82,8 @@ expect_rich(const kel_text *text)
         "        \"0.5 % + 1e-5 [1] k=2 from 77 K to 300 K\"\n"
         "      ],\n"
         "      \"notes\": [\n"
-        "        \"rows 3 and 4 were printed in \\\"italics\\\"\\tin the \\\\ source, \xE2\x88\x92 as minus; \\u0001\\u007f\"\n"
+        "        \"rows 3 and 4 were printed in \\\"italics\\\"\\tin the \\\\ source, "
+        "\xE2\x88\x92 as minus; \\u0001\\u007f\"\n"
         "      ]\n"
         "    },\n"
         "    {\n"
@@ -120,7 +121,8 @@ expect_rich(const kel_text *text)
         "    {\"source\": 0, \"column\": 0, \"line\": 5, \"kind\": \"coefficient\", \"from_K\": 200, \"to_K\": 200, "
         "\"observed\": 0.000011, \"fitted\": 0.000011, \"residual\": 0, \"shared_term\": -1e-9, \"u\": null, "
         "\"side\": \"below\", \"left_out\": null},\n"
-        "    {\"source\": 1, \"column\": 1, \"line\": 9, \"kind\": \"mean coefficient\", \"from_K\": 293.15, \"to_K\": 200, "
+        "    {\"source\": 1, \"column\": 1, \"line\": 9, \"kind\": \"mean coefficient\", "
+        "\"from_K\": 293.15, \"to_K\": 200, "
         "\"observed\": 0.000012, \"fitted\": 0.000013, \"residual\": -1e-6, \"shared_term\": 0, \"u\": 1e-7, "
         "\"side\": \"above\", \"left_out\": null},\n"
         "    {\"source\": 0, \"column\": 0, \"line\": 6, \"kind\": \"expansion\", \"from_K\": null, \"to_K\": 5, "
@@ -141,7 +143,8 @@ expect_rich(const kel_text *text)
     ck_assert_str_eq(text->bytes + text->size - (sizeof tail - 1), tail);
     const char *digest = strstr(text->bytes, "}\n  ],\n  \"digest\": \"");
     ck_assert_ptr_nonnull(digest);
-    ck_assert_uint_eq((size_t)(text->bytes + text->size - digest), strlen("}\n  ],\n  \"digest\": \"") + 64 + sizeof tail - 1);
+    ck_assert_uint_eq((size_t)(text->bytes + text->size - digest),
+                      strlen("}\n  ],\n  \"digest\": \"") + 64 + sizeof tail - 1);
 }
 
 START_TEST(lays_out_everything)

@@ -16,10 +16,13 @@ static const struct row { const char *file; kel_status status; size_t line; cons
     { "bad-record-comma.json", KEL_E_SYNTAX, 5, "not valid JSON: wrong syntax near '15'" },
     { "bad-record-nul.json", KEL_E_SYNTAX, 3, "not valid JSON: it holds a NUL byte" },
     { "bad-record-wrong-type.json", KEL_E_DATA, 0, "range_K[1] is not a number" },
-    { "bad-record-pieces-apart.json", KEL_E_DATA, 0, "pieces[1].from_K = 200.5 must equal the end of the piece before, 200" },
+    { "bad-record-pieces-apart.json", KEL_E_DATA, 0,
+      "pieces[1].from_K = 200.5 must equal the end of the piece before, 200" },
     { "bad-record-digest.json", KEL_E_DIGEST, 0, "the content does not match its digest" },
-    { "bad-record-check-values.json", KEL_E_DIGEST, 0, "the check value of the coefficient at 150 K is 0.000013 1/K, but the curve gives 0.000014 1/K" },
-    { "bad-record-newer.json", KEL_E_VERSION, 0, "written by a newer kelspan (record version 2, this one reads up to 1)" },
+    { "bad-record-check-values.json", KEL_E_DIGEST, 0,
+      "the check value of the coefficient at 150 K is 0.000013 1/K, but the curve gives 0.000014 1/K" },
+    { "bad-record-newer.json", KEL_E_VERSION, 0,
+      "written by a newer kelspan (record version 2, this one reads up to 1)" },
     { "bad-record-no-record.json", KEL_E_DATA, 0, "not a record: the key kelspan_record is missing" },
     { "bad-record-empty.json", KEL_E_SYNTAX, 1, "not a record: it is empty" },
 };
@@ -35,7 +38,8 @@ START_TEST(loads_or_says_why_not)
     ck_assert_msg(status == row->status, "%s: %s: %s", row->file, kel_status_text(status), err.message);
     ck_assert((record != NULL) == (status == KEL_OK));
     if (status != KEL_OK) {
-        ck_assert_msg(strncmp(err.message, row->message, strlen(row->message)) == 0, "%s: got '%s'", row->file, err.message);
+        ck_assert_msg(strncmp(err.message, row->message, strlen(row->message)) == 0, "%s: got '%s'", row->file,
+                      err.message);
         ck_assert_msg(err.line == row->line, "%s: line %zu", row->file, err.line);
     }
     kel_record_free(record);

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Reading a record back: every number to the last bit, every byte again; and every kind of damage refused with its place. */
+/* Reading a record back: every number to the last bit, every byte again; and every kind of damage refused with its
+   place. */
 #include "../support/contents.h"
 
 #include <jansson.h>
@@ -69,9 +70,11 @@ same_curves(const kel_content *a, const kel_content *b)
 static void
 same_source(const kel_source *a, const kel_source *b)
 {
-    const char *const of_a[] = { a->name, a->digest, a->material, a->condition, a->direction, a->product_form, a->source,
+    const char *const of_a[] = { a->name, a->digest, a->material, a->condition, a->direction, a->product_form,
+        a->source,
                                  a->lineage, a->scale, a->branch };
-    const char *const of_b[] = { b->name, b->digest, b->material, b->condition, b->direction, b->product_form, b->source,
+    const char *const of_b[] = { b->name, b->digest, b->material, b->condition, b->direction, b->product_form,
+        b->source,
                                  b->lineage, b->scale, b->branch };
     same_strings("source", of_a, 10, of_b, 10);
     same_number("reference", a->reference_temperature, b->reference_temperature);
@@ -163,7 +166,8 @@ parse(const char *what, const char *bytes, size_t n)
     kel_record *record;
     kel_error err = { 0 };
     kel_status status = kel_record_parse(&record, bytes, n, &err);
-    ck_assert_msg(status == KEL_OK, "%s: %s: %s (line %zu, column %zu)", what, kel_status_text(status), err.message, err.line,
+    ck_assert_msg(status == KEL_OK, "%s: %s: %s (line %zu, column %zu)", what, kel_status_text(status), err.message,
+                  err.line,
                   err.column);
     return record;
 }
@@ -246,8 +250,8 @@ rich_tree(void)
     return tree;
 }
 
-/* Layout, order of keys, digits beyond need and integers for numbers do not matter, and all is as before when written again (the
-   annotations have the layout of the text that they came from). */
+/* Layout, order of keys, digits beyond need and integers for numbers do not matter, and all is as before when
+   written again (the annotations have the layout of the text that they came from). */
 START_TEST(layout_does_not_matter)
 {
     static const size_t flags[] = { JSON_COMPACT, JSON_INDENT(7), JSON_SORT_KEYS, JSON_ENSURE_ASCII | JSON_INDENT(1) };
@@ -314,7 +318,8 @@ END_TEST
 /* Annotations are the users': they may change at any time and stay to the byte. */
 START_TEST(annotations_are_free)
 {
-    static const char mine[] = "{\"kelspan_record\": 9, \"digits\": [0.10, 1E2,\n\n 12345678901234567890], \"a\\u0062\": {\"x\": {}}}";
+    static const char mine[] =
+        "{\"kelspan_record\": 9, \"digits\": [0.10, 1E2,\n\n 12345678901234567890], \"a\\u0062\": {\"x\": {}}}";
     kel_text text = rich_text();
     const char *begin = strstr(text.bytes, "{\"approved\"");
     char *old = strndup(begin, strlen(begin) - strlen("\n}\n"));
@@ -339,10 +344,12 @@ refused(const char *label, const char *bytes, size_t n, kel_status want, const c
     kel_error err = { 0 };
     kel_record *record = (kel_record *)&err;
     kel_status status = kel_record_parse(&record, bytes, n, &err);
-    ck_assert_msg(status == want, "%s: status %s, expected %s; %s", label, kel_status_text(status), kel_status_text(want),
+    ck_assert_msg(status == want, "%s: status %s, expected %s; %s", label, kel_status_text(status),
+                  kel_status_text(want),
                   err.message);
     ck_assert_ptr_null(record);
-    ck_assert_msg(err.code == status && strstr(err.message, message) != NULL, "%s: got '%s', expected '%s' in it", label,
+    ck_assert_msg(err.code == status && strstr(err.message, message) != NULL, "%s: got '%s', expected '%s' in it",
+                  label,
                   err.message, message);
     ck_assert_msg(strpbrk(err.message, "\r\n\x1B") == NULL && strchr(err.message, '\0')[-1] != '.', "%s: '%s'", label,
                   err.message);
@@ -381,14 +388,16 @@ misspell(const json_t *root, json_t *object, const char *key)
     json_t *value = json_incref(json_object_get(object, key));
     json_object_del(object, key);
     snprintf(other, sizeof other, "%sX", key);
-    snprintf(message, sizeof message, strcmp(key, "kelspan_record") == 0 ? "not a record" : "%s is not a known key", other);
+    snprintf(message, sizeof message, strcmp(key, "kelspan_record") == 0 ? "not a record" : "%s is not a known key",
+             other);
     json_object_set(object, other, value);
     tree_refused(key, root, message);
     json_object_del(object, other);
     json_object_set_new(object, key, value);
 }
 
-/* Every other type of JSON, where the key does not allow it; null is right for what may be unknown, and then the digest tells. */
+/* Every other type of JSON, where the key does not allow it; null is right for what may be unknown, and then the
+   digest tells. */
 static void
 retype(const json_t *root, json_t *object, const char *key)
 {
@@ -397,16 +406,19 @@ retype(const json_t *root, json_t *object, const char *key)
     for (int i = 0; i < KEL_LENGTH(others); i++) {
         kel_error err;
         kel_record *record;
-        bool same_type = json_typeof(others[i]) == json_typeof(value) || (json_is_boolean(others[i]) && json_is_boolean(value)) ||
+        bool same_type = json_typeof(others[i]) == json_typeof(value) || (json_is_boolean(others[i]) &&
+            json_is_boolean(value)) ||
                          (json_is_number(others[i]) && json_is_number(value));
         json_object_set(object, key, others[i]);
         char *text = json_dumps(root, 0);
         kel_status status = kel_record_parse(&record, text, strlen(text), &err);
         bool may_be_null = json_is_null(others[i]) || json_is_null(value);
-        ck_assert_msg(same_type || status == KEL_E_DATA || (may_be_null && status == KEL_E_DIGEST), "%s of type %d: %s", key,
+        ck_assert_msg(same_type || status == KEL_E_DATA || (may_be_null && status == KEL_E_DIGEST),
+                      "%s of type %d: %s", key,
                       (int)json_typeof(others[i]), kel_status_text(status));
         /* Whether a row is left out decides what else it must hold. */
-        bool named = status == KEL_E_DATA && (strstr(err.message, key) != NULL || (strcmp(key, "left_out") == 0 && may_be_null));
+        bool named = status == KEL_E_DATA && (strstr(err.message, key) != NULL || (strcmp(key, "left_out") == 0 &&
+            may_be_null));
         ck_assert_msg(same_type || status != KEL_E_DATA || named, "%s: '%s'", key, err.message);
         kel_record_free(record);
         free(text);
@@ -444,7 +456,8 @@ damage_everywhere(change *apply)
 {
     json_t *tree = rich_tree();
     char *text = json_dumps(tree, JSON_SORT_KEYS);
-    /* 26 at the top, 3 of each piece, transition and check, 4 of each mode, 16, 9 and 13 of each source, column and row. */
+    /* 26 at the top, 3 of each piece, transition and check, 4 of each mode, 16, 9 and 13 of each source, column and
+       row. */
     ck_assert_uint_eq(everywhere(apply, tree, tree), 26 + 3 * 3 + 3 * 3 + 6 * 3 + 2 * 4 + 2 * 16 + 2 * 9 + 4 * 13);
     char *after = json_dumps(tree, JSON_SORT_KEYS);
     ck_assert_str_eq(text, after);
@@ -485,7 +498,8 @@ START_TEST(duplicate_keys)
         kel_text_add_bytes(&other, quote, (size_t)(colon + 3 - quote));
         kel_text_add(&other, "0, ");
         kel_text_add(&other, quote);
-        refused("duplicate", other.bytes, other.size, KEL_E_SYNTAX, "not valid JSON: the key that ends here occurs twice");
+        refused("duplicate", other.bytes, other.size, KEL_E_SYNTAX,
+                "not valid JSON: the key that ends here occurs twice");
         kel_text_free(&other);
         keys++;
     }
@@ -505,7 +519,8 @@ START_TEST(cut_anywhere)
 }
 END_TEST
 
-/* Every bit of a small record turned over, and every byte made a digit, a blank and a NUL: refused, or it means the same. */
+/* Every bit of a small record turned over, and every byte made a digit, a blank and a NUL: refused, or it means the
+   same. */
 START_TEST(changed_anywhere)
 {
     static const unsigned char put[] = { '0', '9', ' ', '\0', '"', 0xFF };
@@ -523,7 +538,8 @@ START_TEST(changed_anywhere)
             text.bytes[i] = before;
             if (status == KEL_OK) {
                 kel_text again = format_record(other);
-                ck_assert_msg(strcmp(again.bytes, text.bytes) == 0, "byte %zu, 0x%02x for 0x%02x, went unnoticed: %s", i,
+                ck_assert_msg(strcmp(again.bytes, text.bytes) == 0, "byte %zu, 0x%02x for 0x%02x, went unnoticed: %s",
+                              i,
                               (unsigned)(unsigned char)after, (unsigned)(unsigned char)before, again.bytes);
                 kel_text_free(&again);
                 harmless++;
@@ -537,15 +553,21 @@ START_TEST(changed_anywhere)
 }
 END_TEST
 
-static const struct fault { const char *label, *find, *put; kel_status status; const char *message; size_t line; } faults[] = {
+static const struct fault { const char *label, *find,
+    *put; kel_status status; const char *message; size_t line; } faults[] = {
     { "newer", "\"kelspan_record\": 1", "\"kelspan_record\": 2", KEL_E_VERSION,
       "written by a newer kelspan (record version 2, this one reads up to 1)", 0 },
-    { "newer, with keys of its own", "\"kelspan_record\": 1", "\"kelspan_record\": 3, \"signature\": \"x\"", KEL_E_VERSION,
+    { "newer, with keys of its own", "\"kelspan_record\": 1", "\"kelspan_record\": 3, \"signature\": \"x\"",
+      KEL_E_VERSION,
       "written by a newer kelspan (record version 3, this one reads up to 1)", 0 },
-    { "version 0", "\"kelspan_record\": 1", "\"kelspan_record\": 0", KEL_E_DATA, "kelspan_record = 0 is no version", 0 },
-    { "version between", "\"kelspan_record\": 1", "\"kelspan_record\": 1.5", KEL_E_DATA, "kelspan_record is not a count", 0 },
-    { "version below", "\"kelspan_record\": 1", "\"kelspan_record\": -1", KEL_E_DATA, "kelspan_record is not a count", 0 },
-    { "version as text", "\"kelspan_record\": 1", "\"kelspan_record\": \"1\"", KEL_E_DATA, "kelspan_record is not a number", 0 },
+    { "version 0", "\"kelspan_record\": 1", "\"kelspan_record\": 0", KEL_E_DATA, "kelspan_record = 0 is no version",
+      0 },
+    { "version between", "\"kelspan_record\": 1", "\"kelspan_record\": 1.5", KEL_E_DATA,
+      "kelspan_record is not a count", 0 },
+    { "version below", "\"kelspan_record\": 1", "\"kelspan_record\": -1", KEL_E_DATA, "kelspan_record is not a count",
+      0 },
+    { "version as text", "\"kelspan_record\": 1", "\"kelspan_record\": \"1\"", KEL_E_DATA,
+      "kelspan_record is not a number", 0 },
     { "beyond a double", "293.15", "1e400", KEL_E_RANGE, "a number is beyond the range of a double", 5 },
     { "far below zero", "-8.4e-6", "-1e400", KEL_E_RANGE, "a number is beyond the range of a double", 20 },
     { "not a number", "293.15", "NaN", KEL_E_SYNTAX, "not valid JSON: ", 5 },
@@ -561,26 +583,36 @@ static const struct fault { const char *label, *find, *put; kel_status status; c
     { "invalid UTF-8", "\"NT-40\"", "\"\xB0\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
     { "control byte", "\"NT-40\"", "\"\x1B[31m\"", KEL_E_SYNTAX, "not valid JSON: ", 0 },
     { "text behind", "]}\n}\n", "]}\n}\n{}", KEL_E_SYNTAX, "not valid JSON: wrong syntax near '{'", 0 },
-    { "annotations no object", "\"annotations\": {\"approved\": {\"by\": \"QA\", \"limit\": 1.50},\n  \"tags\": [\"}\", \"\\\"]\"]}",
+    { "annotations no object",
+      "\"annotations\": {\"approved\": {\"by\": \"QA\", \"limit\": 1.50},\n  \"tags\": [\"}\", \"\\\"]\"]}",
       "\"annotations\": [1]", KEL_E_DATA, "annotations is not an object", 0 },
     { "digit of a coefficient", "3.9e-6", "3.8e-6", KEL_E_DIGEST, "the content does not match its digest", 0 },
-    { "last bit of a coefficient", "-3.3333333333333335e-7", "-3.333333333333334e-7", KEL_E_DIGEST, "does not match its digest", 0 },
+    { "last bit of a coefficient", "-3.3333333333333335e-7", "-3.333333333333334e-7", KEL_E_DIGEST,
+      "does not match its digest", 0 },
     { "lost sign of zero", "[1e-9, -0, 4e-9]", "[1e-9, 0, 4e-9]", KEL_E_DIGEST, "does not match its digest", 0 },
     { "label", "\"NT-40\"", "\"NT-41\"", KEL_E_DIGEST, "does not match its digest", 0 },
-    { "unknown made known", "\"chi2\": 0.3333333333333333", "\"chi2\": null", KEL_E_DIGEST, "does not match its digest", 0 },
-    { "digest itself", "\"digest\": \"", "\"digest\": \"0", KEL_E_DATA, "sources[0].digest is not 64 hexadecimal digits", 0 },
-    { "rule of the content", "\"to_K\": 77,", "\"to_K\": 78,", KEL_E_DATA, "pieces[1].from_K = 77 must equal the end of the piece before, 78", 0 },
+    { "unknown made known", "\"chi2\": 0.3333333333333333", "\"chi2\": null", KEL_E_DIGEST,
+      "does not match its digest", 0 },
+    { "digest itself", "\"digest\": \"", "\"digest\": \"0", KEL_E_DATA,
+      "sources[0].digest is not 64 hexadecimal digits", 0 },
+    { "rule of the content", "\"to_K\": 77,", "\"to_K\": 78,", KEL_E_DATA,
+      "pieces[1].from_K = 77 must equal the end of the piece before, 78", 0 },
     { "word", "\"fitted\", \"length_step\"", "\"guessed\", \"length_step\"", KEL_E_DATA,
       "transitions[1].step = 'guessed' is none of 'none', 'fitted', 'stated'", 0 },
-    { "unknown form", "\"piecewise\"", "\"rational\"", KEL_E_DATA, "form is none of 'polynomial', 'piecewise', 'adopted'", 0 },
+    { "unknown form", "\"piecewise\"", "\"rational\"", KEL_E_DATA,
+      "form is none of 'polynomial', 'piecewise', 'adopted'", 0 },
     { "range of one", "[4.2, 899.5]", "[4.2]", KEL_E_DATA, "range_K holds 1 numbers, but must hold 2", 0 },
     { "range of three", "[4.2, 899.5]", "[4.2, 5, 899.5]", KEL_E_DATA, "range_K holds 3 numbers, but must hold 2", 0 },
     { "null in a curve", "[0.000011]", "[null]", KEL_E_DATA, "pieces[1].chebyshev_per_K[0] is not a number", 0 },
-    { "mode without a piece", "        [3e-8],\n", "", KEL_E_DATA, "modes[0].chebyshev_per_K has another number of pieces than the curve", 0 },
-    { "mode of another degree", "[3e-8]", "[3e-8, 1]", KEL_E_DATA, "modes[0].chebyshev_per_K[1] holds 2 numbers, but must hold 1", 0 },
-    { "mode without a step", "[0, 2e-7, 0]", "[0, 2e-7]", KEL_E_DATA, "modes[0].length_steps holds 2 numbers, but must hold 3", 0 },
+    { "mode without a piece", "        [3e-8],\n", "", KEL_E_DATA,
+      "modes[0].chebyshev_per_K has another number of pieces than the curve", 0 },
+    { "mode of another degree", "[3e-8]", "[3e-8, 1]", KEL_E_DATA,
+      "modes[0].chebyshev_per_K[1] holds 2 numbers, but must hold 1", 0 },
+    { "mode without a step", "[0, 2e-7, 0]", "[0, 2e-7]", KEL_E_DATA,
+      "modes[0].length_steps holds 2 numbers, but must hold 3", 0 },
     { "half a row", "\"rows\": 12", "\"rows\": 12.5", KEL_E_DATA, "sources[0].rows is not a count", 0 },
-    { "more rows than can be counted", "\"rows\": 12", "\"rows\": 1e300", KEL_E_DATA, "sources[0].rows is not a count", 0 },
+    { "more rows than can be counted", "\"rows\": 12", "\"rows\": 1e300", KEL_E_DATA, "sources[0].rows is not a count",
+      0 },
     { "key with an escape sequence", "\"form\"", "\"\\u001b[31m\"", KEL_E_DATA, "\\x1B[31m is not a known key", 0 },
 };
 
@@ -655,14 +687,16 @@ END_TEST
 
 /* ---- check values ---- */
 
-static const struct check { const char *label; size_t i; double coefficient, expansion; kel_status status; const char *message; } checks[] = {
+static const struct check { const char *label; size_t i; double coefficient,
+    expansion; kel_status status; const char *message; } checks[] = {
     { "as written", 0, 0.0, 0.0, KEL_OK, NULL },
     /* S = 1.7e-5 for alpha; over the 193.15 K from 293.15 K to 100 K its integral is 3.28e-3. */
     { "coefficient within 1e-12", 0, 1.6e-17, 0.0, KEL_OK, NULL },
     { "coefficient beyond 1e-12", 0, 1.8e-17, 0.0, KEL_E_DIGEST, "the check value of the coefficient at 100 K is " },
     { "expansion within 1e-12", 0, 0.0, -3.2e-15, KEL_OK, NULL },
     { "expansion beyond 1e-12", 0, 0.0, 3.4e-15, KEL_E_DIGEST, "the check value of the expansion at 100 K is " },
-    { "not zero at the reference", 5, 0.0, 1e-20, KEL_E_DIGEST, "the check value of the expansion at 293.15 K is 1e-20, but the curve gives 0" },
+    { "not zero at the reference", 5, 0.0, 1e-20, KEL_E_DIGEST,
+      "the check value of the expansion at 293.15 K is 1e-20, but the curve gives 0" },
 };
 
 /* The digest is right, so that only the check values can tell. */
@@ -714,7 +748,8 @@ START_TEST(check_values_must_be_there)
 }
 END_TEST
 
-KEL_TCASE(whole, keeps_everything, keeps_everything_with_a_comma, keeps_any_double, layout_does_not_matter, annotations_are_free)
+KEL_TCASE(whole, keeps_everything, keeps_everything_with_a_comma, keeps_any_double, layout_does_not_matter,
+          annotations_are_free)
 KEL_TCASE(damage, missing_keys, unknown_keys, wrong_types, duplicate_keys, cut_anywhere, changed_anywhere, no_records,
           columns_count_bytes, too_deep_or_too_large, check_values_must_be_there)
 

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Writing files: what was there stays until all is written, links stay links, devices stay devices, permissions stay. */
+/* Writing files: what was there stays until all is written, links stay links, devices stay devices, permissions
+   stay. */
 #include "../support/contents.h"
 
 #include <dirent.h>
@@ -312,7 +313,8 @@ read_pipe(void *argument)
     return NULL;
 }
 
-/* With SIGPIPE as it is by default: a reader that goes away must not end the program, nor leave the signal pending or blocked. */
+/* With SIGPIPE as it is by default: a reader that goes away must not end the program, nor leave the signal pending
+   or blocked. */
 START_TEST(writes_pipes_directly)
 {
     static char big[1 << 20];

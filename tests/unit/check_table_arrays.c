@@ -37,7 +37,8 @@ make(kel_table **out, const kel_observation *o, size_t n, double reference, kel_
 START_TEST(kept)
 {
     char reason[] = "cracked";
-    kel_observation o[] = { coefficient(100, 11e-6), mean(293, 77, 12e-6), mean(20, 100, 9e-6), expansion(77, -3e-3), expansion(293, 5e-7),
+    kel_observation o[] = { coefficient(100, 11e-6), mean(293, 77, 12e-6), mean(20, 100, 9e-6), expansion(77, -3e-3),
+                            expansion(293, 5e-7),
                             coefficient(0, 0), expansion(350, 1e-3) };
     o[0].u_absolute = 1e-7;
     o[2].u_relative = 0.01;
@@ -93,7 +94,12 @@ static void two_temperatures(kel_observation *o) { o->from = 5; }
 static void other_reference(kel_observation *o) { *o = expansion(77, -3e-3); o->from = 294; }
 static void not_zero(kel_observation *o) { *o = expansion(293, 1.1e-6); }
 
-static const struct { const char *label; void (*spoil)(kel_observation *o); kel_status code; const char *part; } bad[] = {
+static const struct {
+    const char *label;
+    void (*spoil)(kel_observation *o);
+    kel_status code;
+    const char *part;
+} bad[] = {
     { "below 0 K", cold, KEL_E_RANGE, "not below 0 K" },
     { "temperature NaN", no_temperature, KEL_E_RANGE, "must be finite" },
     { "temperature infinite", hot, KEL_E_RANGE, "must be finite" },
@@ -113,7 +119,8 @@ static const struct { const char *label; void (*spoil)(kel_observation *o); kel_
 
 START_TEST(refused)
 {
-    kel_observation o[] = { coefficient(10, 1e-6), coefficient(20, 2e-6), coefficient(30, 3e-6), coefficient(40, 4e-6) };
+    kel_observation o[] = { coefficient(10, 1e-6), coefficient(20, 2e-6), coefficient(30, 3e-6),
+                            coefficient(40, 4e-6) };
     kel_table *t = (kel_table *)&t;
     kel_error err = { KEL_OK, 0, 0, "" };
     bad[_i].spoil(&o[BAD]);
@@ -129,13 +136,15 @@ START_TEST(arguments)
     kel_observation o = coefficient(10, 1e-6);
     kel_column wrong = { KEL_KIND_COEFFICIENT, NULL, NULL, NAN, false };
     kel_table *t;
-    ck_assert_int_eq(kel_table_from_arrays(NULL, "a", columns, 3, &o, 1, NAN, KEL_BASE_REFERENCE, NULL), KEL_E_ARGUMENT);
+    ck_assert_int_eq(kel_table_from_arrays(NULL, "a", columns, 3, &o, 1, NAN, KEL_BASE_REFERENCE, NULL),
+                     KEL_E_ARGUMENT);
     ck_assert_int_eq(kel_table_from_arrays(&t, NULL, columns, 3, &o, 1, NAN, KEL_BASE_REFERENCE, NULL), KEL_E_ARGUMENT);
     ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 0, &o, 1, NAN, KEL_BASE_REFERENCE, NULL), KEL_E_ARGUMENT);
     ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 3, &o, 0, NAN, KEL_BASE_REFERENCE, NULL), KEL_E_ARGUMENT);
     ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 3, &o, 1, NAN, 2, NULL), KEL_E_ARGUMENT);
     ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 3, &o, 1, -1, KEL_BASE_REFERENCE, NULL), KEL_E_RANGE);
-    ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 3, &o, 1, INFINITY, KEL_BASE_REFERENCE, NULL), KEL_E_RANGE);
+    ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 3, &o, 1, INFINITY, KEL_BASE_REFERENCE, NULL),
+                     KEL_E_RANGE);
     ck_assert_int_eq(kel_table_from_arrays(&t, "a", &wrong, 1, &o, 1, NAN, KEL_BASE_REFERENCE, NULL), KEL_E_ARGUMENT);
     ck_assert_int_eq(kel_table_from_arrays(&t, "a", columns, 3, &o, 1, NAN, KEL_BASE_CURRENT, NULL), KEL_OK);
     ck_assert_int_eq(t->base, KEL_BASE_CURRENT);
@@ -147,7 +156,8 @@ END_TEST
 /* Doubtful arrays are warned about as tables are. */
 START_TEST(warned)
 {
-    kel_observation o[] = { coefficient(30, -1e-6), coefficient(10, 2e-6), coefficient(10, 3e-6), coefficient(40, 4e-6) };
+    kel_observation o[] = { coefficient(30, -1e-6), coefficient(10, 2e-6), coefficient(10, 3e-6),
+                            coefficient(40, 4e-6) };
     kel_table *t;
     ck_assert_int_eq(make(&t, o, 4, NAN, NULL), KEL_OK);
     ck_assert_ptr_nonnull(kel_test_warning(t, "sign"));

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Tables written out: read again they give the same bytes and the same observations; what the layout changes and what it keeps. */
+/* Tables written out: read again they give the same bytes and the same observations; what the layout changes and what
+   it keeps. */
 #include "tables.h"
 
 #include <math.h>
@@ -20,11 +21,13 @@ static const struct {
     { "odd-series.csv", { .series = "normal", .kind = -1, .header = -1 } },
     { "odd-transposed.csv", { .kind = -1, .header = -1, .transpose = true } },
     { "odd-blanks.txt", { .kind = -1, .header = -1, .delimiter = KEL_DELIMITER_BLANKS,
-                          .settings = (const char *const[]){ "reference temperature: 20 degC", "note: from page 3" }, .setting_count = 2 } },
+                          .settings = (const char *const[]){ "reference temperature: 20 degC", "note: from page 3" },
+                              .setting_count = 2 } },
     { "odd-foreign.csv", { .kind = -1, .header = -1, .columns = (const char *const[]){ "temperature [degC]=Temp",
                            "coefficient: x, y [ppm/K]=3" }, .column_count = 2 } },
     { "odd-title.csv", { .kind = -1, .header = 4 } },
-    { "odd-no-header.csv", { .kind = -1, .header = 0, .columns = (const char *const[]){ "temperature [K]=1", "coefficient [1e-6/K]=2" },
+    { "odd-no-header.csv", { .kind = -1, .header = 0, .columns = (const char *const[]){ "temperature [K]=1",
+                                                                                        "coefficient [1e-6/K]=2" },
                              .column_count = 2 } },
 };
 
@@ -38,7 +41,8 @@ format(kel_text *out, const kel_table *t)
 static void
 assert_same_text(const char *label, const char *a, const char *b)
 {
-    ck_assert_msg((a == NULL) == (b == NULL) && (a == NULL || strcmp(a, b) == 0), "%s: '%s' and '%s'", label, a == NULL ? "" : a,
+    ck_assert_msg((a == NULL) == (b == NULL) && (a == NULL || strcmp(a, b) == 0), "%s: '%s' and '%s'", label,
+                  a == NULL ? "" : a,
                   b == NULL ? "" : b);
 }
 
@@ -100,7 +104,8 @@ START_TEST(good_files)
 {
     kel_table *t;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(kel_test_read_file(&t, good[_i], NULL, &err) == KEL_OK, "%s:%zu:%zu: %s", good[_i], err.line, err.column, err.message);
+    ck_assert_msg(kel_test_read_file(&t, good[_i], NULL, &err) == KEL_OK, "%s:%zu:%zu: %s", good[_i], err.line,
+                  err.column, err.message);
     assert_fixed_point(t);
     kel_table_free(t);
 }
@@ -110,7 +115,8 @@ START_TEST(odd_files)
 {
     kel_table *t;
     kel_error err = { KEL_OK, 0, 0, "" };
-    ck_assert_msg(kel_test_read_file(&t, odd[_i].file, &odd[_i].options, &err) == KEL_OK, "%s:%zu:%zu: %s", odd[_i].file, err.line,
+    ck_assert_msg(kel_test_read_file(&t, odd[_i].file, &odd[_i].options, &err) == KEL_OK, "%s:%zu:%zu: %s",
+                  odd[_i].file, err.line,
                   err.column, err.message);
     assert_fixed_point(t);
     kel_table_free(t);
@@ -118,15 +124,21 @@ START_TEST(odd_files)
 END_TEST
 
 static const struct { const char *label, *text, *want; } changes[] = {
-    { "canonical words, units as printed", "# Material: A\nT (K);alpha(10\xE2\x81\xBB\xE2\x81\xB6 K\xE2\x81\xBB\xC2\xB9)\n100;11.50\n",
+    { "canonical words, units as printed",
+      "# Material: A\nT (K);alpha(10\xE2\x81\xBB\xE2\x81\xB6 K\xE2\x81\xBB\xC2\xB9)\n100;11.50\n",
       "# material: A\ntemperature [K],coefficient [10\xE2\x81\xBB\xE2\x81\xB6 K\xE2\x81\xBB\xC2\xB9]\n100,11.50\n" },
-    { "intervals", "interval [degC],mean alpha [ppm/K],source\n\"(-50 - 20)\",+9.56,a\n,,b\n\xE2\x88\x92" "50\xE2\x80\x93" "0,9.3:,\n",
+    { "intervals",
+      "interval [degC],mean alpha [ppm/K],source\n\"(-50 - 20)\",+9.56,a\n,,b\n"
+      "\xE2\x88\x92" "50\xE2\x80\x93" "0,9.3:,\n",
       "from [degC],to [degC],mean coefficient [ppm/K],source\n(-50),(20),+9.56,a\n,,,b\n\xE2\x88\x92" "50,0,9.3:,\n" },
-    { "contraction", "# reference temperature: 293 K\nT [K],contraction [1e-5],limits [1e-5]\n80,~390.0,1\n310,-35,\n293,0,1\n",
-      "# reference temperature: 293 K\ntemperature [K],expansion [1e-5],limits [1e-5]\n80,~-390.0,1\n310,35,\n293,0,1\n" },
+    { "contraction",
+      "# reference temperature: 293 K\nT [K],contraction [1e-5],limits [1e-5]\n80,~390.0,1\n310,-35,\n293,0,1\n",
+      "# reference temperature: 293 K\ntemperature [K],expansion [1e-5],limits "
+      "[1e-5]\n80,~-390.0,1\n310,35,\n293,0,1\n" },
     { "decimal comma", "# decimal: comma\n# note: a, b\n# uncertainty: 1,5 % + 0,1 [1e-6/K] from 0,5 K to 400 K\n"
       "T [K];alpha [1e-6/K];source\n100,5;11,50;\"p. 3, 4\"\n",
-      "# note: a, b\n# uncertainty: 1.5 % + 0.1 [1e-6/K] from 0.5 K to 400 K\ntemperature [K],coefficient [1e-6/K],source\n"
+      "# note: a, b\n# uncertainty: 1.5 % + 0.1 [1e-6/K] from 0.5 K to 400 K\ntemperature [K],coefficient "
+      "[1e-6/K],source\n"
       "100.5,11.50,\"p. 3, 4\"\n" },
     { "quotes and marks of comments", "source,T [K],alpha [1e-6/K]\n\"#1 \"\"x\"\"\",100,11.50\n\"#2\",200,16.4\n",
       "source,temperature [K],coefficient [1e-6/K]\n\"#1 \"\"x\"\"\",100,11.50\n\"#2\",200,16.4\n" },
@@ -152,7 +164,8 @@ START_TEST(left_out)
     static const char *const out[] = { "test.csv:3=specimen had moved", "test.csv:4=a, b" };
     static const struct { const char *text, *want; } tables[] = {
         { "T [K],alpha [1e-6/K]\n100,11.5\n200,16.4\n300,19.1\n",
-          "temperature [K],coefficient [1e-6/K],status\n100,11.5,\n200,16.4,left out: specimen had moved\n300,19.1,\"left out: a, b\"\n" },
+          "temperature [K],coefficient [1e-6/K],status\n100,11.5,\n200,16.4,left out: specimen had "
+          "moved\n300,19.1,\"left out: a, b\"\n" },
         { "T [K],status,alpha [1e-6/K]\n100,ok,11.5\n200,doubtful,16.4\n300,,19.1\n",
           "temperature [K],status,coefficient [1e-6/K]\n100,ok,11.5\n200,left out: specimen had moved; doubtful,16.4\n"
           "300,\"left out: a, b\",19.1\n" },

@@ -135,7 +135,8 @@ START_TEST(quotes_data)
     const struct quote *q = &quotes[_i];
     kel_text text = KEL_TEXT_INIT;
     kel_text_quote(&text, q->bytes, q->n);
-    ck_assert_msg(q->n == 0 || strcmp(text.bytes, q->want) == 0, "%s: got '%s', expected '%s'", q->label, text.bytes, q->want);
+    ck_assert_msg(q->n == 0 || strcmp(text.bytes, q->want) == 0, "%s: got '%s', expected '%s'", q->label, text.bytes,
+                  q->want);
     ck_assert_uint_eq(text.size, strlen(q->want));
     kel_text_free(&text);
 }
@@ -143,7 +144,8 @@ END_TEST
 
 static const struct number { double x; const char *want; } numbers[] = {
     { 0.0, "0" }, { -0.0, "-0" }, { 293.15, "293.15" }, { 1.0 / 3.0, "0.3333333333333333" }, { -8.4e-06, "-8.4e-6" },
-    { DBL_MAX, "1.7976931348623157e308" }, { 5e-324, "5e-324" }, { NAN, "nan" }, { INFINITY, "inf" }, { -INFINITY, "-inf" },
+    { DBL_MAX, "1.7976931348623157e308" }, { 5e-324, "5e-324" }, { NAN, "nan" }, { INFINITY, "inf" }, { -INFINITY,
+      "-inf" },
 };
 
 /* The last two locales have a decimal comma; where they are not installed the C locale is all there is to test. */

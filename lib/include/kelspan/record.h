@@ -136,7 +136,9 @@ typedef struct kel_content {
 typedef struct kel_record kel_record;
 
 /* Checks and copies content into a new record; computes check values and digest. KEL_E_ARGUMENT for content that breaks
-   the rules above (pieces that do not adjoin, non-finite coefficients, step on no transition, ...). Since 0.1. */
+   the rules above (pieces that do not adjoin, non-finite coefficients, step on no transition, ...); the message names the key of
+   kelspan-record(5). Pieces take the coefficients in order and without a rest (first = sum of the counts before); the range lies within
+   the pieces; observations is the number of rows that are not left out (unless thinned) and of the columns' together. Since 0.1. */
 KEL_API kel_status kel_record_build(kel_record **out, const kel_content *content, kel_error *err);
 KEL_API void kel_record_free(kel_record *record);
 

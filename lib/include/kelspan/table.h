@@ -21,7 +21,7 @@ typedef struct kel_observation {
     double u_relative;         /* independent, fraction of the curve's value; 0: none */
     bool u_stated;             /* an independent u is stated for this row */
     size_t column;             /* index into the table's columns */
-    size_t line;               /* in the file */
+    size_t line;               /* in the file; of a transposed table the number of its column, from 1 */
     double printed_lo, printed_hi; /* the temperatures printed in this row, K (equal where one is printed): what --range looks at */
     const char *left_out;      /* reason, or NULL */
 } kel_observation;
@@ -104,12 +104,14 @@ typedef struct kel_table_options {
 KEL_API kel_status kel_table_read(kel_table **out, kel_input input, const char *name, const kel_table_options *options, kel_error *err);
 
 /* A table from arrays that a program holds. Observations' values in SI; column 0 .. column_count - 1 of `columns`. NaN and values
-   that a table would refuse are refused with their index in err->line. Since 0.1. */
+   that a table would refuse are refused with their number, from 1, in err->line. line 0 becomes that number; u_stated is what u says; a printed
+   temperature left at 0 is derived. Strings are copied. Since 0.1. */
 KEL_API kel_status kel_table_from_arrays(kel_table **out, const char *name, const kel_column *columns, size_t column_count,
                                          const kel_observation *observations, size_t n, double reference_temperature, kel_base base, kel_error *err);
 
 /* The table in the product's own layout, units and digits as printed (kelspan-table(5): intervals as from/to, contraction as negative expansion,
-   metadata, marks and left-out rows kept). Read and written again it gives the same bytes. Since 0.1. */
+   metadata, marks and left-out rows kept). Read and written again it gives the same bytes. KEL_E_ARGUMENT for a table from arrays, which was
+   never printed. Since 0.1. */
 KEL_API kel_status kel_table_format(kel_text *out, const kel_table *table, kel_error *err);
 
 KEL_API void kel_table_free(kel_table *table);
