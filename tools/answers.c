@@ -20,6 +20,7 @@ static const char *const u_keys[ANSWERS] = { "coefficient_u_per_K", "mean_coeffi
                                              "length_ratio_u" };
 static const char *const names[ANSWERS] = { "coefficient", "mean coefficient", "expansion", "length ratio" };
 
+/* Without options the answers are in the record's own reference temperature and base. */
 int
 question_begin(const job *j, question *out, const subject *from, const units *in)
 {
@@ -35,6 +36,7 @@ question_begin(const job *j, question *out, const subject *from, const units *in
     return status == EXIT_FINE ? option_base(j, OPT_BASE, &out->base) : status;
 }
 
+/* The mean and the ratio start at the reference temperature of the question, and a mean there is its limit. */
 int
 answers_at(const job *j, answers *out, const question *q, double t)
 {
@@ -49,6 +51,7 @@ answers_at(const job *j, answers *out, const question *q, double t)
     return EXIT_FINE;
 }
 
+/* The reference temperature is part of it: all but the coefficient lean on it. */
 static concern
 concern_of(const answers *a, const question *q)
 {
@@ -62,6 +65,7 @@ answers_reserve(job *j, const answers *a, const question *q)
     return reserve(j, q->from, &about, a->of[q->wanted].flags, NULL, 0);
 }
 
+/* The main quantity has its own flag. */
 static bool
 other_extrapolated(const answers *a, const question *q, int i)
 {
@@ -70,6 +74,7 @@ other_extrapolated(const answers *a, const question *q, int i)
 
 /* --- JSON --- */
 
+/* Keys are fixed; what is not known is null. */
 static void
 json_row(kel_json *json, const answers *a, const question *q)
 {
@@ -105,6 +110,7 @@ json_head(kel_json *json, const question *q)
 
 /* --- CSV: a table of our own grammar, so that it can be read back --- */
 
+/* Metadata only where the record has one table behind it: of several, no one name is right. */
 static void
 csv_setting(kel_text *out, const char *key, const char *value)
 {
@@ -112,6 +118,8 @@ csv_setting(kel_text *out, const char *key, const char *value)
         kel_text_printf(out, "# %s: %s\n", key, value);
 }
 
+/* The reference temperature and base make the table readable again: without them its expansions would mean nothing.
+   */
 static void
 csv_head(kel_text *out, const question *q)
 {
@@ -162,6 +170,7 @@ csv_row(kel_text *out, const answers *a, const question *q, const char *t_text)
 /* Expansions are shown in parts per million, in the form that says so: 1e-6. */
 enum { COLUMNS_WITHOUT_RATIO = 8, PASS_ROWS = 1000 };
 
+/* The headings are put together in one text and point into it; it lives as long as the writer. */
 static int
 text_head(answer_writer *w)
 {
@@ -203,6 +212,7 @@ text_head(answer_writer *w)
     return w->rows != NULL ? EXIT_FINE : fail_memory(w->j);
 }
 
+/* Codes of the main quantity, then the others that lean on the curve outside where it does not itself. */
 static void
 text_notes(kel_text *cell, const answers *a, const question *q)
 {
@@ -256,6 +266,7 @@ text_row(answer_writer *w, const answers *a, const char *t_text)
     }
 }
 
+/* What U covers stands below every table that shows one. */
 static void
 text_end(answer_writer *w)
 {
@@ -275,6 +286,7 @@ pass(answer_writer *w)
     return w->out->pending.failed ? fail_memory(w->j) : sink_pass(w->out) ? EXIT_FINE : sink_end(w->j, w->out);
 }
 
+/* Text needs its headings first, the others stream from the start. */
 int
 answers_begin(answer_writer *w, const job *j, const question *q, sink *out)
 {
@@ -302,6 +314,7 @@ answers_row(answer_writer *w, const answers *a, const char *t_text)
     return pass(w);
 }
 
+/* Warnings come last: working out the rows may have added some. */
 int
 answers_end(answer_writer *w)
 {

@@ -15,6 +15,8 @@ const option_group adopt_options = { "Record", (const option_entry[]){
       "293 K'" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
+/* Reads the file into a record. A record given here is a mix-up of two commands; the reader of coefficients would
+   only say that its first line is no header, so it is refused by name. */
 static int
 adopt(job *j, kel_record **record)
 {
@@ -40,6 +42,7 @@ adopt(job *j, kel_record **record)
     return status;
 }
 
+/* The report for people, the same as that of a fit but for what belongs to observations. */
 static int
 report_text(const job *j, const kel_record *record, const units *in, kel_text *out)
 {
@@ -60,6 +63,8 @@ report_text(const job *j, const kel_record *record, const units *in, kel_text *o
     return status;
 }
 
+/* The record is saved before the report is written: if that fails nothing may stand on stdout. With `-o -` the record
+   itself is what stdout carries, and the report moves to stderr. */
 static int
 deliver(job *j, const kel_record *record, const units *in)
 {
@@ -94,6 +99,7 @@ deliver(job *j, const kel_record *record, const units *in)
     return status;
 }
 
+/* Options are judged before any file is touched. */
 int
 run_adopt(job *j)
 {

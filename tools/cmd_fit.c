@@ -36,6 +36,7 @@ typedef struct work {
     units in;
 } work;
 
+/* One set of reading options serves all tables; those that name a file (--leave-out) find theirs by its name. */
 static int
 read_tables(job *j, work *w)
 {
@@ -51,6 +52,7 @@ read_tables(job *j, work *w)
     return status;
 }
 
+/* An error belongs to the one table there is, or to all of them: then no file is named, the message says which. */
 static int
 fit(job *j, work *w)
 {
@@ -68,6 +70,7 @@ fit(job *j, work *w)
     return warn_all(j, name, w->report->warnings, w->report->warning_count);
 }
 
+/* First what was read, then what was made of it: a fit is judged by its input as much as by its residuals. */
 static int
 text_report(const job *j, const work *w, kel_text *out)
 {
@@ -99,6 +102,7 @@ text_report(const job *j, const work *w, kel_text *out)
     return status;
 }
 
+/* Everything of the record that scripts rely on, then what only the fit itself knows. */
 static void
 json_report(const job *j, const work *w, kel_text *out)
 {
@@ -145,6 +149,7 @@ deliver(job *j, const work *w)
     return status;
 }
 
+/* Settings first: wrong usage is found before a large table is read. */
 int
 run_fit(job *j)
 {

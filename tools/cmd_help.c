@@ -37,6 +37,7 @@ add_wrapped(kel_text *out, const char *words, size_t indent, size_t column)
     kel_text_add(out, "\n");
 }
 
+/* The name and its argument on one line, what it does below: the longest names leave no room beside them. */
 static void
 add_group(kel_text *out, const option_group *g)
 {
@@ -54,6 +55,7 @@ add_group(kel_text *out, const option_group *g)
     }
 }
 
+/* Takes the text over. */
 static int
 deliver(const job *j, kel_text *text)
 {
@@ -64,6 +66,7 @@ deliver(const job *j, kel_text *text)
     return sink_end(j, &s);
 }
 
+/* The groups come in the order of the command table: what is particular first, what all share last. */
 int
 help_of(const job *j, const command *c)
 {
@@ -76,6 +79,7 @@ help_of(const job *j, const command *c)
     return deliver(j, &text);
 }
 
+/* The list of commands, and what a beginner stumbles over first: units. */
 int
 help_all(const job *j)
 {
@@ -121,6 +125,7 @@ help_json(const job *j)
     return deliver(j, &text);
 }
 
+/* An unknown command here is wrong usage like anywhere else. */
 int
 run_help(job *j)
 {

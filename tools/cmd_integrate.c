@@ -19,6 +19,7 @@ const option_group integrate_options = { "Interval", (const option_entry[]){
 
 static const char *const keys[QUANTITIES] = { "integral", "length_ratio", "mean_coefficient_per_K", "change_m" };
 
+/* The text answers in the unit of --from, each end in its own. */
 static int
 read_interval(const job *j, interval *v, units *in)
 {
@@ -49,6 +50,8 @@ read_interval(const job *j, interval *v, units *in)
     return status;
 }
 
+/* All in the reference temperature and base of the record: an integral does not depend on them, and a change of a
+   real length must not. */
 static int
 answer(const job *j, const subject *s, kel_answer *out, kel_quantity quantity, double from, double to, double at)
 {
@@ -57,6 +60,8 @@ answer(const job *j, const subject *s, kel_answer *out, kel_quantity quantity, d
     return kel_record_answer(out, s->record, &q, &err) < 0 ? fail(j, s->name, &err) : EXIT_FINE;
 }
 
+/* The lengths at both ends are ratios times the given one, in one step: going by way of the integral would round
+   twice. */
 static int
 answer_all(const job *j, const subject *s, interval *v)
 {
@@ -81,6 +86,7 @@ interval_other_extrapolated(const interval *v, int i)
 
 /* --- JSON --- */
 
+/* Without a length its keys are there and null, so that a script finds them. */
 static void
 json_result(const job *j, const subject *s, const interval *v, kel_text *out)
 {
@@ -122,6 +128,7 @@ json_result(const job *j, const subject *s, const interval *v, kel_text *out)
     kel_json_end(&json);
 }
 
+/* Reservations first: with --within-range they end the run before anything is written. */
 static int
 one_interval(job *j, const subject *s, interval *v, const units *in)
 {
@@ -141,6 +148,8 @@ one_interval(job *j, const subject *s, interval *v, const units *in)
     return status == EXIT_FINE ? finish(j) : status;
 }
 
+/* A stream of pairs has its own layout and brings temperatures and lengths with it, so the options of one interval
+   are refused beside it. */
 int
 run_integrate(job *j)
 {

@@ -15,6 +15,7 @@ const option_group read_options = { "Output of tables", (const option_entry[]){
     { OPT_OUTPUT, 'o', "output", "FILE", false, "write that into a file instead of stdout" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
+/* Only the columns that would be fitted; what stands beside them is checked against them by the library. */
 static void
 json_columns(kel_json *json, const kel_table *t)
 {
@@ -32,6 +33,8 @@ json_columns(kel_json *json, const kel_table *t)
     kel_json_end(json);
 }
 
+/* `left_out` counts rows, as the table does; the list has one entry for each value, since a row may lose one of its
+   values and keep the others. */
 static void
 json_left_out(kel_json *json, const kel_table *t)
 {
@@ -50,6 +53,7 @@ json_left_out(kel_json *json, const kel_table *t)
     kel_json_end(json);
 }
 
+/* A range that does not exist (no value is fitted) is null. */
 static void
 json_interval(kel_json *json, const char *key, kel_interval v)
 {
@@ -60,6 +64,7 @@ json_interval(kel_json *json, const char *key, kel_interval v)
         kel_json_numbers(json, key, ends, 2);
 }
 
+/* One table as understood. */
 static void
 json_table(kel_json *json, const kel_table *t)
 {
@@ -111,6 +116,7 @@ json_table(kel_json *json, const kel_table *t)
     kel_json_end(json);
 }
 
+/* Several tables are one result: its JSON is one object. */
 static int
 report(job *j, kel_table *const *tables, size_t n, const units *in)
 {
@@ -136,6 +142,7 @@ report(job *j, kel_table *const *tables, size_t n, const units *in)
     return sink_end(j, &out);
 }
 
+/* Into a file by way of the library, which replaces it only when the bytes are complete. */
 static int
 write_table(const job *j, const kel_table *table)
 {
@@ -155,6 +162,7 @@ write_table(const job *j, const kel_table *table)
     return status < 0 ? fail(j, path, &err) : EXIT_FINE;
 }
 
+/* All wrong usages are found before a table is read. */
 int
 run_read(job *j)
 {

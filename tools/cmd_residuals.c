@@ -9,6 +9,7 @@
 #include <string.h>
 #include <unistd.h>
 
+/* A coefficient has one temperature, and so has a mean at its own reference, which is one. */
 static void
 json_row(kel_json *json, const kel_content *c, const kel_fitted *f)
 {
@@ -31,6 +32,7 @@ json_row(kel_json *json, const kel_content *c, const kel_fitted *f)
     kel_json_end(json);
 }
 
+/* Rows pass through the sink one by one. */
 static void
 json_result(const job *j, const subject *s, sink *out)
 {
@@ -65,6 +67,7 @@ csv_words(kel_text *out, const char *words)
     kel_text_add(out, "\"");
 }
 
+/* Empty where a number is not known. */
 static void
 csv_number(kel_text *out, double x)
 {
@@ -73,6 +76,7 @@ csv_number(kel_text *out, double x)
     kel_text_add(out, ",");
 }
 
+/* One layout for all kinds: from = to for coefficients, the unit stands in each row. */
 static void
 csv_result(const subject *s, const units *in, sink *out)
 {
@@ -96,6 +100,7 @@ csv_result(const subject *s, const units *in, sink *out)
     }
 }
 
+/* The table of the report, with the rows that were left out. */
 static void
 text_result(const subject *s, const units *in, sink *out)
 {
@@ -108,6 +113,7 @@ text_result(const subject *s, const units *in, sink *out)
     text_residuals(text, c, in, false);
 }
 
+/* Adopted coefficients have no observations. An empty list would look like a perfect fit, so that is an error. */
 int
 run_residuals(job *j)
 {

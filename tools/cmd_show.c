@@ -30,6 +30,7 @@ powers_of(job *j, const subject *s, size_t piece, double centre, double scale, d
 
 /* --- JSON --- */
 
+/* Of a mode: one list for each piece, one step for each transition. */
 static void
 json_curve(kel_json *json, const kel_content *c, const kel_curve *curve)
 {
@@ -40,6 +41,7 @@ json_curve(kel_json *json, const kel_content *c, const kel_curve *curve)
     kel_json_numbers(json, "steps", curve->steps, c->transition_count);
 }
 
+/* Always in kelvin, whatever --temperature-unit says: the unit is in the key. */
 static int
 json_pieces(job *j, kel_json *json, const subject *s)
 {
@@ -66,6 +68,7 @@ json_pieces(job *j, kel_json *json, const subject *s)
     return status;
 }
 
+/* Where the numbers came from, with the digest by which a file can be recognised. */
 static void
 json_sources(kel_json *json, const kel_content *c)
 {
@@ -86,6 +89,7 @@ json_sources(kel_json *json, const kel_content *c)
     kel_json_end(json);
 }
 
+/* All of the curve, so that another program could evaluate it. */
 static int
 json_result(job *j, const subject *s, kel_text *out)
 {
@@ -147,6 +151,7 @@ unit_frame(const kel_unit *unit, double *centre, double *scale)
     *scale = kel_unit_to_si(&degree, 1);
 }
 
+/* Fifteen digits: fewer would change the curve, more would show the noise of the conversion. --csv has all. */
 static int
 text_powers(job *j, kel_text *out, const subject *s, const units *in)
 {
@@ -182,6 +187,7 @@ text_powers(job *j, kel_text *out, const subject *s, const units *in)
     return status;
 }
 
+/* The same summary as that of a fit, made from the record alone. */
 static int
 text_result(job *j, const subject *s, const units *in, kel_text *out)
 {
@@ -207,6 +213,7 @@ text_result(job *j, const subject *s, const units *in, kel_text *out)
     return status;
 }
 
+/* --csv is a layout of powers only; a record as a whole has no table. */
 int
 run_show(job *j)
 {

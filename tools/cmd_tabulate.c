@@ -26,6 +26,8 @@ typedef struct grid {
     bool meets_end;
 } grid;
 
+/* A step that divides the interval but for rounding counts as dividing it: 1e-9 of a step is far above the rounding
+   of any sum of decimals, and far below what anyone means. */
 static int
 read_grid(const job *j, grid *g, units *in)
 {

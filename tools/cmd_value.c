@@ -37,6 +37,8 @@ read_temperatures(job *j, double **out, size_t *n, units *in)
     return EXIT_FINE;
 }
 
+/* All answers are worked out before the first is written: a refusal by --within-range at the last temperature leaves
+   stdout empty. */
 static int
 answer_all(job *j, const question *q, const double *t, size_t n)
 {
@@ -64,6 +66,7 @@ answer_all(job *j, const question *q, const double *t, size_t n)
     return status == EXIT_FINE ? finish(j) : status;
 }
 
+/* Temperatures are read before the record, so that a missing unit is said even of a large table. */
 int
 run_value(job *j)
 {

@@ -95,6 +95,7 @@ columns_add_text(columns *c, kel_text *text)
     kel_text_clear(text);
 }
 
+/* Blanks only: a tabulator would depend on the terminal. */
 static void
 pad(kel_text *out, size_t n)
 {
@@ -102,6 +103,7 @@ pad(kel_text *out, size_t n)
         kel_text_add(out, " ");
 }
 
+/* First or second line of a heading; returns its length. */
 static size_t
 line_of(const char *heading, int line, const char **start)
 {
@@ -132,6 +134,7 @@ end_line(kel_text *out, size_t line_start)
     kel_text_add(out, "\n");
 }
 
+/* Above numbers a heading stands at the right, above words at the left. */
 static void
 add_headings(const columns *c, kel_text *out, const char *indent)
 {
@@ -154,6 +157,7 @@ add_headings(const columns *c, kel_text *out, const char *indent)
     }
 }
 
+/* Headings come with the first rows, when their widths are known. */
 void
 columns_flush(columns *c, kel_text *out, const char *indent)
 {

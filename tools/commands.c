@@ -12,7 +12,8 @@ const command commands[] = {
     { "read", "say what was understood of tables before anyone fits them", "TABLE...",
       "Reads tables of thermal expansion and prints their kinds, units, reference temperature, base, range, gaps, "
       "the rows left out and why, and what is known of their uncertainty. With --as csv a table is written in the "
-      "product's own layout, in the units and digits printed.", run_read, GROUPS(&read_options, &temperature_unit_group, &table_group, &output_group) },
+      "product's own layout, in the units and digits printed.", run_read,
+      GROUPS(&read_options, &temperature_unit_group, &table_group, &output_group) },
     { "fit", "fit alpha(T) to tables and save the coefficients in a record", "TABLE...",
       "Fits one curve alpha(T) to all values of all tables by weighted least squares: coefficients, mean "
       "coefficients and expansions each as what they are. Prints a report; with -o the record is saved, from which "
@@ -80,6 +81,7 @@ distance(const char *a, const char *b)
     return row[m];
 }
 
+/* A name is near if three or fewer letters differ, or if it begins as the other does. */
 const command *
 command_near(const char *name)
 {

@@ -21,6 +21,8 @@ struct file {
     char buffer[BUFFER];
 };
 
+/* O_CLOEXEC is for the sake of anything that might ever be started from here; stdin is used as it is and left open.
+   */
 int
 file_open(const job *j, file **out, const char *name)
 {
@@ -47,6 +49,7 @@ file_close(file *f)
     free(f);
 }
 
+/* read(2) again if a signal came between. */
 static ssize_t
 read_some(int fd, char *bytes, size_t n)
 {
@@ -57,6 +60,7 @@ read_some(int fd, char *bytes, size_t n)
     return k;
 }
 
+/* The library's way of reading: first what was looked at ahead, then the file itself. */
 static long
 take(void *context, char *bytes, size_t n)
 {
@@ -80,6 +84,8 @@ file_input(file *f)
     return (kel_input){ take, f };
 }
 
+/* Looks as far as it must, at most a buffer: a file that opens with 64 KiB of blanks is left to the reader of tables.
+   A byte order mark counts as blank here; the parser that gets the bytes afterwards judges it. */
 bool
 file_is_record(file *f)
 {
@@ -100,6 +106,7 @@ file_is_record(file *f)
     }
 }
 
+/* The limit is that of a record; whoever pipes something endless here gets an error, not a full memory. */
 int
 file_read_all(const job *j, kel_text *out, file *f, const char *name, size_t limit)
 {
@@ -121,6 +128,8 @@ file_read_all(const job *j, kel_text *out, file *f, const char *name, size_t lim
     return status;
 }
 
+/* Compared by device and inode, so that another spelling, a symbolic or a hard link is recognised. A device is never
+   replaced by what is written to it, so it may be both. */
 int
 output_is_no_input(const job *j, const char *output, const char *const *inputs, size_t n)
 {
@@ -141,6 +150,7 @@ sink_begin(sink *s, int fd)
     *s = (sink){ fd, KEL_TEXT_INIT, 0 };
 }
 
+/* After an error nothing more is tried; sink_end says it once. */
 void
 sink_pour(sink *s)
 {
@@ -166,6 +176,7 @@ sink_pass(sink *s)
     return s->error == 0 && !s->pending.failed;
 }
 
+/* Without the terminal in between there is no buffer left to flush: what write(2) took is out. */
 int
 sink_end(const job *j, sink *s)
 {

@@ -6,6 +6,7 @@
 
 #include <string.h>
 
+/* An upper bound for the items of a list. */
 static size_t
 items(const char *list)
 {
@@ -15,6 +16,7 @@ items(const char *list)
     return n;
 }
 
+/* Whole decimal numbers and nothing else: strtol would take blanks, signs and 0x. */
 static int
 read_degrees(job *j, kel_fit_options *o)
 {
@@ -40,6 +42,7 @@ read_degrees(job *j, kel_fit_options *o)
     return EXIT_FINE;
 }
 
+/* The library sorts them and judges whether they lie inside the data. */
 static int
 read_joins(job *j, kel_fit_options *o)
 {
@@ -62,6 +65,8 @@ read_joins(job *j, kel_fit_options *o)
     return EXIT_FINE;
 }
 
+/* One for all joins or one for each. What belongs to declared transitions is not listed here: they always part the
+   curve. */
 static int
 read_continuity(job *j, kel_fit_options *o)
 {
@@ -86,6 +91,7 @@ read_continuity(job *j, kel_fit_options *o)
     return EXIT_FINE;
 }
 
+/* Only what contradicts itself is refused here; whether pieces are possible depends on the tables. */
 static int
 read_form(const job *j, kel_fit_options *o)
 {
@@ -103,6 +109,7 @@ read_form(const job *j, kel_fit_options *o)
     return EXIT_FINE;
 }
 
+/* The colon parts the ends, since a blank would need quoting and a minus sign may begin a temperature. */
 static int
 read_range(job *j, kel_fit_options *o)
 {
@@ -123,6 +130,7 @@ read_range(job *j, kel_fit_options *o)
     return status;
 }
 
+/* In the order in which a reader of the command line meets them, so that the first error said is the first made. */
 int
 fit_settings_read(job *j, fit_settings *out)
 {

@@ -14,6 +14,8 @@ add_label(kel_text *out, const char *label)
     kel_text_printf(out, "%-18s", label);
 }
 
+/* The length that was given stands as it was given; the other has digits by its own U, or where that is not known
+   some below those of the change. */
 static void
 add_length(kel_text *out, const units *in, const interval *v, double ratio, double u, double t, const kel_unit *unit)
 {
@@ -33,6 +35,7 @@ add_length(kel_text *out, const units *in, const interval *v, double ratio, doub
     kel_text_add(out, "\n");
 }
 
+/* Shares of u squared, since that is what adds up. A single part needs none. */
 static void
 add_shares(kel_text *out, const subject *s, const kel_answer *a)
 {
@@ -78,6 +81,7 @@ add_factor(kel_text *out, const subject *s, const kel_answer *a)
     kel_text_add(out, ")\n");
 }
 
+/* Each transition inside the interval, with its step: a reader should know what the number holds. */
 static void
 add_transitions(kel_text *out, const subject *s, const interval *v, const units *in)
 {
@@ -99,6 +103,7 @@ add_transitions(kel_text *out, const subject *s, const interval *v, const units 
     }
 }
 
+/* Own words, short, and only where the temperature calls for it: a caution under every answer is read under none. */
 static void
 add_cautions(kel_text *out, const interval *v)
 {

@@ -23,6 +23,7 @@ fill_streams(void)
     return true;
 }
 
+/* Version and licences; the library that runs may be newer than the one it was built with. */
 static int
 print_version(const job *j)
 {
@@ -32,6 +33,7 @@ print_version(const job *j)
     return sink_end(j, &s);
 }
 
+/* The name may hold anything, so it is quoted. */
 static int
 unknown_command(const job *j, const char *name)
 {
@@ -45,6 +47,7 @@ unknown_command(const job *j, const char *name)
     return status;
 }
 
+/* Help wins over everything else on the line that was understood. */
 static int
 run_command(job *j, int argc, char **argv)
 {

@@ -25,6 +25,8 @@ say_line(const char *bytes, size_t n)
     }
 }
 
+/* Appends the line end, says the line and frees it. Where memory ran out while it was put together, that is said
+   instead. */
 static void
 say_text(kel_text *line)
 {
@@ -45,6 +47,7 @@ add_file_name(kel_text *text, const char *file)
         kel_text_quote(text, file, strlen(file));
 }
 
+/* "FILE:LINE:COLUMN: ", as far as they are known, in the form that editors understand. */
 static void
 add_place(kel_text *text, const char *file, size_t line, size_t column)
 {
@@ -60,6 +63,7 @@ add_place(kel_text *text, const char *file, size_t line, size_t column)
         kel_text_add(text, " ");
 }
 
+/* Lines and columns count from 1; 0 stands for none. */
 static void
 json_place(kel_json *json, const char *key, size_t n)
 {
@@ -69,6 +73,7 @@ json_place(kel_json *json, const char *key, size_t n)
         kel_json_count(json, key, n);
 }
 
+/* The one place where an error leaves the program. */
 static void
 say_error(const job *j, const char *file, size_t line, size_t column, const char *message)
 {
@@ -95,6 +100,7 @@ say_error(const job *j, const char *file, size_t line, size_t column, const char
     kel_text_free(&text);
 }
 
+/* The library's message is kept; a status without one gets its short name. */
 int
 fail(const job *j, const char *file, const kel_error *err)
 {
@@ -121,6 +127,7 @@ fail_memory(const job *j)
     return fail_text(j, NULL, "out of memory");
 }
 
+/* Says where help is in the same line, so that it is one line as every error. */
 int
 usage(const job *j, const char *format, ...)
 {
@@ -142,6 +149,7 @@ same(const char *a, const char *b)
     return a == b || (a != NULL && b != NULL && strcmp(a, b) == 0);
 }
 
+/* Equal warnings of one file become one with a count; their first place is kept. */
 int
 warn(job *j, const char *code, const char *file, size_t line, size_t count, const char *text)
 {
@@ -165,6 +173,7 @@ warn(job *j, const char *code, const char *file, size_t line, size_t count, cons
     return EXIT_FINE;
 }
 
+/* Those that the library counted already. */
 int
 warn_all(job *j, const char *file, const kel_warning *warnings, size_t n)
 {
@@ -202,6 +211,7 @@ say_warnings(const job *j)
     }
 }
 
+/* All of them, not one for each kind: a program can sort for itself. */
 void
 json_warnings(const job *j, kel_json *json)
 {

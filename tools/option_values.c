@@ -57,6 +57,7 @@ const option_group table_group = { "Reading tables", (const option_entry[]){
     { OPT_GAP, 0, "gap", "D", false, "a stretch without observations longer than this difference is a gap" },
     { 0, 0, NULL, NULL, false, NULL } } };
 
+/* A quantity that cannot be read is wrong usage, not a failure: the library's own words say why. */
 int
 read_quantity(const job *j, const char *reading, kel_dimension dimension, const char *text, double *out, kel_unit *unit)
 {
@@ -66,6 +67,7 @@ read_quantity(const job *j, const char *reading, kel_dimension dimension, const 
     return EXIT_FINE;
 }
 
+/* "--from" for messages. name has room for the longest of our options. */
 static const char *
 option_name(const job *j, int id, char name[32])
 {
@@ -95,6 +97,7 @@ option_unit(const job *j, int id, kel_dimension dimension, kel_unit *out)
     return EXIT_FINE;
 }
 
+/* The base in the short words of the option, or as files spell it. */
 int
 option_base(const job *j, int id, int *out)
 {
@@ -110,6 +113,7 @@ option_base(const job *j, int id, int *out)
     return EXIT_FINE;
 }
 
+/* An empty item, as behind a trailing comma, is handed over like any other: whoever reads it refuses it. */
 bool
 next_item(const char **rest, const char **item, size_t *n)
 {
@@ -137,6 +141,7 @@ read_delimiter(const job *j, kel_delimiter *out)
     return text == NULL ? EXIT_FINE : usage(j, "--delimiter is comma, semicolon, tab or blanks, not %s", text);
 }
 
+/* The kind is given in the short words of the option or as files spell it. */
 static int
 read_kind(const job *j, kel_kind_choice *out)
 {
@@ -153,6 +158,7 @@ read_kind(const job *j, kel_kind_choice *out)
     return text == NULL ? EXIT_FINE : usage(j, "--kind is coefficient, mean, expansion or all, not %s", text);
 }
 
+/* Lines count from 1; "none" becomes the 0 that the reader of tables expects. */
 static int
 read_header(const job *j, long *out)
 {
@@ -172,6 +178,7 @@ read_header(const job *j, long *out)
     return EXIT_FINE;
 }
 
+/* All that says how a table is to be read. The lists belong to the job. */
 int
 table_options(job *j, kel_table_options *out)
 {

@@ -18,6 +18,7 @@ set_unit(kel_unit *unit, kel_dimension dimension, const char *name)
         *unit = (kel_unit){ .dimension = dimension, .numerator = 1, .denominator = 1 };
 }
 
+/* CSV is for machines: SI unless asked otherwise. */
 int
 units_begin(const job *j, units *out)
 {
@@ -37,6 +38,7 @@ units_begin(const job *j, units *out)
     return status;
 }
 
+/* Someone who asks in degF thinks in coefficients per degF. */
 void
 units_follow(units *u, const kel_unit *asked)
 {
@@ -48,6 +50,8 @@ units_follow(units *u, const kel_unit *asked)
     set_unit(&u->coefficient, KEL_DIM_PER_KELVIN, fahrenheit ? "1e-6/degF" : "1e-6/K");
 }
 
+/* A change is a thousandth of its length or less: in the unit of the length it would be all zeros. Units that are a
+   power of ten of the metre are metric, the others go by the inch. */
 kel_unit
 change_unit(const units *u, double change)
 {
@@ -86,6 +90,7 @@ decimals_of(double x, int digits)
     return digits - 1 - e;
 }
 
+/* Where U is tiny the value would show digits that no double has: at most 12. */
 int
 decimals_for(double value, double U)
 {
@@ -117,6 +122,7 @@ add_rounded(kel_text *out, double x, int decimals)
     kel_text_add(out, digits[0] == '-' && strspn(digits + 1, "0.") == strlen(digits + 1) ? digits + 1 : digits);
 }
 
+/* Trailing zeros go, but those of a whole number stay. */
 void
 add_digits(kel_text *out, double x, int digits)
 {
@@ -138,6 +144,7 @@ add_digits(kel_text *out, double x, int digits)
     kel_text_add(out, bytes);
 }
 
+/* At the decimals of its value, or by itself where it would vanish there. */
 void
 add_uncertainty(kel_text *out, double U, int decimals)
 {
@@ -152,6 +159,7 @@ add_uncertainty(kel_text *out, double U, int decimals)
     }
 }
 
+/* A tenth of a millikelvin is finer than any thermometer here. */
 void
 add_temperature_number(kel_text *out, const kel_unit *unit, double kelvin)
 {
@@ -183,6 +191,7 @@ add_difference(kel_text *out, const kel_unit *unit, double kelvin)
     kel_text_printf(out, " %s", strcmp(unit->name, "degC") == 0 ? "K" : unit->name);
 }
 
+/* "16.2e-6/K" reads better than "16.2 1e-6/K" and is still what the parser of units takes. */
 void
 add_unit(kel_text *out, const char *name)
 {
@@ -207,6 +216,7 @@ add_measured(kel_text *out, const kel_unit *unit, double value, double u)
     }
 }
 
+/* What U does not cover is as important: unknown scatter is said. */
 void
 add_covers(kel_text *out, const kel_content *c)
 {
@@ -232,6 +242,7 @@ add_covers(kel_text *out, const kel_content *c)
         kel_text_add(out, "; the scatter is not known and not in it");
 }
 
+/* From 30 degrees of freedom on the factor is below 2.05, and k = 2 serves. */
 bool
 student_applies(const kel_content *c)
 {

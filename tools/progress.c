@@ -14,6 +14,7 @@ seconds(const struct timespec *from, const struct timespec *to)
     return (double)(to->tv_sec - from->tv_sec) + 1e-9 * (double)(to->tv_nsec - from->tv_nsec);
 }
 
+/* Costs a system call, so it is asked once. */
 void
 progress_begin(progress *p, const job *j, const char *work)
 {
@@ -79,6 +80,7 @@ progress_share(void *context, double share)
     kel_text_free(&line);
 }
 
+/* The line must be gone before a message is written. */
 void
 progress_end(progress *p)
 {

@@ -2,6 +2,7 @@
 /* What is said of a fit or of adopted coefficients, for programs: SI, all digits, null where not known. */
 #include "report.h"
 
+/* u^2 is the sum of squares of the step in the modes, as for any answer. */
 double
 step_u(const kel_content *c, size_t transition)
 {
@@ -13,6 +14,8 @@ step_u(const kel_content *c, size_t transition)
     return sqrt(sum);
 }
 
+/* One number where the pieces agree, which is what scripts mostly want; a list in the order of temperature where not.
+   */
 static void
 json_degree(kel_json *json, const kel_content *c)
 {
@@ -29,6 +32,7 @@ json_degree(kel_json *json, const kel_content *c)
     kel_json_end(json);
 }
 
+/* One object for each value column that was fitted. */
 static void
 json_columns(kel_json *json, const kel_content *c)
 {
@@ -50,6 +54,7 @@ json_columns(kel_json *json, const kel_content *c)
     kel_json_end(json);
 }
 
+/* A stated step has no uncertainty of its own: null, not 0. */
 static void
 json_transitions(kel_json *json, const kel_content *c)
 {
@@ -67,6 +72,7 @@ json_transitions(kel_json *json, const kel_content *c)
     kel_json_end(json);
 }
 
+/* Keys in the order of the manual page. Integers are written as integers; what is not known is null. */
 void
 json_summary(kel_json *json, const kel_content *c)
 {
@@ -112,6 +118,7 @@ json_summary(kel_json *json, const kel_content *c)
     kel_json_string(json, "digest", c->digest);
 }
 
+/* chi2 exists only where an independent u was stated; its ratio to nu is null with it. */
 void
 json_fit_report(kel_json *json, const kel_content *c, const kel_fit_report *r)
 {

@@ -4,6 +4,7 @@
 
 #include "messages.h"
 
+/* A degree that could not be compared says why in the place of its criterion. */
 void
 text_candidates(kel_text *out, const kel_content *c, const kel_fit_report *r, const units *in)
 {
@@ -48,6 +49,7 @@ text_candidates(kel_text *out, const kel_content *c, const kel_fit_report *r, co
     kel_text_free(&heading);
 }
 
+/* A mean over no interval is a coefficient and is shown as one. */
 void
 add_row_temperatures(kel_text *out, const kel_unit *unit, const kel_fitted *row)
 {
@@ -58,6 +60,7 @@ add_row_temperatures(kel_text *out, const kel_unit *unit, const kel_fitted *row)
     add_temperature_number(out, unit, row->to);
 }
 
+/* Numbers of one row have the same decimals, so that observed less fitted can be checked by eye. */
 static void
 residual_cells(columns *table, kel_text *cell, const kel_content *c, const kel_fitted *f, const units *in, bool sources,
                bool shared, bool largest)
@@ -110,6 +113,8 @@ largest_residual(const kel_content *c)
     return found;
 }
 
+/* The unit stands in the heading where all rows share one. The column of shared terms appears only if there are any.
+   */
 void
 text_residuals(kel_text *out, const kel_content *c, const units *in, bool fitted)
 {

@@ -6,6 +6,7 @@
 
 #include <string.h>
 
+/* Counts the values that will be fitted, not the rows: a row may lack one. */
 static void
 text_columns(kel_text *out, const kel_table *t)
 {
@@ -59,6 +60,8 @@ text_left_out(kel_text *out, const kel_table *t)
     }
 }
 
+/* What is independent from row to row weighs the rows; what is shared or between lots does not. The line keeps them
+   apart. */
 static void
 text_stated(kel_text *out, const kel_table *t)
 {
@@ -83,6 +86,8 @@ text_stated(kel_text *out, const kel_table *t)
     kel_text_add(out, "\n");
 }
 
+/* Lines that would say nothing are not printed, but those on which a fit depends (reference, base, uncertainty)
+   always are. */
 void
 text_table(kel_text *out, const kel_table *t, const units *in)
 {

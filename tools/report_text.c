@@ -7,6 +7,7 @@
 
 #include <string.h>
 
+/* Expansions are shown in parts per million, in the form that says so: 1e-6. */
 double
 show_value(const units *in, kel_kind kind, double si)
 {
@@ -19,6 +20,7 @@ show_unit(const units *in, kel_kind kind)
     return kind == KEL_KIND_EXPANSION ? "1e-6" : in->coefficient.name;
 }
 
+/* Labels have one width, so that the report can be read down its right side. */
 void
 add_label(kel_text *out, const char *label)
 {
@@ -33,6 +35,7 @@ add_interval(kel_text *out, const kel_unit *unit, double lo, double hi)
     add_temperature(out, unit, hi);
 }
 
+/* Data from files may hold anything; on a terminal it must be harmless. */
 void
 add_quoted(kel_text *out, const char *before, const char *text)
 {
@@ -42,6 +45,7 @@ add_quoted(kel_text *out, const char *before, const char *text)
     }
 }
 
+/* An SI value of a kind, in the unit of that kind. */
 static void
 add_shown(kel_text *out, const units *in, kel_kind kind, double si, int digits)
 {
@@ -53,6 +57,7 @@ add_shown(kel_text *out, const units *in, kel_kind kind, double si, int digits)
     add_unit(out, show_unit(in, kind));
 }
 
+/* The degree is that of alpha. Pieces get a line each, with how they join the one before. */
 static void
 text_form(kel_text *out, const kel_content *c, const kel_fit_report *r, const units *in)
 {
@@ -91,6 +96,8 @@ text_form(kel_text *out, const kel_content *c, const kel_fit_report *r, const un
     }
 }
 
+/* How well the curve meets its observations. A residual standard deviation far above the resolution that stands
+   beside it is scatter; one below it is rounding. */
 static void
 text_quality(kel_text *out, const kel_content *c, const kel_fit_report *r, const units *in)
 {
@@ -139,6 +146,7 @@ text_quality(kel_text *out, const kel_content *c, const kel_fit_report *r, const
     }
 }
 
+/* A fitted step comes with its U, a stated one is taken as it is. */
 static void
 text_transitions(kel_text *out, const kel_content *c, const units *in)
 {
@@ -164,6 +172,7 @@ text_transitions(kel_text *out, const kel_content *c, const units *in)
     }
 }
 
+/* The lines that fit, adopt and show have in common. */
 void
 text_summary(kel_text *out, const kel_content *c, const kel_fit_report *r, const units *in)
 {
@@ -200,6 +209,7 @@ text_summary(kel_text *out, const kel_content *c, const kel_fit_report *r, const
     }
 }
 
+/* At the ends and in the middle of the range: ends carried by little data show as a large U. */
 int
 text_answers(const job *j, kel_text *out, const kel_record *record, const units *in)
 {

@@ -19,6 +19,8 @@ static const struct { unsigned flag; const char *code; bool raises; } codes[] = 
 
 enum { CODES = sizeof codes / sizeof codes[0] };
 
+/* --accept may be repeated, and each may be a list. An unknown code is refused: a slip in a script would otherwise
+   accept nothing without a word. */
 int
 reservations_begin(job *j)
 {
@@ -52,6 +54,7 @@ reservation_code(unsigned flag)
     return "";
 }
 
+/* In the order of the table, which is from grave to light. */
 void
 add_codes(kel_text *out, unsigned flags, const char *between)
 {
@@ -64,6 +67,7 @@ add_codes(kel_text *out, unsigned flags, const char *between)
         }
 }
 
+/* The limit with its units and whose it is. */
 static void
 add_range(kel_text *out, const subject *s, const concern *about)
 {
@@ -74,6 +78,7 @@ add_range(kel_text *out, const subject *s, const concern *about)
     add_file_name(out, s->name);
 }
 
+/* "T = 20 K", or "20 K to 77 K". */
 static void
 add_concern(kel_text *out, const concern *about)
 {
@@ -86,6 +91,8 @@ add_concern(kel_text *out, const concern *about)
     }
 }
 
+/* Names what lies outside: the question itself, the temperature of the length, or else the reference temperature, on
+   which the answer leans without being asked about it. */
 static void
 add_extrapolated(kel_text *out, const subject *s, const concern *about)
 {
@@ -108,6 +115,7 @@ add_extrapolated(kel_text *out, const subject *s, const concern *about)
     add_range(out, s, about);
 }
 
+/* If no end lies inside one, the answer leans on it through the reference temperature. */
 static void
 add_gap(kel_text *out, const subject *s, const concern *about)
 {
@@ -129,6 +137,7 @@ add_gap(kel_text *out, const subject *s, const concern *about)
     add_file_name(out, s->name);
 }
 
+/* The same rule as the integral: a step at T is crossed by lo < T <= hi. */
 static void
 add_transition(kel_text *out, const subject *s, const concern *about)
 {
@@ -174,6 +183,8 @@ add_reservation_text(kel_text *out, const subject *s, const concern *about, unsi
     }
 }
 
+/* One note for each code: its words are those of the first answer, later ones only count. So a million rows cost
+   nothing. */
 static int
 keep(job *j, const subject *s, const concern *about, unsigned flag, const char *input, size_t place)
 {
@@ -198,6 +209,7 @@ keep(job *j, const subject *s, const concern *about, unsigned flag, const char *
     return EXIT_FINE;
 }
 
+/* The refusal of --within-range comes first: an answer that is refused leaves no note. */
 int
 reserve(job *j, const subject *s, const concern *about, unsigned flags, const char *input, size_t place)
 {
@@ -226,6 +238,7 @@ json_one(kel_json *json, const char *code, const char *text)
     kel_json_end(json);
 }
 
+/* The words are made anew for each row, since they name its temperature. */
 void
 json_reservations_of(kel_json *json, const subject *s, const concern *about, unsigned flags)
 {
@@ -252,6 +265,7 @@ json_reservations(const job *j, kel_json *json)
     kel_json_end(json);
 }
 
+/* The last thing a command does, after its answer is out: only now is it known that there is one. */
 int
 finish(const job *j)
 {

@@ -9,6 +9,7 @@
 
 enum { LARGEST_RECORD = 16 << 20 };
 
+/* A file is open only while it is read. */
 int
 table_open(job *j, kel_table **out, const char *name, const kel_table_options *options)
 {
@@ -64,6 +65,7 @@ fit_table(job *j, subject *out, file *f)
     return status;
 }
 
+/* Says what the defaults made of it, so that nobody takes the answer for that of an approved record. */
 static int
 say_fitted(job *j, const subject *s)
 {
@@ -78,6 +80,7 @@ say_fitted(job *j, const subject *s)
     return status;
 }
 
+/* The first byte decides. On failure nothing is left to close. */
 int
 subject_open(job *j, subject *out, const char *name)
 {

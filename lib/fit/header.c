@@ -31,6 +31,7 @@ static const quantity_word words[] = {
     { "linear thermal contraction", KEL__CONTRACTION },
     { "uncertainty", KEL__UNCERTAINTY }, { "standard uncertainty", KEL__UNCERTAINTY }, { "u", KEL__UNCERTAINTY },
     { "source", KEL__SOURCE }, { "status", KEL__STATUS },
+    { "reservations", KEL__STATUS }, /* of the tables that kelspan writes: a row with a reservation is no plain value */
 };
 
 /* Names of coefficients. Those that stand alone mean the instantaneous one; the others need a word that says which. */
