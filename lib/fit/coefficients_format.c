@@ -71,8 +71,11 @@ add_clause(kel_text *out, const char *key, const char *printed, size_t n, bool l
                 *p = '.';
         kel__clause clause;
         kel__entry entry = { key, text.bytes, 0, 0 };
-        carried = kel__clause_parse(&clause, &entry, lot, false, NULL) == KEL_OK && !clause.independent &&
+        kel_status status = kel__clause_parse(&clause, &entry, lot, false, NULL);
+        carried = status == KEL_OK && !clause.independent &&
                   (clause.absolute == 0 || clause.dimension == KEL_DIM_PER_KELVIN);
+        /* A clause that was not read for lack of memory is not one that cannot be carried. */
+        out->failed = out->failed || status == KEL_E_NOMEM;
         if (carried)
             add_line(out, key, text.bytes);
     }

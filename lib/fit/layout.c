@@ -8,8 +8,6 @@
 #include "problem.h"
 #include "number_text.h"
 
-#include <gsl/gsl_integration.h>
-
 static kel_status
 no_memory(kel_error *err)
 {
@@ -86,6 +84,34 @@ lay_conditions(kel__layout *l, const kel__problem *p, kel_arena *memory, kel_err
     return KEL_OK;
 }
 
+/* Zeros of the Legendre polynomial P_n, from the lowest, by Newton's method on its recurrence, and the weights
+   2/((1 - x^2) P_n'(x)^2) (Abramowitz and Stegun 25.4.29). The start is good enough for a few steps to reach the last
+   bit; worked in long double, so that a double is rounded once. No library's table: one that has to be allocated is a
+   failure more. */
+static void
+legendre(double *nodes, double *weights, size_t n)
+{
+    const long double pi = 3.14159265358979323846264338327950288L;
+    for (size_t i = 0; i < (n + 1) / 2; i++) {
+        long double x = 2 * i + 1 == n ? 0.0L : cosl(pi * ((long double)i + 0.75L) / ((long double)n + 0.5L));
+        long double slope = 0;
+        for (int step = 0; step < 8; step++) {
+            long double before = 1, p = x;
+            for (size_t k = 2; k <= n; k++) {
+                long double next = ((long double)(2 * k - 1) * x * p - (long double)(k - 1) * before) / (long double)k;
+                before = p;
+                p = next;
+            }
+            slope = (long double)n * (x * p - before) / (x * x - 1);
+            if (2 * i + 1 != n)
+                x -= p / slope;
+        }
+        nodes[i] = (double)-x;
+        nodes[n - 1 - i] = (double)x;
+        weights[i] = weights[n - 1 - i] = (double)(2 / ((1 - x * x) * slope * slope));
+    }
+}
+
 /* n nodes integrate degree 2n - 1 exactly. */
 static kel_status
 lay_nodes(kel__layout *l, kel_arena *memory, kel_error *err)
@@ -96,14 +122,9 @@ lay_nodes(kel__layout *l, kel_arena *memory, kel_error *err)
     l->node_count = longest / 2 + 1;
     l->nodes = kel_arena_take(memory, l->node_count, sizeof *l->nodes);
     l->weights = kel_arena_take(memory, l->node_count, sizeof *l->weights);
-    gsl_integration_glfixed_table *table = gsl_integration_glfixed_table_alloc(l->node_count);
-    if (l->nodes == NULL || l->weights == NULL || table == NULL) {
-        gsl_integration_glfixed_table_free(table);
+    if (l->nodes == NULL || l->weights == NULL)
         return no_memory(err);
-    }
-    for (size_t i = 0; i < l->node_count; i++)
-        gsl_integration_glfixed_point(-1, 1, i, &l->nodes[i], &l->weights[i], table);
-    gsl_integration_glfixed_table_free(table);
+    legendre(l->nodes, l->weights, l->node_count);
     return KEL_OK;
 }
 

@@ -3,8 +3,8 @@
 
    First it is run undisturbed, twice: what it gives is kept as text, and its calls are counted. Then, for every n,
    it is run once with the n-th call failed and once with all from the n-th on. Each time it must either fail with
-   KEL_E_NOMEM and a message and give NULL, or, where the operation is marked as one that can do without, give the same
-   text as undisturbed; and afterwards as many blocks are in use as before. */
+   KEL_E_NOMEM and a message and give NULL, or, for no more calls than the operation says it can spare, give the same text
+   as undisturbed; and afterwards as many blocks are in use as before. */
 #ifndef KEL_TEST_LOSING_H
 #define KEL_TEST_LOSING_H
 
@@ -23,7 +23,7 @@ typedef struct operation {
     /* What `run` gave, as text; NULL where there is nothing to tell. */
     void (*describe)(kel_text *text, void *output);
     void (*release)(void *output);
-    bool can_do_without;
+    size_t spare;            /* so many calls may be failed in turn without harm to the result */
     kel_status expected;     /* undisturbed; an error of its own may come instead of KEL_E_NOMEM */
 } operation;
 
@@ -42,7 +42,8 @@ describe_operation(kel_text *text, const operation *op, void *output)
     KEL_REQUIRE(!text->failed, "%s: no memory in the test itself", op->label);
 }
 
-static inline void
+/* Was the result the undisturbed one? */
+static inline bool
 lose_one(const operation *op, size_t n, bool onwards, const kel_text *undisturbed)
 {
     const char *how = onwards ? "from call" : "call";
@@ -52,7 +53,8 @@ lose_one(const operation *op, size_t n, bool onwards, const kel_text *undisturbe
     allocation_arm(n, onwards);
     void *output = op->run(&status, op->input, &err);
     allocation_disarm();
-    if (status == op->expected && (op->can_do_without || status < 0)) {
+    bool survived = status == op->expected;
+    if (survived) {
         kel_text text = KEL_TEXT_INIT;
         describe_operation(&text, op, output);
         KEL_REQUIRE(text.size == undisturbed->size && (text.size == 0 || memcmp(text.bytes, undisturbed->bytes,
@@ -68,6 +70,7 @@ lose_one(const operation *op, size_t n, bool onwards, const kel_text *undisturbe
     finish_operation(op, output);
     KEL_REQUIRE(allocation_live() == before, "%s, %s %zu: %ld blocks left", op->label, how, n,
                 allocation_live() - before);
+    return survived;
 }
 
 /* The number of calls that were failed. */
@@ -75,7 +78,7 @@ static inline size_t
 lose_each(const operation *op)
 {
     kel_text undisturbed = KEL_TEXT_INIT;
-    size_t calls = 0;
+    size_t calls = 0, survived = 0;
     /* Twice, for what libraries keep from their first call is neither lost nor a leak. */
     for (int i = 0; i < 2; i++) {
         kel_error err = { KEL_OK, 0, 0, "" };
@@ -91,9 +94,11 @@ lose_each(const operation *op)
     }
     KEL_REQUIRE(calls > 0, "%s: no allocation to fail", op->label);
     for (size_t n = 1; n <= calls; n++) {
-        lose_one(op, n, false, &undisturbed);
+        survived += lose_one(op, n, false, &undisturbed);
         lose_one(op, n, true, &undisturbed);
     }
+    KEL_REQUIRE(op->expected < 0 || survived <= op->spare, "%s: the loss of %zu of %zu calls was not noticed", op->label,
+                survived, calls);
     kel_text_free(&undisturbed);
     return calls;
 }
