@@ -1,14 +1,16 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The degree of alpha: as asked for, or chosen from 0..10, the same for all pieces.
 
-   n rows, k free parameters of the curve. Candidates: k <= n - r with r = max(2, floor(n/3)), r = 1 for n of 3 or 4, and rows of full rank in
-   every piece. Two rows give a line, one row a constant.
+   n rows, k free parameters of the curve. Candidates: k <= n - r with r = max(2, floor(n/3)), r = 1 for n of 3 or 4,
+   and rows of full rank in every piece. Two rows give a line, one row a constant.
    Without stated u, Bayes' criterion (G. Schwarz, Ann. Statist. 6 (1978) 461), a variance for each value column c:
-       sum_c n_c ln(RSS_c/n_c) + (k + number of columns) ln n,   RSS_c at least n_c max(resolution^2/12, (4 eps max|y|)^2)
-   and of the degrees within 4 of the smallest value the lowest. With stated u: chi2 + 4k, the lowest within 2: a further coefficient must be
-   worth two standard uncertainties. (With 2k, Mallows' C_p, Technometrics 15 (1973) 661, alpha came out two to three times worse in the tenth
-   of the simulated tables where it went wrong.) Columns of both sorts: the sum, with the first penalty. Where chi2 of the choice lies outside its 0.1 % to 99.9 % range the
-   stated u are taken as relative weights and the first rule decides. Measured by `make simulate`. */
+       sum_c n_c ln(RSS_c/n_c) + (k + number of columns) ln n,   RSS_c at least n_c max(resolution^2/12, (4 eps
+       max|y|)^2)
+   and of the degrees within 4 of the smallest value the lowest. With stated u: chi2 + 4k, the lowest within 2: a
+   further coefficient must be worth two standard uncertainties. (With 2k, Mallows' C_p, Technometrics 15 (1973) 661,
+   alpha came out two to three times worse in the tenth of the simulated tables where it went wrong.) Columns of both
+   sorts: the sum, with the first penalty. Where chi2 of the choice lies outside its 0.1 % to 99.9 % range the stated u
+   are taken as relative weights and the first rule decides. Measured by `make simulate`. */
 #include "problem.h"
 
 #include <gsl/gsl_cdf.h>
@@ -17,8 +19,10 @@ enum { HIGHEST = 10, CANDIDATES = HIGHEST + 1 };
 
 static const char bayes[] = "Bayes criterion, lowest degree within 4 of the smallest";
 static const char chi_square[] = "chi2 + 4k, lowest degree within 2 of the smallest";
-static const char mixed[] = "chi2 of the stated rows + Bayes criterion of the others, lowest degree within 4 of the smallest";
-static const char relative[] = "Bayes criterion with the stated u as relative weights (their chi2 is not credible), lowest degree within 4 of the smallest";
+static const char mixed[] =
+    "chi2 of the stated rows + Bayes criterion of the others, lowest degree within 4 of the smallest";
+static const char relative[] = "Bayes criterion with the stated u as relative weights (their chi2 is not credible), "
+                               "lowest degree within 4 of the smallest";
 static const char too_few[] = "the rows determine no more";
 
 typedef struct candidate {
@@ -58,7 +62,9 @@ measure(candidate *c, const kel__problem *p, const kel__solution *s)
     double k = (double)c->k, stated = (double)s->stated;
     double weighted = stated > 0 ? stated * log(fmax(s->relative_rss, s->relative_floor) / stated) : 0;
     c->by_weights = unstated + weighted + (k + columns + (stated > 0)) * log(n);
-    c->by_u = stated == 0 ? c->by_weights : columns == 0 ? s->chi2 + 4 * k : s->chi2 + unstated + (k + columns) * log(n);
+    c->by_u = stated == 0    ? c->by_weights
+              : columns == 0 ? s->chi2 + 4 * k
+                             : s->chi2 + unstated + (k + columns) * log(n);
 }
 
 static int
@@ -75,7 +81,8 @@ choose(const candidate *all, bool by_u, double within)
 }
 
 static kel_status
-try_degree(candidate *c, int degree, const kel__problem *p, int *degrees, const kel__factor *factor, const kel__layout *full, kel_error *err)
+try_degree(candidate *c, int degree, const kel__problem *p, int *degrees, const kel__factor *factor,
+           const kel__layout *full, kel_error *err)
 {
     kel_arena *scratch = kel_arena_new();
     if (scratch == NULL)
@@ -84,7 +91,8 @@ try_degree(candidate *c, int degree, const kel__problem *p, int *degrees, const 
         degrees[i] = degree;
     kel__solution s;
     kel_error mine = { 0 };
-    kel_status status = factor != NULL ? kel__solve_from(&s, p, scratch, factor, full, degrees, &mine) : kel__solve(&s, p, scratch, degrees, &mine);
+    kel_status status = factor != NULL ? kel__solve_from(&s, p, scratch, factor, full, degrees, &mine)
+                                       : kel__solve(&s, p, scratch, degrees, &mine);
     if (status == KEL_OK) {
         size_t spare = rows_to_spare(p->row_count);
         measure(c, p, &s);
@@ -120,7 +128,8 @@ try_all(candidate *all, const kel__problem *p, int *degrees, kel_arena *memory, 
 }
 
 static kel_status
-list_candidates(kel_fit_report *report, const candidate *all, int chosen, bool by_u, const kel__problem *p, kel_arena *memory, kel_error *err)
+list_candidates(kel_fit_report *report, const candidate *all, int chosen, bool by_u, const kel__problem *p,
+                kel_arena *memory, kel_error *err)
 {
     kel_candidate *list = kel_arena_take(memory, CANDIDATES, sizeof *list);
     if (list == NULL)
@@ -131,8 +140,13 @@ list_candidates(kel_fit_report *report, const candidate *all, int chosen, bool b
     for (int d = 0; d < CANDIDATES; d++) {
         const candidate *c = &all[d];
         double freedom = (double)p->row_count - (double)c->k;
-        list[d] = (kel_candidate){ .degree = d, .parameters = c->k, .chosen = d == chosen, .refused = c->refused, .residual_standard_deviation = NAN,
-            .chi2 = NAN, .criterion = NAN };
+        list[d] = (kel_candidate){ .degree = d,
+                                   .parameters = c->k,
+                                   .chosen = d == chosen,
+                                   .refused = c->refused,
+                                   .residual_standard_deviation = NAN,
+                                   .chi2 = NAN,
+                                   .criterion = NAN };
         if (!c->compared)
             continue;
         list[d].chi2 = c->chi2;
@@ -147,7 +161,8 @@ list_candidates(kel_fit_report *report, const candidate *all, int chosen, bool b
 
 /* The automatic choice; degrees gets it for every piece. */
 static kel_status
-choose_automatically(int *degrees, kel_fit_report *report, const kel__problem *p, kel_arena *memory, kel_arena *report_memory, kel_error *err)
+choose_automatically(int *degrees, kel_fit_report *report, const kel__problem *p, kel_arena *memory,
+                     kel_arena *report_memory, kel_error *err)
 {
     candidate all[CANDIDATES] = { 0 };
     kel_status status = try_all(all, p, degrees, memory, err);
@@ -177,7 +192,9 @@ choose_automatically(int *degrees, kel_fit_report *report, const kel__problem *p
         }
     }
     if (chosen < 0)
-        return kel_error_set(err, KEL_E_RANK, 0, 0, "%zu rows do not carry even degree 0 in each of %zu pieces with two rows to spare: give --degree, or fewer joins",
+        return kel_error_set(err, KEL_E_RANK, 0, 0,
+                             "%zu rows do not carry even degree 0 in each of %zu pieces with two rows to spare: give "
+                             "--degree, or fewer joins",
                              p->row_count, p->join_count + 1);
     for (size_t i = 0; i <= p->join_count; i++)
         degrees[i] = chosen;
@@ -190,7 +207,9 @@ take_degrees(int *degrees, const kel__problem *p, kel_error *err)
     const kel_fit_options *o = p->options;
     size_t pieces = p->join_count + 1, most = 0;
     if (o->degree_count > 1 && o->degree_count != pieces)
-        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "%zu degrees for %zu pieces: give one for all or one for each piece", o->degree_count, pieces);
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0,
+                             "%zu degrees for %zu pieces: give one for all or one for each piece", o->degree_count,
+                             pieces);
     for (size_t i = 0; i < pieces; i++) {
         degrees[i] = o->degrees[o->degree_count == 1 ? 0 : i];
         if (degrees[i] < 0 || degrees[i] > KEL_DEGREE_MAX)
@@ -204,12 +223,14 @@ take_degrees(int *degrees, const kel__problem *p, kel_error *err)
 }
 
 kel_status
-kel__choose_degree(kel__solution *solution, kel_fit_report *report, const kel__problem *problem, kel_arena *memory, kel_arena *report_memory, kel_error *err)
+kel__choose_degree(kel__solution *solution, kel_fit_report *report, const kel__problem *problem, kel_arena *memory,
+                   kel_arena *report_memory, kel_error *err)
 {
     int *degrees = kel_arena_take(memory, problem->join_count + 1, sizeof *degrees);
     if (degrees == NULL)
         return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory while choosing the degree");
-    kel_status status = problem->options->degree_count > 0 ? take_degrees(degrees, problem, err)
-                                                           : choose_automatically(degrees, report, problem, memory, report_memory, err);
+    kel_status status = problem->options->degree_count > 0
+                            ? take_degrees(degrees, problem, err)
+                            : choose_automatically(degrees, report, problem, memory, report_memory, err);
     return status < 0 ? status : kel__solve(solution, problem, memory, degrees, err);
 }

@@ -144,7 +144,8 @@ measure_columns(kel__problem *p, kel_error *err)
                 if (p->columns[c].kind == KEL_KIND_MEAN && !p->rows[i].seen->u_stated)
                     widths[n++] = p->rows[i].width;
             }
-        p->columns[c].least = fmax(p->columns[c].resolution / sqrt(12), 4 * KEL__EPS * largest);
+        p->columns[c].rounding = 4 * KEL__EPS * largest;
+        p->columns[c].least = fmax(p->columns[c].resolution / sqrt(12), p->columns[c].rounding);
         if (p->columns[c].least == 0)
             p->columns[c].least = 4 * KEL__EPS * 1e-9; /* a column of zeros: any size serves */
         if (n > 0) {

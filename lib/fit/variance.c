@@ -177,18 +177,22 @@ kel__estimate_scatter(double *change, kel__solution *solution, const kel__proble
     if (s->stated == 0)
         s->chi2 = NAN;
 
+    /* What rounding of residuals can do to a scatter is no change: where rows fit as well as doubles can, it would never end. */
     *change = 0;
-    double factor = s->factor;
+    double factor = s->factor, noise = 0;
     for (size_t c = 0; c < p->column_count; c++) {
+        const kel__column *column = &p->columns[c];
         double before = s->scatter[c], now = NAN;
-        if (t.freedom[c] >= ENOUGH && p->columns[c].stated < p->columns[c].rows && !(isnan(before) && s->iterations >= SETTLED))
+        if (t.freedom[c] >= ENOUGH && column->stated < column->rows && !(isnan(before) && s->iterations >= SETTLED))
             now = solve_scatter(p, c, t.residual, t.freedom[c]);
-        double small = 1e-3 * p->columns[c].least * p->columns[c].typical_width;
+        double small = 1e-3 * column->least * column->typical_width, moved = fabs(now - before) - column->rounding * column->typical_width;
         if (!(isnan(before) && isnan(now)))
-            *change = fmax(*change, isnan(before) || isnan(now) ? 1 : fabs(now - before) / fmax(now, small));
+            *change = fmax(*change, isnan(before) || isnan(now) ? 1 : fmax(moved, 0) / fmax(now, small));
+        else if (column->stated < column->rows)
+            noise = fmax(noise, column->rounding / column->least);
         s->scatter[c] = now;
     }
     pool_few(s, p, t.freedom, t.scaled);
-    *change = fmax(*change, fabs(s->factor - factor) / factor);
+    *change = fmax(*change, fmax(fabs(s->factor - factor) - noise, 0) / factor);
     return KEL_OK;
 }

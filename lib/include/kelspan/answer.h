@@ -13,8 +13,8 @@ extern "C" {
      COEFFICIENT   alpha(to), 1/K, in the query's base
      MEAN          [e(to) - e(from)]/(to - from), 1/K; its limit where from = to
      EXPANSION     e(to)
-     INTEGRAL      I(from, to): e(to) - e(from) for a record and query in `reference length`, ln L(to)/L(from) in `current length`
-     LENGTH_RATIO  L(to)/L(from)
+     INTEGRAL      I(from, to): e(to) - e(from) for a record and query in `reference length`, ln L(to)/L(from) in
+     `current length` LENGTH_RATIO  L(to)/L(from)
      CHANGE        [L(to) - L(from)]/L(at): times the length at `at`, the change of a part. Nearly always at = from. */
 typedef enum kel_quantity {
     KEL_COEFFICIENT, KEL_MEAN, KEL_EXPANSION, KEL_INTEGRAL, KEL_LENGTH_RATIO, KEL_CHANGE
@@ -34,32 +34,38 @@ typedef struct kel_answer {
     unsigned flags;        /* KEL_FLAG_... */
 } kel_answer;
 
-/* The general call. Returns KEL_OK or the gravest reservation among the flags; KEL_E_ARGUMENT for non-finite temperatures, an
-   infinite reference, an unknown quantity or base; KEL_E_RANGE for a temperature below 0 K, or where the curve continued far outside gives
-   no positive, finite length. On an error out is NaN with KEL_FLAG_UNKNOWN_U.
-   Extrapolated unless all that the answer depends on lies inside the validity range: COEFFICIENT `to`, EXPANSION the reference and `to`, the others
-   both ends, CHANGE `at` too. Beside these, in a reference-length record, with R its own reference temperature: LENGTH_RATIO and CHANGE need R; so do
-   COEFFICIENT and INTEGRAL asked for in `current length`; whatever is asked for with another reference needs that and R (except in these four cases). In a
-   current-length record: MEAN needs the reference, and so do COEFFICIENT and INTEGRAL asked for in `reference length`.
-   Gap: `to` or an end of the interval lies strictly inside one. Transition: one lies in lo < T <= hi of the interval; EXPANSION is the interval from
-   the reference, COEFFICIENT has none. Bounds compare exactly. Accuracy: see each scalar. Since 0.1. */
+/* The general call. Returns KEL_OK or the gravest reservation among the flags; KEL_E_ARGUMENT for non-finite
+   temperatures, an infinite reference, an unknown quantity or base; KEL_E_RANGE for a temperature below 0 K, or where
+   the curve continued far outside gives no positive, finite length. On an error out is NaN with KEL_FLAG_UNKNOWN_U.
+   Extrapolated unless all that the answer depends on lies inside the validity range: COEFFICIENT `to`, EXPANSION the
+   reference and `to`, the others both ends, CHANGE `at` too. Beside these, in a reference-length record, with R its own
+   reference temperature: LENGTH_RATIO and CHANGE need R; so do COEFFICIENT and INTEGRAL asked for in `current length`;
+   whatever is asked for with another reference needs that and R (except in these four cases). In a current-length
+   record: MEAN needs the reference, and so do COEFFICIENT and INTEGRAL asked for in `reference length`. Gap: `to` or an
+   end of the interval lies strictly inside one. Transition: one lies in lo < T <= hi of the interval; EXPANSION is the
+   interval from the reference, COEFFICIENT has none. Bounds compare exactly. Accuracy: see each scalar. Since 0.1. */
 KEL_API kel_status kel_record_answer(kel_answer *out, const kel_record *record, const kel_query *query, kel_error *err);
 
-/* The same in the record's own reference and base. value within (2n + 4) eps sum |c_k| of the piece for the coefficient, times the width
-   of the interval for the integral (n: degree): an interval of 1 mK is as accurate as one of 1000 K. Since 0.1. */
+/* The same in the record's own reference and base. value within (2n + 4) eps sum |c_k| of the piece for the
+   coefficient, times the width of the interval for the integral (n: degree): an interval of 1 mK is as accurate as one
+   of 1000 K. Since 0.1. */
 KEL_API kel_status kel_record_coefficient(kel_answer *out, const kel_record *record, double t, kel_error *err);
 KEL_API kel_status kel_record_mean(kel_answer *out, const kel_record *record, double from, double to, kel_error *err);
 KEL_API kel_status kel_record_expansion(kel_answer *out, const kel_record *record, double t, kel_error *err);
-KEL_API kel_status kel_record_integral(kel_answer *out, const kel_record *record, double from, double to, kel_error *err);
-KEL_API kel_status kel_record_length_ratio(kel_answer *out, const kel_record *record, double from, double to, kel_error *err);
+KEL_API kel_status kel_record_integral(kel_answer *out, const kel_record *record, double from, double to,
+                                       kel_error *err);
+KEL_API kel_status kel_record_length_ratio(kel_answer *out, const kel_record *record, double from, double to,
+                                           kel_error *err);
 
 /* Covariance of two answers from one record: sum over modes of the products of their derivatives along the mode.
-   KEL_E_DATA where u is not known; errors as kel_record_answer (*out = NaN); else KEL_OK or the gravest reservation of the two. Since 0.1. */
-KEL_API kel_status kel_record_covariance(double *out, const kel_record *record, const kel_query *a, const kel_query *b, kel_error *err);
+   KEL_E_DATA where u is not known; errors as kel_record_answer (*out = NaN); else KEL_OK or the gravest reservation of
+   the two. Since 0.1. */
+KEL_API kel_status kel_record_covariance(double *out, const kel_record *record, const kel_query *a, const kel_query *b,
+                                         kel_error *err);
 
-/* Array calls: n answers into value[n]; u[n] and flags[n] may be NULL. No allocation; returns the worst status. A query that fails
-   gives NaN, and the call goes on with the next; its status is negative at the end, err holds the first one with its place,
-   counted from 1, in err->line. Any number of threads may share the record. Since 0.1. */
+/* Array calls: n answers into value[n]; u[n] and flags[n] may be NULL. No allocation; returns the worst status. A query
+   that fails gives NaN, and the call goes on with the next; its status is negative at the end, err holds the first one
+   with its place, counted from 1, in err->line. Any number of threads may share the record. Since 0.1. */
 KEL_API kel_status kel_record_coefficient_n(double *value, double *u, unsigned char *flags, const kel_record *record,
                                             const double *t, size_t n, kel_error *err);
 KEL_API kel_status kel_record_mean_n(double *value, double *u, unsigned char *flags, const kel_record *record,

@@ -15,8 +15,8 @@ typedef struct kel_arena kel_arena;
 KEL_API kel_arena *kel_arena_new(void);
 KEL_API void kel_arena_free(kel_arena *arena);
 
-/* n * size bytes set to zero, aligned for any object; NULL if memory ran out or n * size overflows. A request of nothing gives a valid
-   pointer. Since 0.1. */
+/* n * size bytes set to zero, aligned for any object; NULL if memory ran out or n * size overflows. A request of
+   nothing gives a valid pointer. Since 0.1. */
 KEL_API void *kel_arena_take(kel_arena *arena, size_t n, size_t size);
 
 /* Copies; NULL if memory ran out, and for a NULL string. Since 0.1. */

@@ -13,9 +13,11 @@ enum { KEL_DEGREE_AUTO = -1, KEL_DEGREE_MAX = 60 };
 enum { KEL_CONTINUITY_NONE = -1, KEL_CONTINUITY_VALUE = 0, KEL_CONTINUITY_SLOPE = 1, KEL_CONTINUITY_CURVATURE = 2 };
 
 typedef struct kel_fit_options {
-    const int *degrees; size_t degree_count;   /* none: auto; one: for all pieces; else one a piece, in order of temperature */
+    /* none: auto; one: for all pieces; else one a piece, in order of temperature */
+    const int *degrees; size_t degree_count;
     const double *joins; size_t join_count;    /* K, beside the declared transitions */
-    const int *continuity; size_t continuity_count; /* none: value; one: for all joins; else one a join of `joins`, in order of temperature */
+    /* none: value; one: for all joins; else one a join of `joins`, in order of temperature */
+    const int *continuity; size_t continuity_count;
     bool piecewise;                            /* the form was asked for by name: without joins an error */
     double reference;                          /* K; NaN: the first table's, else 293.15 K */
     int base;                                  /* a kel_base; -1: the first table's */
@@ -45,15 +47,17 @@ typedef struct kel_fit_report {
     int rank;                           /* of the free parameters: always full in a delivered fit */
     double condition;                   /* 2-norm condition number of the column-scaled weighted problem */
     double chi2_probability;            /* lower tail; NaN without stated u */
-    double scaled_factor;               /* sqrt(chi2/nu): by which the other scaling would multiply the scatter part of u; NaN where only one exists */
+    /* sqrt(chi2/nu): by which the other scaling would multiply the scatter part of u; NaN where only one exists */
+    double scaled_factor;
     int iterations;
 } kel_fit_report;
 
 /* Fits alpha(T) to the tables' observations by weighted linear least squares: Chebyshev basis on the pieces, every row
-   the functional it is, e(Tref) = 0 by construction. report may be NULL; free it with kel_fit_report_free. KEL_E_RANK (rows do not determine the
-   parameters; the message names the piece), KEL_E_DATA (different directions, step that no row crosses, ...), KEL_E_CONVERGENCE, KEL_E_NOMEM. Since 0.1. */
-KEL_API kel_status kel_fit(kel_record **out, kel_fit_report **report, const kel_table *const *tables, size_t table_count,
-                           const kel_fit_options *options, kel_error *err);
+   the functional it is, e(Tref) = 0 by construction. report may be NULL; free it with kel_fit_report_free. KEL_E_RANK
+   (rows do not determine the parameters; the message names the piece), KEL_E_DATA (different directions, step that no
+   row crosses, ...), KEL_E_CONVERGENCE, KEL_E_NOMEM. Since 0.1. */
+KEL_API kel_status kel_fit(kel_record **out, kel_fit_report **report, const kel_table *const *tables,
+                           size_t table_count, const kel_fit_options *options, kel_error *err);
 KEL_API void kel_fit_report_free(kel_fit_report *report);
 
 #ifdef __cplusplus

@@ -29,8 +29,9 @@ typedef enum kel_variance {
     KEL_VARIANCE_STATED     /* adopted: stated for the curve as a whole */
 } kel_variance;
 
-/* A piece owns [from, to), the last one [from, to]. With x = (2T - from - to)/(to - from) (0 if from = to), the mean curve
-   is sum c_j T_j(x), c_0 not halved, c_j = coefficients[first + j] for j < count; 1 <= count <= KEL_COEFFICIENTS_MAX. */
+/* A piece owns [from, to), the last one [from, to]. With x = (2T - from - to)/(to - from) (0 if from = to), the mean
+   curve is sum c_j T_j(x), c_0 not halved, c_j = coefficients[first + j] for j < count; 1 <= count <=
+   KEL_COEFFICIENTS_MAX. */
 enum { KEL_COEFFICIENTS_MAX = 128 };
 typedef struct kel_piece {
     double from, to;   /* K */
@@ -39,8 +40,8 @@ typedef struct kel_piece {
 
 typedef enum kel_step_kind { KEL_STEP_NONE, KEL_STEP_FITTED, KEL_STEP_STATED } kel_step_kind;
 
-/* A declared transition at T; inside the pieces' hull it is always a join. A step at T belongs to e(T): it is crossed by
-   an interval lo..hi when lo < T <= hi. */
+/* A declared transition at T; inside the pieces' hull it is always a join. A step at T belongs to e(T): it is crossed
+   by an interval lo..hi when lo < T <= hi. */
 typedef struct kel_transition {
     double at;         /* K */
     kel_step_kind step;
@@ -49,7 +50,8 @@ typedef struct kel_transition {
 /* Mean curve and modes have their own numbers on common pieces and transitions. */
 typedef struct kel_curve {
     const double *coefficients; /* 1/K; content.coefficient_count of them */
-    const double *steps;        /* content.transition_count of them, in the integral's unit (1); 0 where there is no step */
+    /* content.transition_count of them, in the integral's unit (1); 0 where there is no step */
+    const double *steps;
 } kel_curve;
 
 typedef struct kel_mode {
@@ -112,7 +114,8 @@ typedef struct kel_content {
     const kel_piece *pieces; size_t piece_count;
     const kel_transition *transitions; size_t transition_count;
     size_t coefficient_count;   /* of a curve, over all pieces */
-    const int *continuity; size_t continuity_count; /* per inner join: -1 none, 0 value, 1 slope, 2 curvature of alpha */
+    /* per inner join: -1 none, 0 value, 1 slope, 2 curvature of alpha */
+    const int *continuity; size_t continuity_count;
     kel_curve mean;
     const kel_mode *modes; size_t mode_count; /* none: u is not known */
 
@@ -136,17 +139,18 @@ typedef struct kel_content {
 typedef struct kel_record kel_record;
 
 /* Checks and copies content into a new record; computes check values and digest. KEL_E_ARGUMENT for content that breaks
-   the rules above (pieces that do not adjoin, non-finite coefficients, step on no transition, ...); the message names the key of
-   kelspan-record(5). Pieces take the coefficients in order and without a rest (first = sum of the counts before); the range lies within
-   the pieces; observations is the number of rows that are not left out (unless thinned) and of the columns' together. Since 0.1. */
+   the rules above (pieces that do not adjoin, non-finite coefficients, step on no transition, ...); the message names
+   the key of kelspan-record(5). Pieces take the coefficients in order and without a rest (first = sum of the counts
+   before); the range lies within the pieces; observations is the number of rows that are not left out (unless thinned)
+   and of the columns' together. Since 0.1. */
 KEL_API kel_status kel_record_build(kel_record **out, const kel_content *content, kel_error *err);
 KEL_API void kel_record_free(kel_record *record);
 
 /* What the record holds; valid as long as the record. */
 KEL_API const kel_content *kel_record_content(const kel_record *record);
 
-/* Parses the JSON text of a record (kelspan-record(5)). KEL_E_SYNTAX with line and column; KEL_E_DATA unknown key, missing
-   key, value that breaks a rule (the message names the key); KEL_E_VERSION; KEL_E_DIGEST. Since 0.1. */
+/* Parses the JSON text of a record (kelspan-record(5)). KEL_E_SYNTAX with line and column; KEL_E_DATA unknown key,
+   missing key, value that breaks a rule (the message names the key); KEL_E_VERSION; KEL_E_DIGEST. Since 0.1. */
 KEL_API kel_status kel_record_parse(kel_record **out, const char *bytes, size_t n, kel_error *err);
 
 /* Appends the record's JSON text: same record, same bytes. KEL_E_NOMEM. Since 0.1. */
@@ -169,18 +173,18 @@ KEL_API void kel_digest_add(kel_digest *digest, const void *bytes, size_t n);
 KEL_API void kel_digest_finish(kel_digest *digest, char hex[65]);
 KEL_API void kel_digest_free(kel_digest *digest);
 
-/* Names used in files and messages: "reference length", "coefficient" | "mean coefficient" | "expansion", "fit" | "shared" | "lot",
-   "none" | "given" | "estimated" | "mixed" | "stated". */
+/* Names used in files and messages: "reference length", "coefficient" | "mean coefficient" | "expansion", "fit" |
+   "shared" | "lot", "none" | "given" | "estimated" | "mixed" | "stated". */
 KEL_API const char *kel_base_name(kel_base base);
 KEL_API const char *kel_kind_name(kel_kind kind);
 KEL_API const char *kel_mode_kind_name(kel_mode_kind kind);
 KEL_API const char *kel_variance_name(kel_variance variance);
 
-/* Piece `piece` of the mean curve as sum_k coefficient[k] t^k, k < count of the piece, in 1/K per K^k if t is T in kelvin;
-   t = (T - centre)/scale in general (centre, scale in K). u[k], may be NULL, its standard uncertainty from the modes (NaN
-   if not known). Accurate to 8 eps of the largest term that makes up each coefficient (worked in twice the precision).
-   KEL_E_ARGUMENT for a piece that does not exist, a centre or scale that is not finite, scale 0; KEL_E_RANGE where powers of so distant
-   a centre exceed a double (all NaN then). Since 0.1. */
+/* Piece `piece` of the mean curve as sum_k coefficient[k] t^k, k < count of the piece, in 1/K per K^k if t is T in
+   kelvin; t = (T - centre)/scale in general (centre, scale in K). u[k], may be NULL, its standard uncertainty from the
+   modes (NaN if not known). Accurate to 8 eps of the largest term that makes up each coefficient (worked in twice the
+   precision). KEL_E_ARGUMENT for a piece that does not exist, a centre or scale that is not finite, scale 0;
+   KEL_E_RANGE where powers of so distant a centre exceed a double (all NaN then). Since 0.1. */
 KEL_API kel_status kel_record_powers(double *coefficient, double *u, const kel_record *record, size_t piece,
                                      double centre, double scale, kel_error *err);
 

@@ -41,8 +41,9 @@ typedef struct kel_row {
 typedef struct kel_rows kel_rows;
 
 /* A reader of rows; a UTF-8 byte order mark is skipped, CRLF and LF end a line, blank lines are passed over. The
-   delimiter is detected on the first line that is no comment (the one of , ; tab that occurs most outside quotes; comma if none).
-   Lines over 1 MiB, NUL bytes, a quote left open, a quote inside an unquoted cell: KEL_E_SYNTAX with line and column. Since 0.1. */
+   delimiter is detected on the first line that is no comment (the one of , ; tab that occurs most outside quotes; comma
+   if none). Lines over 1 MiB, NUL bytes, a quote left open, a quote inside an unquoted cell: KEL_E_SYNTAX with line and
+   column. Since 0.1. */
 KEL_API kel_status kel_rows_new(kel_rows **out, kel_input input, kel_delimiter delimiter, kel_error *err);
 /* The next row, or *row = NULL at the end. The row is valid until the next call. */
 KEL_API kel_status kel_rows_next(const kel_row **row, kel_rows *rows, kel_error *err);

@@ -72,9 +72,9 @@ typedef struct kel_error {
     char message[492];
 } kel_error;
 
-/* Fills err (which may be NULL) and returns code, so that a failure is one statement. line and column 0: no place. The message
-   is cut to fit at a character's boundary. For the libraries themselves and for programs that build on them. Numbers belong into it by
-   kel_number_format, not by %g, which follows the locale. Since 0.1. */
+/* Fills err (which may be NULL) and returns code, so that a failure is one statement. line and column 0: no place. The
+   message is cut to fit at a character's boundary. For the libraries themselves and for programs that build on them.
+   Numbers belong into it by kel_number_format, not by %g, which follows the locale. Since 0.1. */
 KEL_API kel_status kel_error_set(kel_error *err, kel_status code, size_t line, size_t column, const char *format, ...)
 #if defined __GNUC__
     __attribute__((format(printf, 5, 6)))

@@ -38,15 +38,17 @@ KEL_API void kel_text_number(kel_text *text, double x);
 KEL_API void kel_text_quote(kel_text *text, const char *bytes, size_t n);
 
 /* Shortest decimal digits that read back as x, into out (at least KEL_NUMBER_SIZE bytes), NUL-terminated; returns the
-   length. Layout: plain notation for 1e-5 <= |x| < 1e17 (100, 0.00123), else d.ddde-7; "0", "-0", "nan", "inf", "-inf". */
+   length. Layout: plain notation for 1e-5 <= |x| < 1e17 (100, 0.00123), else d.ddde-7; "0", "-0", "nan", "inf", "-inf".
+   */
 #define KEL_NUMBER_SIZE 32
 KEL_API size_t kel_number_format(char *out, double x);
 
-/* x with `digits` significant digits (1 to 17) correctly rounded, trailing zeros kept, locale-free. Plain notation from 1e-4 up to
-   10^digits, at least 1e6 ("12300" where only three digits count); "0" for both zeros. out: KEL_NUMBER_SIZE bytes. */
+/* x with `digits` significant digits (1 to 17) correctly rounded, trailing zeros kept, locale-free. Plain notation from
+   1e-4 up to 10^digits, at least 1e6 ("12300" where only three digits count); "0" for both zeros. out: KEL_NUMBER_SIZE
+   bytes. */
 KEL_API size_t kel_number_format_digits(char *out, double x, int digits);
-/* x with `decimals` digits behind the point (0 to 30), correctly rounded, locale-free. out: KEL_NUMBER_FIXED_SIZE bytes;
-   |x| >= 1e22 falls back to 17 significant digits. What rounds to zero has no sign. */
+/* x with `decimals` digits behind the point (0 to 30), correctly rounded, locale-free. out: KEL_NUMBER_FIXED_SIZE
+   bytes; |x| >= 1e22 falls back to 17 significant digits. What rounds to zero has no sign. */
 #define KEL_NUMBER_FIXED_SIZE 64
 KEL_API size_t kel_number_format_fixed(char *out, double x, int decimals);
 
@@ -71,7 +73,8 @@ KEL_API void kel_json_object(kel_json *json, const char *key);       /* key is N
 KEL_API void kel_json_array(kel_json *json, const char *key);
 KEL_API void kel_json_inline_object(kel_json *json, const char *key); /* on one line, with all it contains */
 KEL_API void kel_json_inline_array(kel_json *json, const char *key);
-KEL_API void kel_json_end(kel_json *json);                           /* closes the innermost object or array; a newline after the outermost */
+/* closes the innermost object or array; a newline after the outermost */
+KEL_API void kel_json_end(kel_json *json);
 KEL_API void kel_json_number(kel_json *json, const char *key, double x);
 KEL_API void kel_json_count(kel_json *json, const char *key, uint64_t n);
 KEL_API void kel_json_bool(kel_json *json, const char *key, bool b);
