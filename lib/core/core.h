@@ -9,9 +9,11 @@
 #error "kelspan needs IEEE arithmetic: do not compile with -ffast-math"
 #endif
 
-/* The record owns one arena (`memory`) that everything content points to lives in. */
+/* The record owns one arena (`memory`) that everything content points to lives in. `kernel` is what the array calls use
+   (kernel.h), NULL where they go the scalar way. */
 struct kel_record {
     kel_content content;
+    const struct kel__kernel *kernel;
     kel_arena *memory;
 };
 

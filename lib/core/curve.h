@@ -42,6 +42,10 @@ void kel__modes_value(double *sum, const kel_content *content, const kel_mode *m
 void kel__modes_integral(double *sum, const kel_content *content, const kel_mode *modes, size_t n, double from,
                          double to, double weight);
 
+/* power[k], k < p->count, of a piece with Chebyshev coefficients c: c_0 T_0 + c_1 T_1 + ... = sum_k power[k] t^k, t = (T -
+   centre)/scale. Not finite where they are beyond the range of a double. */
+void kel__piece_powers(double *power, const kel_piece *p, const double *c, double centre, double scale);
+
 /* weight times alpha(to), or times the integral from..to. */
 typedef struct kel__term {
     bool integral;

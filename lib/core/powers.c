@@ -110,6 +110,19 @@ powers_of(double *power, const double *c, size_t count, pair A, pair B)
         power[k] = now[k].hi;
 }
 
+void
+kel__piece_powers(double *power, const kel_piece *p, const double *c, double centre, double scale)
+{
+    pair A = { 0.0, 0.0 }, B = { 0.0, 0.0 };
+    if (p->from < p->to) {
+        /* 2 centre - from - to as two differences, each exact, and exact factors of 2. */
+        pair width = two_sum(p->to, -p->from);
+        A = divide(add(two_sum(centre, -p->from), two_sum(centre, -p->to)), width);
+        B = divide((pair){ 2.0 * scale, 0.0 }, width);
+    }
+    powers_of(power, c, p->count, A, B);
+}
+
 kel_status
 kel_record_powers(double *coefficient, double *u, const kel_record *record, size_t piece, double centre, double scale,
                   kel_error *err)
@@ -126,14 +139,7 @@ kel_record_powers(double *coefficient, double *u, const kel_record *record, size
         return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "centre and scale must be finite, and scale not 0");
 
     const kel_piece *p = &content->pieces[piece];
-    pair A = { 0.0, 0.0 }, B = { 0.0, 0.0 };
-    if (p->from < p->to) {
-        /* 2 centre - from - to as two differences, each exact, and exact factors of 2. */
-        pair width = two_sum(p->to, -p->from);
-        A = divide(add(two_sum(centre, -p->from), two_sum(centre, -p->to)), width);
-        B = divide((pair){ 2.0 * scale, 0.0 }, width);
-    }
-    powers_of(coefficient, content->mean.coefficients + p->first, p->count, A, B);
+    kel__piece_powers(coefficient, p, content->mean.coefficients + p->first, centre, scale);
     bool finite = true;
     for (size_t k = 0; k < p->count; k++) {
         finite = finite && isfinite(coefficient[k]);
@@ -141,7 +147,7 @@ kel_record_powers(double *coefficient, double *u, const kel_record *record, size
             u[k] = content->mode_count == 0 ? (double)NAN : 0.0;
     }
     for (size_t m = 0; u != NULL && m < content->mode_count; m++) {
-        powers_of(one, content->modes[m].curve.coefficients + p->first, p->count, A, B);
+        kel__piece_powers(one, p, content->modes[m].curve.coefficients + p->first, centre, scale);
         for (size_t k = 0; k < p->count; k++)
             u[k] = hypot(u[k], one[k]);
     }

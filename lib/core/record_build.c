@@ -3,6 +3,7 @@
 
    What cannot be written and read back is refused here and not only when it is saved: that includes annotations that
    are no JSON object and a text above the largest file. */
+#include "kernel.h"
 #include "record_parts.h"
 
 #include <stdlib.h>
@@ -55,6 +56,8 @@ kel_record_build(kel_record **out, const kel_content *content, kel_error *err)
         status = kel__content_copy(&record->content, content, record->memory, err);
     if (status == KEL_OK)
         status = complete(record, content->annotations, err);
+    if (status == KEL_OK)
+        status = kel__kernel_make(&record->kernel, &record->content, record->memory, err);
     if (status != KEL_OK) {
         kel_record_free(record);
         return status;

@@ -3,6 +3,7 @@
    is its format known, has it the right keys and types, does its content keep the rules, is it what was written
    (digest, over our own writing of the content, so that layout does not matter), and does its curve give the values
    that it gave where it was written. */
+#include "kernel.h"
 #include "record_parts.h"
 #include "record_read.h"
 
@@ -63,6 +64,8 @@ fill(kel_record *record, const kel__tree *tree, const char *bytes, size_t n, kel
         status = check_digest(content, err);
     if (status == KEL_OK)
         status = kel__checks_compare(record, err);
+    if (status == KEL_OK)
+        status = kel__kernel_make(&record->kernel, content, record->memory, err);
     return status;
 }
 

@@ -58,19 +58,24 @@ folded(const char **p, const char *end)
     return ' ';
 }
 
-bool
-kel__same_words(const char *a, size_t n, const char *b, size_t m)
+int
+kel__compare_words(const char *a, size_t n, const char *b, size_t m)
 {
     kel__trim(&a, &n);
     kel__trim(&b, &m);
     const char *a_end = a + n, *b_end = b + m;
-    int c;
+    int c, d;
     do {
         c = folded(&a, a_end);
-        if (c != folded(&b, b_end))
-            return false;
-    } while (c != 0);
-    return true;
+        d = folded(&b, b_end);
+    } while (c == d && c != 0);
+    return c - d;
+}
+
+bool
+kel__same_words(const char *a, size_t n, const char *b, size_t m)
+{
+    return kel__compare_words(a, n, b, m) == 0;
 }
 
 bool

@@ -13,8 +13,9 @@ size_t kel__blank(const char *p, const char *end);
 /* Moves *p and *n so that blanks at both ends are left out. */
 void kel__trim(const char **p, size_t *n);
 
-/* Are the texts equal when trimmed, with each run of blanks as one and the case of ASCII letters folded? "Product
-   Form" = "product form". */
+/* The order of two texts when trimmed, with each run of blanks as one and the case of ASCII letters folded: "Product
+   Form" = "product form". Negative, 0 or positive. */
+int kel__compare_words(const char *a, size_t n, const char *b, size_t m);
 bool kel__same_words(const char *a, size_t n, const char *b, size_t m);
 bool kel__is_word(const char *p, size_t n, const char *word);
 

@@ -2,6 +2,7 @@
 /* From a solved fit to a record: one mean curve and its modes on common pieces. account.c adds statistics and provenance. */
 #include "problem.h"
 #include "subdivide.h"
+#include "table_inner.h"
 
 #include <string.h>
 
@@ -96,15 +97,26 @@ find_lot(compiler *c, kel_error *err)
         const kel_table *t = c->p->tables[i];
         if (t->lot_count == 0)
             continue;
-        if (c->lot != NULL && strcmp(c->lot->lot_text, t->lot_text) != 0)
-            return kel_error_set(err, KEL_E_DATA, 0, 0, "%s states the lot spread '%s' and %s '%s': a record has one; settle it with --set 'lot spread: ...'",
-                                 c->lot->name, c->lot->lot_text, t->name, t->lot_text);
+        if (c->lot != NULL && strcmp(c->lot->lot_text, t->lot_text) != 0) {
+            kel_text text = KEL_TEXT_INIT;
+            kel_text_printf(&text, "%s states the lot spread ", c->lot->name);
+            kel__quote_into(&text, c->lot->lot_text, strlen(c->lot->lot_text));
+            kel_text_printf(&text, " and %s ", t->name);
+            kel__quote_into(&text, t->lot_text, strlen(t->lot_text));
+            kel_text_add(&text, ": a record has one; settle it with --set 'lot spread: ...'");
+            return kel__fail(err, KEL_E_DATA, 0, 0, &text);
+        }
         if (c->lot == NULL)
             c->lot = t;
         for (size_t k = 0; k < t->lot_count; k++)
-            if (t->lot[k].absolute > 0 && t->lot[k].dimension != KEL_DIM_PER_KELVIN)
-                return kel_error_set(err, KEL_E_UNIT, 0, 0, "%s: lot spread '%s': state it in percent or as a coefficient, for the expansion at the reference temperature is 0 without spread",
-                                     t->name, t->lot_text);
+            if (t->lot[k].absolute > 0 && t->lot[k].dimension != KEL_DIM_PER_KELVIN) {
+                kel_text text = KEL_TEXT_INIT;
+                kel_text_printf(&text, "%s: lot spread ", t->name);
+                kel__quote_into(&text, t->lot_text, strlen(t->lot_text));
+                kel_text_add(&text, ": state it in percent or as a coefficient, for the expansion at the reference "
+                                    "temperature is 0 without spread");
+                return kel__fail(err, KEL_E_UNIT, 0, 0, &text);
+            }
     }
     return KEL_OK;
 }

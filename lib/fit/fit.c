@@ -191,6 +191,8 @@ check_options(const kel_fit_options *o, size_t table_count, kel_error *err)
         return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "a piecewise form needs joins: the temperatures where its pieces meet");
     if (o->base < -1 || o->base > KEL_BASE_CURRENT || o->range.lo > o->range.hi || o->gap < 0)
         return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "fit options: unknown base, empty range or negative gap");
+    if (isinf(o->reference) || o->reference < 0)
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "fit options: the reference is not a temperature");
     for (size_t i = 0; i < o->continuity_count; i++)
         if (o->continuity[i] < KEL_CONTINUITY_NONE || o->continuity[i] > KEL_CONTINUITY_CURVATURE)
             return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "fit options: unknown continuity %d", o->continuity[i]);

@@ -68,6 +68,8 @@ refill(kel__lines *lines, kel_error *err)
     if (n < 0) {
         char text[128];
         const char *reason = errno == 0 ? "unknown reason" : strerror_r(errno, text, sizeof text);
+        if (lines->number == 0)
+            return kel_error_set(err, KEL_E_IO, 0, 0, "reading failed: %s", reason);
         return kel_error_set(err, KEL_E_IO, 0, 0, "reading failed behind line %zu: %s", lines->number, reason);
     }
     if ((size_t)n > room)

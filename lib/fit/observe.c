@@ -4,6 +4,7 @@
 #include "problem.h"
 #include "number_text.h"
 #include "support.h"
+#include "table_inner.h"
 
 #include <stdlib.h>
 #include <string.h>
@@ -15,6 +16,20 @@ no_memory(kel_error *err)
     return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory while preparing a fit");
 }
 
+/* "A has direction 'this' and B 'that': advice" */
+static kel_status
+contradiction(const char *a, const char *says, const char *one, const char *b, const char *other, const char *advice,
+              kel_error *err)
+{
+    kel_text text = KEL_TEXT_INIT;
+    kel_text_printf(&text, "%s %s ", a, says);
+    kel__quote_into(&text, one, strlen(one));
+    kel_text_printf(&text, " and %s ", b);
+    kel__quote_into(&text, other, strlen(other));
+    kel_text_printf(&text, ": %s", advice);
+    return kel__fail(err, KEL_E_DATA, 0, 0, &text);
+}
+
 static kel_status
 check_directions(const kel__problem *p, kel_error *err)
 {
@@ -24,8 +39,8 @@ check_directions(const kel__problem *p, kel_error *err)
         if (t->direction == NULL)
             continue;
         if (first != NULL && strcasecmp(first->direction, t->direction) != 0)
-            return kel_error_set(err, KEL_E_DATA, 0, 0, "%s has direction '%s' and %s has '%s': one record holds one direction",
-                                 first->name, first->direction, t->name, t->direction);
+            return contradiction(first->name, "has direction", first->direction, t->name, t->direction,
+                                 "one record holds one direction", err);
         if (first == NULL)
             first = t;
     }
@@ -196,10 +211,14 @@ merge_transitions(kel__problem *p, kel_error *err)
             kel_declared_transition *same = j < p->transition_count && p->transitions[j].at == d->at ? &p->transitions[j] : NULL;
             if (same != NULL && same->step != KEL_STEP_NONE && d->step != KEL_STEP_NONE &&
                 (same->step != d->step || same->length != d->length)) {
-                char at[KEL_NUMBER_SIZE];
-                kel_number_format(at, d->at);
-                return kel_error_set(err, KEL_E_DATA, 0, 0, "the tables state two different steps for the transition at %s K ('%s' and '%s')",
-                                     at, same->text, d->text);
+                kel_text text = KEL_TEXT_INIT;
+                kel_text_add(&text, "the tables state two different steps for the transition at ");
+                kel__temperature_into(&text, d->at);
+                kel_text_add(&text, ": ");
+                kel__quote_into(&text, same->text, strlen(same->text));
+                kel_text_add(&text, " and ");
+                kel__quote_into(&text, d->text, strlen(d->text));
+                return kel__fail(err, KEL_E_DATA, 0, 0, &text);
             }
             if (same == NULL) {
                 memmove(&p->transitions[j + 1], &p->transitions[j], (p->transition_count - j) * sizeof *p->transitions);
@@ -335,10 +354,13 @@ check_steps(const kel__problem *p, kel_error *err)
                       kel__above(row->seen->from, 0, at) != kel__above(row->seen->to, row->side, at);
         }
         if (!crossed) {
-            char name[KEL_NUMBER_SIZE];
-            kel__temperature_name(name, at);
-            return kel_error_set(err, KEL_E_DATA, 0, 0, "transition at %s K ('%s'): no row crosses it, so its step cannot be fitted", name,
-                                 p->transitions[k].text);
+            kel_text text = KEL_TEXT_INIT;
+            kel_text_add(&text, "transition at ");
+            kel__temperature_into(&text, at);
+            kel_text_add(&text, " (");
+            kel__quote_into(&text, p->transitions[k].text, strlen(p->transitions[k].text));
+            kel_text_add(&text, "): no row crosses it, so its step cannot be fitted");
+            return kel__fail(err, KEL_E_DATA, 0, 0, &text);
         }
     }
     return KEL_OK;

@@ -152,6 +152,9 @@ void kel__factor_flush(kel__factor *factor);
 /* reduce.c: the reduced problem, by LAPACK. r has `height` rows and layout.unknowns + 1 columns, by columns, the last
    one the right-hand side. Fills parameters, every_piece, x, basis, triangle, residual, condition, rank. KEL_E_RANK. */
 kel_status kel__reduce(kel__solution *solution, kel_arena *memory, const double *r, size_t height, kel_error *err);
+/* 2-norm condition and rank of an upper triangle (n x n, by columns, `stride` apart) with its columns scaled to length 1.
+   KEL_E_RANGE: it is not finite. */
+kel_status kel__condition(double *condition, int *rank, const double *triangle, size_t stride, size_t n, kel_arena *memory, kel_error *err);
 /* modes.c needs these three. */
 /* R' y = b in place */
 void kel__solve_transposed(double *b, const double *triangle, size_t n);

@@ -249,6 +249,25 @@ kel__reduce(kel__solution *solution, kel_arena *memory, const double *r, size_t 
     return KEL_OK;
 }
 
+kel_status
+kel__condition(double *condition, int *rank, const double *triangle, size_t stride, size_t n, kel_arena *memory,
+               kel_error *err)
+{
+    double *a = kel_arena_take(memory, n * n, sizeof *a), *values = kel_arena_take(memory, n, sizeof *values);
+    if (a == NULL || values == NULL)
+        return no_memory(err);
+    for (size_t j = 0; j < n; j++)
+        memcpy(a + j * n, triangle + j * stride, (j + 1) * sizeof *a);
+    if (!all_finite(a, n * n))
+        return kel_error_set(err, KEL_E_RANGE, 0, 0, "numbers beyond the range of a double arise in the fit");
+    kel_status status = singular_values(values, NULL, a, n, n, memory, err);
+    if (status < 0)
+        return status;
+    *rank = count_rank(values, n, n);
+    *condition = values[n - 1] > 0 ? values[0] / values[n - 1] : (double)INFINITY;
+    return KEL_OK;
+}
+
 void
 kel__solve_transposed(double *b, const double *triangle, size_t n)
 {

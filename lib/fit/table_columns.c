@@ -8,21 +8,28 @@
 
 #include "blanks.h"
 
-#include <string.h>
+#include <stdlib.h>
 
+enum { NAMES_SHOWN = 12 };
+
+/* May the same thing not be said twice? */
 static bool
-same_label(const kel__heading *a, const kel__heading *b)
+is_unique(const kel__heading *h)
 {
-    return kel__same_words(a->label.p, a->label.n, b->label.p, b->label.n);
+    return h->quantity != KEL__UNCERTAINTY && h->quantity != KEL__NOTHING;
 }
 
-/* Would both say the same thing? Expansion and contraction do. */
-static bool
-same_meaning(const kel__heading *a, const kel__heading *b)
+/* An order in which those that say the same thing are equal; expansion and contraction do. */
+static int
+compare_meaning(const kel__heading *a, const kel__heading *b)
 {
-    if (kel__is_value(a->quantity) && kel__is_value(b->quantity))
-        return kel__kind_of(a->quantity) == kel__kind_of(b->quantity) && same_label(a, b);
-    return a->quantity == b->quantity && a->quantity != KEL__UNCERTAINTY && a->quantity != KEL__NOTHING;
+    bool value = kel__is_value(a->quantity);
+    if (value != kel__is_value(b->quantity))
+        return value ? 1 : -1;
+    if (!value)
+        return (int)a->quantity - (int)b->quantity;
+    int kinds = (int)kel__kind_of(a->quantity) - (int)kel__kind_of(b->quantity);
+    return kinds != 0 ? kinds : kel__compare_words(a->label.p, a->label.n, b->label.p, b->label.n);
 }
 
 static kel_status
@@ -113,13 +120,21 @@ name_column(kel_table *t, const char *option, kel_error *err)
 }
 
 /* What heads say yields to what was named. */
-static void
-overrule(struct kel__table *in)
+static kel_status
+overrule(struct kel__table *in, kel_error *err)
 {
-    for (size_t i = 0; i < in->sheet.raw.width; i++)
-        for (size_t j = 0; j < in->sheet.raw.width && !in->columns[i].named; j++)
-            if (in->columns[j].named && same_meaning(&in->columns[i].heading, &in->columns[j].heading))
+    size_t width = in->sheet.raw.width, count = 0;
+    const kel__heading **named = kel_arena_take(in->memory, width, sizeof *named);
+    if (named == NULL)
+        return kel__no_memory(err);
+    for (size_t j = 0; j < width; j++)
+        if (in->columns[j].named && is_unique(&in->columns[j].heading))
+            named[count++] = &in->columns[j].heading;
+    for (size_t i = 0; i < width; i++)
+        for (size_t j = 0; j < count && !in->columns[i].named; j++)
+            if (compare_meaning(&in->columns[i].heading, named[j]) == 0)
                 in->columns[i].heading = (kel__heading){ .quantity = KEL__NOTHING };
+    return KEL_OK;
 }
 
 static kel_status
@@ -133,12 +148,16 @@ warn_passed_over(kel_table *t, kel_error *err)
         const kel__file_column *c = &in->columns[i];
         if (c->heading.quantity != KEL__NOTHING)
             continue;
-        kel_text_add(&text, n++ == 0 ? " " : ", ");
+        if (n++ >= NAMES_SHOWN)
+            continue;
+        kel_text_add(&text, n == 1 ? " " : ", ");
         if (c->head.size > 0)
             kel__quote_into(&text, c->head.bytes, c->head.size);
         else
             kel_text_printf(&text, "number %zu", i + 1);
     }
+    if (n > NAMES_SHOWN)
+        kel_text_printf(&text, " and %zu more", n - NAMES_SHOWN);
     if (n > 0)
         return kel__warn(t, "passed-over", &text, in->sheet.head_line, n, err);
     kel_text_free(&text);
@@ -155,18 +174,37 @@ at_head(kel_error *err, kel_status code, const kel__file_column *c, const char *
     return kel__fail(err, code, c->head.line, c->head.line == 0 ? 0 : c->head.column, &text);
 }
 
+/* By meaning, then by place in the file. */
+static int
+compare_columns(const void *a, const void *b)
+{
+    const kel__file_column *x = *(const kel__file_column *const *)a, *y = *(const kel__file_column *const *)b;
+    int order = compare_meaning(&x->heading, &y->heading);
+    return order != 0 ? order : x < y ? -1 : x > y;
+}
+
+/* Sorted, so that a file with very many columns takes no long time. The first one in the file that repeats another is
+   reported. */
 static kel_status
 check_duplicates(const struct kel__table *in, kel_error *err)
 {
-    for (size_t j = 0; j < in->sheet.raw.width; j++)
-        for (size_t i = 0; i < j; i++)
-            if (same_meaning(&in->columns[i].heading, &in->columns[j].heading))
-                return at_head(err, KEL_E_DATA, &in->columns[j], "the column ",
-                               kel__is_value(in->columns[j].heading.quantity)
-                               ? " repeats the kind of another one: labels tell series apart, as in `coefficient: "
-                                 "lot 2 [1e-6/K]`"
-                               : " repeats another one");
-    return KEL_OK;
+    size_t count = 0;
+    const kel__file_column **sorted = kel_arena_take(in->memory, in->sheet.raw.width, sizeof *sorted), *first = NULL;
+    if (sorted == NULL)
+        return kel__no_memory(err);
+    for (size_t i = 0; i < in->sheet.raw.width; i++)
+        if (is_unique(&in->columns[i].heading))
+            sorted[count++] = &in->columns[i];
+    qsort(sorted, count, sizeof *sorted, compare_columns);
+    for (size_t i = 1; i < count; i++)
+        if (compare_meaning(&sorted[i - 1]->heading, &sorted[i]->heading) == 0 && (first == NULL || sorted[i] < first))
+            first = sorted[i];
+    if (first == NULL)
+        return KEL_OK;
+    return at_head(err, KEL_E_DATA, first, "the column ",
+                   kel__is_value(first->heading.quantity)
+                   ? " repeats the kind of another one: labels tell series apart, as in `coefficient: lot 2 [1e-6/K]`"
+                   : " repeats another one");
 }
 
 /* Which temperatures there are, and whether the values find those that they need. */
@@ -214,10 +252,8 @@ kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *er
         status = name_column(t, options->columns[i], err);
     if (status != KEL_OK)
         return status;
-    overrule(in);
-    if (foreign && (status = warn_passed_over(t, err)) != KEL_OK)
-        return status;
-    if ((status = check_duplicates(in, err)) != KEL_OK)
+    if ((status = overrule(in, err)) != KEL_OK || (foreign && (status = warn_passed_over(t, err)) != KEL_OK) ||
+        (status = check_duplicates(in, err)) != KEL_OK)
         return status;
     size_t *const roles[] = { [KEL__TEMPERATURE] = &in->temperature, [KEL__FROM] = &in->from, [KEL__TO] = &in->to,
                               [KEL__INTERVAL] = &in->interval, [KEL__SOURCE] = &in->source,

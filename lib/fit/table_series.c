@@ -33,12 +33,12 @@ at_head(kel_error *err, kel_status code, const kel__file_column *c, const char *
     return kel__fail(err, code, c->head.line, c->head.line == 0 ? 0 : c->head.column, &text);
 }
 
-/* Each label once, in order. */
+/* Each label once, in order; no more than a message has room for. */
 static void
 list_labels(kel_text *text, const struct kel__table *in)
 {
     size_t n = 0;
-    for (size_t i = 0; i < in->sheet.raw.width; i++) {
+    for (size_t i = 0; i < in->sheet.raw.width && text->size < sizeof((kel_error *)0)->message; i++) {
         const kel__file_column *c = &in->columns[i];
         bool first = labelled(c);
         for (size_t j = 0; j < i && first; j++)

@@ -8,6 +8,10 @@
 
 #include <math.h>
 
+#if defined __FAST_MATH__
+#error "kelspan needs IEEE arithmetic: do not compile with -ffast-math"
+#endif
+
 typedef struct kel__twofold { double hi, lo; } kel__twofold;
 
 static inline kel__twofold
@@ -56,6 +60,41 @@ kel__two_mul(kel__twofold a, kel__twofold b)
 {
     double p = a.hi * b.hi;
     return kel__two_quick(p, fma(a.hi, b.hi, -p) + (a.hi * b.lo + a.lo * b.hi));
+}
+
+/* The same with a double: cheaper. */
+static inline kel__twofold
+kel__two_mul_one(kel__twofold a, double b)
+{
+    double p = a.hi * b;
+    return kel__two_quick(p, fma(a.hi, b, -p) + a.lo * b);
+}
+
+/* sum + a b for sums of products: the high parts are added without error and all that falls off gathers in sum->lo, so
+   that n terms come out as if summed in twice the precision, within (n u)^2 sum |a b| with u = 2^-53 (T. Ogita, S. Rump,
+   S. Oishi, SIAM J. Sci. Comput. 26 (2005) 1955, Dot2). lo may grow beyond ulp(hi): kel__two_gathered ends the sum. */
+static inline void
+kel__two_gather(kel__twofold *sum, kel__twofold a, kel__twofold b)
+{
+    double p = a.hi * b.hi;
+    kel__twofold s = kel__two_sum(sum->hi, p);
+    sum->hi = s.hi;
+    sum->lo += s.lo + (fma(a.hi, b.hi, -p) + (a.hi * b.lo + a.lo * b.hi));
+}
+
+static inline void
+kel__two_gather_one(kel__twofold *sum, kel__twofold a, double b)
+{
+    double p = a.hi * b;
+    kel__twofold s = kel__two_sum(sum->hi, p);
+    sum->hi = s.hi;
+    sum->lo += s.lo + (fma(a.hi, b, -p) + a.lo * b);
+}
+
+static inline kel__twofold
+kel__two_gathered(kel__twofold sum)
+{
+    return kel__two_sum(sum.hi, sum.lo);
 }
 
 /* Long division, three partial quotients. */

@@ -84,6 +84,14 @@ fuzz_same_text(const kel_text *a, const kel_text *b, const char *what)
                  what, a->size, b->size, i, a->bytes, b->bytes);
 }
 
+/* The folder that holds tests/. */
+static inline const char *
+fuzz_source(void)
+{
+    const char *folder = getenv("KEL_SOURCE_DIR");
+    return folder == NULL || folder[0] == '\0' ? "." : folder;
+}
+
 /* The same bits, so that -0 is not 0 and a NaN equals itself. */
 static inline bool
 fuzz_same_number(double a, double b)

@@ -6,7 +6,6 @@
 #include "fuzz.h"
 
 #include <glob.h>
-#include <unistd.h>
 
 /* An exact block of the heap, so that a sanitizer sees a byte read beyond. */
 static void
@@ -47,7 +46,6 @@ give_pattern(const char *folder, const char *pattern)
 int
 main(int argc, char **argv)
 {
-    const char *source = getenv("KEL_SOURCE_DIR");
     size_t patterns = 0, bad = 0;
     char own[128];
     if (argc > 1) {
@@ -55,15 +53,13 @@ main(int argc, char **argv)
             give_file(argv[i]);
         return EXIT_SUCCESS;
     }
-    if (source == NULL || source[0] == '\0')
-        source = KEL_SOURCE_DIR;
     while (fuzz_data[patterns] != NULL)
         patterns++;
     snprintf(own, sizeof own, "tests/fuzz/corpus/%s/*", fuzz_name);
     printf("1..%zu\n", patterns + 1);
     for (size_t i = 0; i <= patterns; i++) {
         const char *pattern = i == 0 ? own : fuzz_data[i - 1];
-        size_t files = give_pattern(source, pattern);
+        size_t files = give_pattern(fuzz_source(), pattern);
         printf("%s %zu %s: %zu inputs\n", files > 0 ? "ok" : "not ok", i + 1, pattern, files);
         bad += files == 0;
     }

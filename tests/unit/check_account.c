@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The record's account of a fit: statistics by column, rows kept and left out, thinning of long tables, gaps, where the variance came from. */
+/* The record's account of a fit: statistics by column, rows kept and left out, thinning of long tables, gaps, where the
+   variance came from. */
 #include "unit.h"
 #include "problem.h"
 #include "by_hand.h"
@@ -33,13 +34,25 @@ START_TEST(long_tables)
     kel_column column = { .kind = KEL_KIND_COEFFICIENT, .resolution = 1e-10 };
     for (size_t i = 0; i < n; i++) {
         double t = 100 + 350 * (double)i / (double)n;
-        rows[i] = (kel_observation){ .kind = KEL_KIND_COEFFICIENT, .from = t, .to = t, .value = 1e-5 * (1 + t / 1000) + 1e-8 * error_of(i), .line = i + 2,
-            .printed_lo = t, .printed_hi = t, .left_out = i % 1000 == 0 ? "set aside" : NULL };
+        rows[i] = (kel_observation){ .kind = KEL_KIND_COEFFICIENT,
+                                     .from = t,
+                                     .to = t,
+                                     .value = 1e-5 * (1 + t / 1000) + 1e-8 * error_of(i),
+                                     .line = i + 2,
+                                     .printed_lo = t,
+                                     .printed_hi = t,
+                                     .left_out = i % 1000 == 0 ? "set aside" : NULL };
         out += i % 1000 == 0;
         beyond += i % 1000 != 0 && t > 400;
     }
-    kel_table table = { .name = "long.csv", .digest = "", .reference_temperature = NAN, .columns = &column, .column_count = 1, .observations = rows,
-        .observation_count = n, .rows = n };
+    kel_table table = { .name = "long.csv",
+                        .digest = "",
+                        .reference_temperature = NAN,
+                        .columns = &column,
+                        .column_count = 1,
+                        .observations = rows,
+                        .observation_count = n,
+                        .rows = n };
     kel_fit_options options = KEL_FIT_OPTIONS_INIT;
     const int degree = 1;
     options.degrees = &degree;
@@ -74,12 +87,17 @@ START_TEST(long_tables)
         const kel_fitted *r = &c->rows[k];
         size_t i = k * lengths[_i].every;
         kel_answer a;
-        KEL_REQUIRE(r->line == i + 2 && r->to == rows[i].to && r->observed == rows[i].value, "row %zu is of line %zu", k, r->line);
+        KEL_REQUIRE(r->line == i + 2 && r->to == rows[i].to && r->observed == rows[i].value, "row %zu is of line %zu",
+                    k, r->line);
         kel_record_coefficient(&a, record, r->to, NULL);
-        KEL_REQUIRE(fabs(r->fitted - a.value) <= 1e-20 && r->residual == r->observed - r->fitted, "row %zu: fitted %g", k, r->fitted);
-        const char *reason = rows[i].left_out != NULL ? "set aside" : r->to > 400 ? "outside the range asked for" : NULL;
+        KEL_REQUIRE(fabs(r->fitted - a.value) <= 1e-20 && r->residual == r->observed - r->fitted, "row %zu: fitted %g",
+                    k, r->fitted);
+        const char *reason = rows[i].left_out != NULL ? "set aside"
+                             : r->to > 400            ? "outside the range asked for"
+                                                      : NULL;
         KEL_REQUIRE((reason == NULL) == (r->left_out == NULL), "row %zu at %g K", k, r->to);
-        KEL_REQUIRE(reason == NULL ? r->u > 0 : strcmp(reason, r->left_out) == 0 && isnan(r->u), "row %zu: %s", k, r->left_out);
+        KEL_REQUIRE(reason == NULL ? r->u > 0 : strcmp(reason, r->left_out) == 0 && isnan(r->u), "row %zu: %s", k,
+                    r->left_out);
     }
     kel_record_free(record);
 }
@@ -94,14 +112,94 @@ static const struct {
     kel_variance whole, columns[2];
     bool deviation, chi2, scatter_known;
 } variances[] = {
-    { "nothing stated", KEL_KIND_COEFFICIENT, 20, false, false, false, KEL_VARIANCE_ESTIMATED, { KEL_VARIANCE_ESTIMATED, KEL_VARIANCE_ESTIMATED }, true, false, true },
-    { "mixed kinds", KEL_KIND_EXPANSION, 20, false, false, false, KEL_VARIANCE_ESTIMATED, { KEL_VARIANCE_ESTIMATED, KEL_VARIANCE_ESTIMATED }, false, false, true },
-    { "all stated", KEL_KIND_COEFFICIENT, 20, true, true, false, KEL_VARIANCE_GIVEN, { KEL_VARIANCE_GIVEN, KEL_VARIANCE_GIVEN }, true, true, true },
-    { "all stated, mixed kinds", KEL_KIND_MEAN, 20, true, true, false, KEL_VARIANCE_GIVEN, { KEL_VARIANCE_GIVEN, KEL_VARIANCE_GIVEN }, false, true, true },
-    { "one column stated", KEL_KIND_COEFFICIENT, 20, true, false, false, KEL_VARIANCE_MIXED, { KEL_VARIANCE_GIVEN, KEL_VARIANCE_ESTIMATED }, true, true, true },
-    { "half a column stated", KEL_KIND_EXPANSION, 20, true, false, true, KEL_VARIANCE_MIXED, { KEL_VARIANCE_MIXED, KEL_VARIANCE_ESTIMATED }, false, true, true },
-    { "as many parameters as rows", KEL_KIND_COEFFICIENT, 1, false, false, false, KEL_VARIANCE_NONE, { KEL_VARIANCE_NONE, KEL_VARIANCE_NONE }, false, false, false },
-    { "as many, but stated", KEL_KIND_COEFFICIENT, 1, true, true, false, KEL_VARIANCE_GIVEN, { KEL_VARIANCE_GIVEN, KEL_VARIANCE_GIVEN }, false, true, true },
+    { "nothing stated",
+      KEL_KIND_COEFFICIENT,
+      20,
+      false,
+      false,
+      false,
+      KEL_VARIANCE_ESTIMATED,
+      { KEL_VARIANCE_ESTIMATED, KEL_VARIANCE_ESTIMATED },
+      true,
+      false,
+      true },
+    { "mixed kinds",
+      KEL_KIND_EXPANSION,
+      20,
+      false,
+      false,
+      false,
+      KEL_VARIANCE_ESTIMATED,
+      { KEL_VARIANCE_ESTIMATED, KEL_VARIANCE_ESTIMATED },
+      false,
+      false,
+      true },
+    { "all stated",
+      KEL_KIND_COEFFICIENT,
+      20,
+      true,
+      true,
+      false,
+      KEL_VARIANCE_GIVEN,
+      { KEL_VARIANCE_GIVEN, KEL_VARIANCE_GIVEN },
+      true,
+      true,
+      true },
+    { "all stated, mixed kinds",
+      KEL_KIND_MEAN,
+      20,
+      true,
+      true,
+      false,
+      KEL_VARIANCE_GIVEN,
+      { KEL_VARIANCE_GIVEN, KEL_VARIANCE_GIVEN },
+      false,
+      true,
+      true },
+    { "one column stated",
+      KEL_KIND_COEFFICIENT,
+      20,
+      true,
+      false,
+      false,
+      KEL_VARIANCE_MIXED,
+      { KEL_VARIANCE_GIVEN, KEL_VARIANCE_ESTIMATED },
+      true,
+      true,
+      true },
+    { "half a column stated",
+      KEL_KIND_EXPANSION,
+      20,
+      true,
+      false,
+      true,
+      KEL_VARIANCE_MIXED,
+      { KEL_VARIANCE_MIXED, KEL_VARIANCE_ESTIMATED },
+      false,
+      true,
+      true },
+    { "as many parameters as rows",
+      KEL_KIND_COEFFICIENT,
+      1,
+      false,
+      false,
+      false,
+      KEL_VARIANCE_NONE,
+      { KEL_VARIANCE_NONE, KEL_VARIANCE_NONE },
+      false,
+      false,
+      false },
+    { "as many, but stated",
+      KEL_KIND_COEFFICIENT,
+      1,
+      true,
+      true,
+      false,
+      KEL_VARIANCE_GIVEN,
+      { KEL_VARIANCE_GIVEN, KEL_VARIANCE_GIVEN },
+      false,
+      true,
+      true },
 };
 
 START_TEST(where_the_variance_came_from)
@@ -113,9 +211,15 @@ START_TEST(where_the_variance_came_from)
     for (size_t i = 0; i < variances[_i].rows; i++) {
         double t = 310 + 10 * (double)i, w = t - 293.15, a = 1e-5 + 1e-8 * w, e = 1e-5 * w + 5e-9 * w * w;
         bool coefficient = variances[_i].second == KEL_KIND_COEFFICIENT, mean = variances[_i].second == KEL_KIND_MEAN;
-        double u = variances[_i].first_stated && (!variances[_i].half || i % 2 == 0) ? 3e-8 : 0, v = coefficient ? 4e-8 : mean ? 4e-8 : 4e-6;
+        double u = variances[_i].first_stated && (!variances[_i].half || i % 2 == 0) ? 3e-8 : 0, v = coefficient ? 4e-8
+                                                                                                     : mean      ? 4e-8
+                                                                                                                 : 4e-6;
         by_hand_row(&h, 0, t, t, a + 3e-8 * error_of(i), u, 0);
-        by_hand_row(&h, 1, coefficient ? t + 5 : 293.15, coefficient ? t + 5 : t, (coefficient ? a + 5e-8 : mean ? e / w : e) + v * error_of(i + 50),
+        by_hand_row(&h, 1, coefficient ? t + 5 : 293.15, coefficient ? t + 5 : t,
+                    (coefficient ? a + 5e-8
+                     : mean      ? e / w
+                                 : e) +
+                        v * error_of(i + 50),
                     variances[_i].second_stated ? v : 0, 0);
     }
     kel_fit_options options = KEL_FIT_OPTIONS_INIT;
@@ -128,13 +232,16 @@ START_TEST(where_the_variance_came_from)
     ck_assert_msg(c->variance == variances[_i].whole, "%s: %s", label, kel_variance_name(c->variance));
     double freedom = 0;
     for (size_t i = 0; i < 2; i++) {
-        ck_assert_msg(c->columns[i].variance == variances[_i].columns[i], "%s, column %zu: %s", label, i, kel_variance_name(c->columns[i].variance));
-        ck_assert_msg(isnan(c->columns[i].scatter) == (c->columns[i].variance != KEL_VARIANCE_ESTIMATED && c->columns[i].variance != KEL_VARIANCE_MIXED),
+        ck_assert_msg(c->columns[i].variance == variances[_i].columns[i], "%s, column %zu: %s", label, i,
+                      kel_variance_name(c->columns[i].variance));
+        ck_assert_msg(isnan(c->columns[i].scatter) == (c->columns[i].variance != KEL_VARIANCE_ESTIMATED &&
+                                                       c->columns[i].variance != KEL_VARIANCE_MIXED),
                       "%s, column %zu: s = %g", label, i, c->columns[i].scatter);
         freedom += c->columns[i].degrees_of_freedom;
     }
     ck_assert_abs_for(label, freedom, (double)(2 * variances[_i].rows) - 2, 1e-9, "1");
-    ck_assert_msg(isnan(c->residual_standard_deviation) == !variances[_i].deviation, "%s: %g", label, c->residual_standard_deviation);
+    ck_assert_msg(isnan(c->residual_standard_deviation) == !variances[_i].deviation, "%s: %g", label,
+                  c->residual_standard_deviation);
     ck_assert_msg(isnan(c->chi2) == !variances[_i].chi2, "%s: chi2 = %g", label, c->chi2);
     ck_assert(c->scatter_known == variances[_i].scatter_known);
     double chi2 = 0;
@@ -159,7 +266,8 @@ START_TEST(shared_terms)
     by_hand h;
     by_hand_start(&h, "shared", 293.15, KEL_BASE_REFERENCE);
     by_hand_column(&h, KEL_KIND_COEFFICIENT, 1e-9);
-    for (size_t i = 0; i < 20; i++) /* two halves that differ by 2 %: each table's shared error would take half of it, one table's cannot */
+    for (size_t i = 0; i < 20;
+         i++) /* two halves that differ by 2 %: each table's shared error would take half of it, one table's cannot */
         by_hand_row(&h, 0, 100 + 10 * (double)i, 100 + 10 * (double)i, 1e-5 + 1e-8 * error_of(i), 1e-8, 0);
     by_hand k = h;
     k.table.name = "second";
@@ -183,7 +291,8 @@ START_TEST(shared_terms)
     for (size_t i = 0; i < 40; i++) {
         const kel_fitted *r = &c->rows[i];
         ck_assert_abs(r->fitted + r->shared_term + r->residual, r->observed, 4e-21, "1/K");
-        ck_assert_double_eq(r->shared_term, c->rows[i < 20 ? 0 : 20].shared_term); /* a constant curve: the same for a whole table */
+        ck_assert_double_eq(r->shared_term,
+                            c->rows[i < 20 ? 0 : 20].shared_term); /* a constant curve: the same for a whole table */
         chi2 += r->residual * r->residual / (r->u * r->u);
         sum[i / 20] += r->residual;
     }
@@ -263,7 +372,8 @@ END_TEST
 
 START_TEST(last_component)
 {
-    static const char *const names[][2] = { { "a/b.csv", "b.csv" }, { "b.csv", "b.csv" }, { "/b.csv", "b.csv" }, { "a/", "a/" }, { "", "" }, { "a/b/c", "c" } };
+    static const char *const names[][2] = { { "a/b.csv", "b.csv" }, { "b.csv", "b.csv" }, { "/b.csv", "b.csv" },
+                                            { "a/", "a/" },         { "", "" },           { "a/b/c", "c" } };
     for (size_t i = 0; i < sizeof names / sizeof names[0]; i++)
         ck_assert_str_eq(kel__last_component(names[i][0]), names[i][1]);
 }

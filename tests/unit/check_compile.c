@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* From a solution to a record: modes with their kinds and labels, the spread between lots inside its range and outside, steps, what is refused. */
+/* From a solution to a record: modes with their kinds and labels, the spread between lots inside its range and outside,
+   steps, what is refused. */
 #include "unit.h"
 #include "problem.h"
 #include "by_hand.h"
@@ -102,7 +103,8 @@ START_TEST(kinds_and_labels)
 }
 END_TEST
 
-/* One lot clause, a temperature, and whether the clause holds there. Beyond the pieces, which reach from 100 K to 500 K, the end pieces go on. */
+/* One lot clause, a temperature, and whether the clause holds there. Beyond the pieces, which reach from 100 K to 500
+   K, the end pieces go on. */
 static const struct { const char *label; double lo, hi, at; bool inside; } lots[] = {
     { "everywhere", -INFINITY, INFINITY, 300, true },
     { "everywhere, extrapolated", -INFINITY, INFINITY, 600, true },
@@ -141,7 +143,8 @@ START_TEST(lot_inside_its_range)
     /* 120 K to 480 K: what the clause covers of it. */
     double lo = fmax(120, lots[_i].lo), hi = fmin(480, lots[_i].hi);
     double part = lo < hi ? integral(without, lo, hi).value : 0, width = fmax(hi - lo, 0);
-    ck_assert_abs_for(lots[_i].label, integral(record, 120, 480).u_lot, hypot(0.01 * part, 3e-7 * width), 1e-13 * 1e-2, "1");
+    ck_assert_abs_for(lots[_i].label, integral(record, 120, 480).u_lot, hypot(0.01 * part, 3e-7 * width), 1e-13 * 1e-2,
+                      "1");
     kel_record_free(record);
     kel_record_free(without);
 }
@@ -152,7 +155,8 @@ START_TEST(lots_of_two_ranges)
 {
     by_hand h;
     plain(&h, "lot");
-    kel_stated lot[] = { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL }, { 0.03, 0, KEL_DIM_PER_KELVIN, 250, 500, NULL } };
+    kel_stated lot[] = { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL },
+                         { 0.03, 0, KEL_DIM_PER_KELVIN, 250, 500, NULL } };
     add_lot(&h, lot, 2, "1 % from 100 K to 250 K; 3 % from 250 K to 500 K");
     kel_record *record = fit(&h, 3, NAN, -1);
     ck_assert_uint_eq(kel_record_content(record)->piece_count, 2);
@@ -237,7 +241,8 @@ START_TEST(unknown_scatter)
         ck_assert_abs(a.value, 1.2e-5, 1e-19, "1/K");
         if (shared) {
             ck_assert_int_eq(c->modes[0].kind, KEL_MODE_SHARED);
-            ck_assert_lre(a.u, 0.03 * 1.2e-5, 9); /* the prior less what the rows take from it: their curve follows the error wholly */
+            ck_assert_lre(a.u, 0.03 * 1.2e-5,
+                          9); /* the prior less what the rows take from it: their curve follows the error wholly */
             ck_assert_double_eq(a.u_fit, 0);
         } else {
             ck_assert(isnan(a.u));
@@ -247,8 +252,8 @@ START_TEST(unknown_scatter)
 }
 END_TEST
 
-/* A length L/L(r) stated for the step, whatever base and reference the record has: between just below the transition and at it the part grows by that,
-   in units of its length at the table's reference. */
+/* A length L/L(r) stated for the step, whatever base and reference the record has: between just below the transition
+   and at it the part grows by that, in units of its length at the table's reference. */
 static const struct { const char *label; int base; double table, record; } stated[] = {
     { "reference length", KEL_BASE_REFERENCE, 250, 250 },
     { "reference length, other reference", KEL_BASE_REFERENCE, 250, 480 },
@@ -279,7 +284,8 @@ START_TEST(stated_steps)
     ck_assert_int_ge(kel_record_answer(&a, record, &q, NULL), 0);
     q.to = below;
     ck_assert_int_ge(kel_record_answer(&b, record, &q, NULL), 0);
-    ck_assert_abs_for(stated[_i].label, a.value - b.value, length, 2e-15, "L(r)"); /* rounding of both, and alpha over one ulp of T */
+    ck_assert_abs_for(stated[_i].label, a.value - b.value, length, 2e-15,
+                      "L(r)"); /* rounding of both, and alpha over one ulp of T */
     ck_assert_abs_for(stated[_i].label, b.value, expansion(r, at) - (r >= at ? length : 0), 1e-12, "1");
     kel_record_free(record);
 }
@@ -321,5 +327,6 @@ loops(void)
     return c;
 }
 
-KEL_TCASE(single, kinds_and_labels, lots_of_two_ranges, lot_of_a_step, lots_that_are_refused, unknown_scatter, fitted_step)
+KEL_TCASE(single, kinds_and_labels, lots_of_two_ranges, lot_of_a_step, lots_that_are_refused, unknown_scatter,
+          fitted_step)
 KEL_TEST_MAIN("compile", loops, single)

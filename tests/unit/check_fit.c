@@ -252,6 +252,26 @@ START_TEST(refuses)
 }
 END_TEST
 
+static const double no_references[] = { INFINITY, -INFINITY, -1e-300 };
+
+START_TEST(a_reference_is_a_temperature)
+{
+    by_hand h;
+    by_hand_start(&h, "reference", NAN, KEL_BASE_REFERENCE);
+    by_hand_column(&h, KEL_KIND_COEFFICIENT, 1e-8);
+    for (int i = 0; i < 5; i++)
+        by_hand_row(&h, 0, 100 + 10 * i, 100 + 10 * i, 1e-5, 0, 0);
+    kel_fit_options options = KEL_FIT_OPTIONS_INIT;
+    options.reference = no_references[_i];
+    tables[0] = &h.table;
+    kel_record *record;
+    ck_assert_int_eq(kel_fit(&record, NULL, tables, 1, &options, NULL), KEL_E_ARGUMENT);
+    options.reference = 0;
+    ck_assert_int_eq(kel_fit(&record, NULL, tables, 1, &options, NULL), KEL_OK);
+    kel_record_free(record);
+}
+END_TEST
+
 START_TEST(few_rows)
 {
     for (size_t n = 1; n <= 3; n++) {
@@ -335,6 +355,7 @@ loops(void)
     tcase_add_loop_test(c, recovers_across_bases, 0, KEL_LENGTH(bases));
     tcase_add_loop_test(c, joins_are_as_smooth_as_asked, 0, KEL_LENGTH(joins));
     tcase_add_loop_test(c, refuses, 0, KEL_LENGTH(refusals));
+    tcase_add_loop_test(c, a_reference_is_a_temperature, 0, KEL_LENGTH(no_references));
     return c;
 }
 

@@ -1,16 +1,26 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The unknowns of a fit: how many there are and where they stand, rows of continuity, nodes that integrate every piece exactly. */
+/* The unknowns of a fit: how many there are and where they stand, rows of continuity, nodes that integrate every piece
+   exactly. */
 #include "unit.h"
 #include "problem.h"
 #include "by_hand.h"
 
-typedef struct set { by_hand hand; const kel_table *tables[1]; kel_fit_options options; kel__problem p; kel__layout l; kel_arena *memory; kel_error err; } set;
+typedef struct set {
+    by_hand hand;
+    const kel_table *tables[1];
+    kel_fit_options options;
+    kel__problem p;
+    kel__layout l;
+    kel_arena *memory;
+    kel_error err;
+} set;
 
 static const double joins[] = { 150, 400 };
 
 /* Rows at 100 K and 500 K, joins as asked; two expansions let a step be fitted. */
 static kel_status
-make(set *s, const int *degrees, size_t join_count, const int *continuity, kel_step_kind below, kel_step_kind inside, kel_step_kind above)
+make(set *s, const int *degrees, size_t join_count, const int *continuity, kel_step_kind below, kel_step_kind inside,
+     kel_step_kind above)
 {
     by_hand *h = &s->hand;
     by_hand_start(h, "hand", 293, KEL_BASE_REFERENCE);
@@ -52,12 +62,15 @@ static const struct {
 START_TEST(unknowns)
 {
     set s;
-    ck_assert_int_eq(make(&s, counts[_i].degrees, counts[_i].joins, counts[_i].continuity, KEL_STEP_NONE, counts[_i].inside, KEL_STEP_STATED), KEL_OK);
+    ck_assert_int_eq(make(&s, counts[_i].degrees, counts[_i].joins, counts[_i].continuity, KEL_STEP_NONE,
+                          counts[_i].inside, KEL_STEP_STATED),
+                     KEL_OK);
     const char *label = counts[_i].label;
     const kel__layout *l = &s.l;
-    ck_assert_msg(l->piece_count == counts[_i].pieces && l->coefficients == counts[_i].coefficients && l->steps == counts[_i].steps &&
-                      l->condition_count == counts[_i].conditions,
-                  "%s: %zu pieces, %zu coefficients, %zu steps, %zu conditions", label, l->piece_count, l->coefficients, l->steps, l->condition_count);
+    ck_assert_msg(l->piece_count == counts[_i].pieces && l->coefficients == counts[_i].coefficients &&
+                      l->steps == counts[_i].steps && l->condition_count == counts[_i].conditions,
+                  "%s: %zu pieces, %zu coefficients, %zu steps, %zu conditions", label, l->piece_count, l->coefficients,
+                  l->steps, l->condition_count);
     ck_assert_uint_eq(l->curve, l->coefficients + l->steps);
     ck_assert_uint_eq(l->unknowns, l->curve);
     ck_assert_double_eq(l->pieces[0].from, 100);
@@ -97,13 +110,15 @@ START_TEST(shared_errors_come_last)
 }
 END_TEST
 
-/* T_n(1) = 1, T_n'(1) = n^2, T_n''(1) = n^2 (n^2 - 1)/3, at -1 with sign (-1)^(n + d); the right piece is 2.5 times as wide as the left. */
+/* T_n(1) = 1, T_n'(1) = n^2, T_n''(1) = n^2 (n^2 - 1)/3, at -1 with sign (-1)^(n + d); the right piece is 2.5 times as
+   wide as the left. */
 START_TEST(rows_of_continuity)
 {
     set s;
     const int degrees[] = { 3, 4, 1 }, continuity[] = { KEL_CONTINUITY_NONE, KEL_CONTINUITY_CURVATURE };
     ck_assert_int_eq(make(&s, degrees, 2, continuity, KEL_STEP_NONE, KEL_STEP_NONE, KEL_STEP_NONE), KEL_OK);
-    static const double left[3][5] = { { 1, 1, 1, 1, 1 }, { 0, 1, 4, 9, 16 }, { 0, 0, 4, 24, 80 } }, right[3][2] = { { -1, 1 }, { 0, -2.5 }, { 0, 0 } };
+    static const double left[3][5] = { { 1, 1, 1, 1, 1 }, { 0, 1, 4, 9, 16 }, { 0, 0, 4, 24, 80 } },
+                        right[3][2] = { { -1, 1 }, { 0, -2.5 }, { 0, 0 } };
     ck_assert_uint_eq(s.l.condition_count, 3);
     for (size_t d = 0; d < 3; d++)
         for (size_t j = 0; j < 11; j++) {

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The generic polynomial fit: polynomials given exactly, coefficients and covariance against normal equations in 33 digits, refusals. */
+/* The generic polynomial fit: polynomials given exactly, coefficients and covariance against normal equations in 33
+   digits, refusals. */
 #include "unit.h"
 #include "quad.h"
 
@@ -18,7 +19,14 @@ error_of(size_t i)
 }
 
 /* Points lo..hi of y = sum_j c_j x^j with small integers c, whose values are whole numbers below 2^53: exact data. */
-static const struct { const char *label; double lo, step; size_t n; int degree; bool constant; double c[MOST]; } exact[] = {
+static const struct {
+    const char *label;
+    double lo, step;
+    size_t n;
+    int degree;
+    bool constant;
+    double c[MOST];
+} exact[] = {
     { "constant", 3, 1, 5, 0, true, { 7 } },
     { "line", -10, 1, 21, 1, true, { 3, -2 } },
     { "line through the origin", 60, 1, 11, 1, false, { 4 } },
@@ -30,8 +38,9 @@ static const struct { const char *label; double lo, step; size_t n; int degree; 
     { "quadratic without constant, both signs", -8, 2, 9, 2, false, { 11, 13 } },
 };
 
-/* The solver's backward error is of order eps |y|; on coefficient j it shows magnified by what turns Chebyshev coefficients on lo..hi into powers: at most
-   (1 + |middle|/half)^n 2^n/half^j. 32 covers the count of operations for these sizes. */
+/* The solver's backward error is of order eps |y|; on coefficient j it shows magnified by what turns Chebyshev
+   coefficients on lo..hi into powers: at most (1 + |middle|/half)^n 2^n/half^j. 32 covers the count of operations for
+   these sizes. */
 START_TEST(exact_polynomials)
 {
     double x[N + 1], y[N + 1], coefficient[MOST], largest = 0;
@@ -47,13 +56,16 @@ START_TEST(exact_polynomials)
     }
     kel_ls_result r = { .coefficient = coefficient };
     kel_error err = { 0 };
-    ck_assert_msg(kel_ls_polynomial(&r, x, y, NULL, n, exact[_i].degree, exact[_i].constant, false, &err) == KEL_OK, "%s: %s", exact[_i].label, err.message);
+    ck_assert_msg(kel_ls_polynomial(&r, x, y, NULL, n, exact[_i].degree, exact[_i].constant, false, &err) == KEL_OK,
+                  "%s: %s", exact[_i].label, err.message);
     double middle = (x[0] + x[n - 1]) / 2, half = (x[n - 1] - x[0]) / 2;
     if (k == 1)
         half = fmax(half, 1);
     for (size_t j = 0; j < k; j++) {
-        double magnified = pow(2 * (1 + fabs(middle) / half), exact[_i].degree) / pow(half, (double)j + !exact[_i].constant);
-        ck_assert_abs_for(exact[_i].label, coefficient[j], exact[_i].c[j], 32 * DBL_EPSILON * largest * fmax(magnified, 1e-3), "1");
+        double magnified =
+            pow(2 * (1 + fabs(middle) / half), exact[_i].degree) / pow(half, (double)j + !exact[_i].constant);
+        ck_assert_abs_for(exact[_i].label, coefficient[j], exact[_i].c[j],
+                          32 * DBL_EPSILON * largest * fmax(magnified, 1e-3), "1");
     }
     ck_assert_uint_eq(r.degrees_of_freedom, n - k);
     ck_assert(isnan(r.chi2));
@@ -118,17 +130,20 @@ START_TEST(normal_equations)
 
     kel_ls_result r = { .coefficient = coefficient, .standard_deviation = deviation, .covariance = covariance };
     const char *label = random_sets[_i].label;
-    ck_assert_int_eq(kel_ls_polynomial(&r, x, y, random_sets[_i].u ? u : NULL, N, random_sets[_i].degree, random_sets[_i].constant, random_sets[_i].scale, NULL),
+    ck_assert_int_eq(kel_ls_polynomial(&r, x, y, random_sets[_i].u ? u : NULL, N, random_sets[_i].degree,
+                                       random_sets[_i].constant, random_sets[_i].scale, NULL),
                      KEL_OK);
-    /* Condition times eps of the best possible; the powers' own condition on lo..hi, not the basis', sets the scale of a coefficient's error: compare
-       with its standard deviation, whose size in units of the residuals' is just that. */
+    /* Condition times eps of the best possible; the powers' own condition on lo..hi, not the basis', sets the scale of
+       a coefficient's error: compare with its standard deviation, whose size in units of the residuals' is just
+       that. */
     for (size_t j = 0; j < k; j++) {
         double s = (double)quad_sqrt(m[j * k + j] * factor);
         ck_assert_abs_for(label, (coefficient[j] - (double)want[j]) / s, 0, 1e-11, "standard deviations");
         ck_assert_lre_for(label, deviation[j], s, 11);
         for (size_t l = 0; l < k; l++) {
             double scale = (double)quad_sqrt(m[j * k + j] * m[l * k + l] * factor * factor);
-            ck_assert_abs_for(label, (covariance[j * k + l] - (double)(m[j * k + l] * factor)) / scale, 0, 1e-11, "of the standard deviations' product");
+            ck_assert_abs_for(label, (covariance[j * k + l] - (double)(m[j * k + l] * factor)) / scale, 0, 1e-11,
+                              "of the standard deviations' product");
         }
     }
     ck_assert_lre_for(label, r.residual_sum_of_squares, (double)rss, 12);
@@ -161,9 +176,19 @@ START_TEST(no_degrees_of_freedom)
 }
 END_TEST
 
-static const double one_to_four[] = { 1, 2, 3, 4 }, same[] = { 5, 5, 5, 5 }, zeros[] = { 0, 0, 0, 0 }, nan_third[] = { 1, 2, NAN, 4 },
-    infinite_last[] = { 1, 2, 3, INFINITY }, zero_second[] = { 1, 0, 1, 1 }, negative_first[] = { -1, 1, 1, 1 }, huge[] = { -1e308, 1e308, 0, 1 };
-static const struct { const char *label; const double *x, *y, *u; size_t n; int degree; bool constant; kel_status status; size_t index; } refusals[] = {
+static const double one_to_four[] = { 1, 2, 3, 4 }, same[] = { 5, 5, 5, 5 }, zeros[] = { 0, 0, 0, 0 },
+                    nan_third[] = { 1, 2, NAN, 4 }, infinite_last[] = { 1, 2, 3, INFINITY },
+                    zero_second[] = { 1, 0, 1, 1 }, negative_first[] = { -1, 1, 1, 1 },
+                    huge[] = { -1e308, 1e308, 0, 1 };
+static const struct {
+    const char *label;
+    const double *x, *y, *u;
+    size_t n;
+    int degree;
+    bool constant;
+    kel_status status;
+    size_t index;
+} refusals[] = {
     { "x not a number", nan_third, one_to_four, NULL, 4, 1, true, KEL_E_ARGUMENT, 2 },
     { "y infinite", one_to_four, infinite_last, NULL, 4, 1, true, KEL_E_ARGUMENT, 3 },
     { "u zero", one_to_four, one_to_four, zero_second, 4, 1, true, KEL_E_ARGUMENT, 1 },
@@ -189,7 +214,8 @@ START_TEST(refuses)
     double c[KEL_DEGREE_MAX + 2];
     kel_ls_result r = { .coefficient = c };
     kel_error err = { .line = 0 };
-    kel_status status = kel_ls_polynomial(&r, refusals[_i].x, refusals[_i].y, refusals[_i].u, refusals[_i].n, refusals[_i].degree, refusals[_i].constant, false, &err);
+    kel_status status = kel_ls_polynomial(&r, refusals[_i].x, refusals[_i].y, refusals[_i].u, refusals[_i].n,
+                                          refusals[_i].degree, refusals[_i].constant, false, &err);
     ck_assert_msg(status == refusals[_i].status, "%s: status %d (%s)", refusals[_i].label, status, err.message);
     ck_assert_msg(err.line == refusals[_i].index, "%s: index %zu", refusals[_i].label, err.line);
 }

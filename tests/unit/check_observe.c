@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* From tables to rows: what takes part, range and hull, reference and base, joins, sides at transitions, steps, widths, shared errors. */
+/* From tables to rows: what takes part, range and hull, reference and base, joins, sides at transitions, steps, widths,
+   shared errors. */
 #include "unit.h"
 #include "problem.h"
 #include "by_hand.h"
@@ -81,7 +82,8 @@ START_TEST(range_keeps_rows)
 }
 END_TEST
 
-/* An expansion leans on its reference: the pieces must cover it, the validity range is clipped to what was asked for. */
+/* An expansion leans on its reference: the pieces must cover it, the validity range is clipped to what was asked
+   for. */
 START_TEST(range_clips_the_hull)
 {
     set s;
@@ -142,9 +144,11 @@ START_TEST(reference)
     }
     s.options.reference = references[_i].asked;
     make_well(&s, 2);
-    ck_assert_msg(s.p.reference == references[_i].want && s.p.reference_defaulted == references[_i].defaulted, "%s: %g K", references[_i].label, s.p.reference);
+    ck_assert_msg(s.p.reference == references[_i].want && s.p.reference_defaulted == references[_i].defaulted,
+                  "%s: %g K", references[_i].label, s.p.reference);
     for (size_t i = 0; i < 2; i++) /* a table that says nothing refers to what the record does */
-        ck_assert_double_eq(kel__table_reference(&s.p, i), isnan(references[_i].tables[i]) ? references[_i].want : references[_i].tables[i]);
+        ck_assert_double_eq(kel__table_reference(&s.p, i),
+                            isnan(references[_i].tables[i]) ? references[_i].want : references[_i].tables[i]);
     kel_arena_free(s.memory);
 }
 END_TEST
@@ -199,7 +203,8 @@ START_TEST(sides)
     by_hand_transition(&s.hand[0], 300, KEL_STEP_NONE, 0);
     make_well(&s, 1);
     for (size_t i = 0; i < orders[_i].n; i++)
-        ck_assert_msg(s.p.rows[i].side == orders[_i].side[i], "%s: row %zu at %g K has side %d", orders[_i].label, i + 1, orders[_i].t[i], s.p.rows[i].side);
+        ck_assert_msg(s.p.rows[i].side == orders[_i].side[i], "%s: row %zu at %g K has side %d", orders[_i].label,
+                      i + 1, orders[_i].t[i], s.p.rows[i].side);
     kel_arena_free(s.memory);
 }
 END_TEST
@@ -244,8 +249,10 @@ static const struct {
     { "round it, one continuity", 2, 1, { 200, 400 }, { 2 }, KEL_OK, 3, { 200, 300, 400 }, { 2, -1, 2 } },
     { "round it, two continuities", 2, 2, { 200, 400 }, { 1, 2 }, KEL_OK, 3, { 200, 300, 400 }, { 1, -1, 2 } },
     { "equal to it", 1, 1, { 300 }, { 2 }, KEL_OK, 1, { 300 }, { -1 } },
-    { "equal to it, others keep their continuity", 3, 3, { 200, 300, 400 }, { 0, 1, 2 }, KEL_OK, 3, { 200, 300, 400 }, { 0, -1, 2 } },
-    { "just inside the hull", 2, 0, { 100.00000000000001, 499.99999999999994 }, { 0 }, KEL_OK, 3, { 100.00000000000001, 300, 499.99999999999994 }, { 0, -1, 0 } },
+    { "equal to it, others keep their continuity", 3, 3, { 200, 300, 400 }, { 0, 1, 2 },
+      KEL_OK, 3, { 200, 300, 400 }, { 0, -1, 2 } },
+    { "just inside the hull", 2, 0, { 100.00000000000001, 499.99999999999994 }, { 0 },
+      KEL_OK, 3, { 100.00000000000001, 300, 499.99999999999994 }, { 0, -1, 0 } },
     { "at the hull's upper end", 1, 0, { 500 }, { 0 }, KEL_E_DATA, 0, { 0 }, { 0 } },
     { "outside", 1, 0, { 501 }, { 0 }, KEL_E_DATA, 0, { 0 }, { 0 } },
     { "below", 1, 0, { 50 }, { 0 }, KEL_E_DATA, 0, { 0 }, { 0 } },
@@ -274,7 +281,8 @@ START_TEST(where_pieces_meet)
         ck_assert_msg(s.p.join_count == joins[_i].all, "%s: %zu joins", joins[_i].label, s.p.join_count);
         for (size_t i = 0; i < joins[_i].all; i++) {
             ck_assert_double_eq(s.p.joins[i], joins[_i].at[i]);
-            ck_assert_msg(s.p.continuity[i] == joins[_i].smooth[i], "%s: continuity %d at join %zu", joins[_i].label, s.p.continuity[i], i);
+            ck_assert_msg(s.p.continuity[i] == joins[_i].smooth[i], "%s: continuity %d at join %zu", joins[_i].label,
+                          s.p.continuity[i], i);
         }
         ck_assert_uint_eq(s.p.transition_count, 3); /* those that make no piece are kept, in order */
         ck_assert_double_eq(s.p.transitions[0].at, 100);
@@ -287,7 +295,14 @@ START_TEST(where_pieces_meet)
 END_TEST
 
 /* What two tables say of the transition at 300 K, and what of it stays. */
-static const struct { const char *label; kel_step_kind a, b; double length_a, length_b; kel_status status; kel_step_kind step; double length, reference; } merged[] = {
+static const struct {
+    const char *label;
+    kel_step_kind a, b;
+    double length_a, length_b;
+    kel_status status;
+    kel_step_kind step;
+    double length, reference;
+} merged[] = {
     { "both only name it", KEL_STEP_NONE, KEL_STEP_NONE, 0, 0, KEL_OK, KEL_STEP_NONE, 0, 0 },
     { "the second knows the length", KEL_STEP_NONE, KEL_STEP_STATED, 0, 1e-4, KEL_OK, KEL_STEP_STATED, 1e-4, 350 },
     { "the first knows the length", KEL_STEP_STATED, KEL_STEP_NONE, 1e-4, 0, KEL_OK, KEL_STEP_STATED, 1e-4, 293 },
@@ -330,7 +345,8 @@ START_TEST(transitions_of_two_tables)
 }
 END_TEST
 
-/* One row from..to of a kind: does it cross a step at 300 K, lo < T <= hi? Rows that cross nothing keep the hull wide. */
+/* One row from..to of a kind: does it cross a step at 300 K, lo < T <= hi? Rows that cross nothing keep the hull
+   wide. */
 static const struct { const char *label; kel_kind kind; double from, to; bool crosses; } crossings[] = {
     { "expansion over it", KEL_KIND_EXPANSION, 250, 350, true },
     { "expansion downward over it", KEL_KIND_EXPANSION, 350, 250, true },
@@ -394,7 +410,8 @@ END_TEST
 /* least: resolution/sqrt 12, where that is below what the doubles themselves resolve, 4 eps of the largest value. */
 START_TEST(least_uncertainty)
 {
-    static const double resolutions[] = { 1e-7, 1e-21, 0, 0 }, want[] = { 1e-7 / 3.4641016151377544, 4 * KEL__EPS * 1.5e-5, 4 * KEL__EPS * 1.5e-5 };
+    static const double resolutions[] = { 1e-7, 1e-21, 0, 0 },
+                        want[] = { 1e-7 / 3.4641016151377544, 4 * KEL__EPS * 1.5e-5, 4 * KEL__EPS * 1.5e-5 };
     set s;
     start(&s, 1);
     for (size_t c = 0; c < 4; c++) {
@@ -485,8 +502,9 @@ START_TEST(classes_of_problems)
     if (change == 9)
         by_hand_transition(h, 250, KEL_STEP_STATED, 1e-4);
     make_well(&s, 1);
-    ck_assert_msg(s.p.uniform == classes[_i].uniform && s.p.linear == classes[_i].linear && s.p.fixed == classes[_i].fixed, "%s: uniform %d linear %d fixed %d",
-                  classes[_i].label, s.p.uniform, s.p.linear, s.p.fixed);
+    ck_assert_msg(s.p.uniform == classes[_i].uniform && s.p.linear == classes[_i].linear &&
+                      s.p.fixed == classes[_i].fixed,
+                  "%s: uniform %d linear %d fixed %d", classes[_i].label, s.p.uniform, s.p.linear, s.p.fixed);
     kel_arena_free(s.memory);
 }
 END_TEST
@@ -523,6 +541,6 @@ loops(void)
     return c;
 }
 
-KEL_TCASE(single, range_clips_the_hull, rows_left_out_by_the_reader, base, sides_by_column, width_of_a_mean_at_its_reference, least_uncertainty, shared_errors,
-          directions)
+KEL_TCASE(single, range_clips_the_hull, rows_left_out_by_the_reader, base, sides_by_column,
+          width_of_a_mean_at_its_reference, least_uncertainty, shared_errors, directions)
 KEL_TEST_MAIN("observe", loops, single)

@@ -8,6 +8,7 @@
 static const struct row { const char *file; kel_status status; size_t line; const char *message; } rows[] = {
     { "good-record.json", KEL_OK, 0, NULL },
     { "good-record-other-layout.json", KEL_OK, 0, NULL },
+    { "good-record-modes.json", KEL_OK, 0, NULL },
     { "bad-record-unknown-key.json", KEL_E_DATA, 0, "referance_defaulted is not a known key" },
     { "bad-record-missing-key.json", KEL_E_DATA, 0, "pieces[0].to_K is missing" },
     { "bad-record-duplicate-key.json", KEL_E_SYNTAX, 5, "not valid JSON: the key that ends here occurs twice" },

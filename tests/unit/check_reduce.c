@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The reduced problem: conditions against the bordered normal equations in 33 digits, rank and the piece that is named, condition, the small
-   routines behind it. */
+/* The reduced problem: conditions against the bordered normal equations in 33 digits, rank and the piece that is named,
+   condition, the small routines behind it. */
 #include "unit.h"
 #include "problem.h"
 #include "quad.h"
@@ -24,7 +24,10 @@ two_pieces(size_t count, size_t shared)
     static kel_piece pieces[2];
     pieces[0] = (kel_piece){ 100, 200, 0, count };
     pieces[1] = (kel_piece){ 200, 300, count, count };
-    return (kel__solution){ .layout = { .pieces = pieces, .piece_count = 2, .coefficients = 2 * count, .curve = 2 * count,
+    return (kel__solution){ .layout = { .pieces = pieces,
+                                        .piece_count = 2,
+                                        .coefficients = 2 * count,
+                                        .curve = 2 * count,
                                         .unknowns = 2 * count + shared } };
 }
 
@@ -66,7 +69,12 @@ eliminate(quad *a, quad *b, size_t n)
 }
 
 /* Conditions by rows over six coefficients; `repeated`: how many of them say nothing new. */
-static const struct { const char *label; size_t count, repeated, shared; double rows[3][6]; double scale; } constrained[] = {
+static const struct {
+    const char *label;
+    size_t count, repeated, shared;
+    double rows[3][6];
+    double scale;
+} constrained[] = {
     { "none", 0, 0, 0, { { 0 } }, 1 },
     { "one", 1, 0, 0, { { 1, 1, 1, -1, 1, -1 } }, 1 },
     { "two", 2, 0, 0, { { 1, 1, 1, -1, 1, -1 }, { 0, 1, 4, 0, -1, 4 } }, 1 },
@@ -114,7 +122,8 @@ START_TEST(conditions)
         if (empty || twice)
             continue;
         for (size_t j = 0; j < 6; j++)
-            a[(n + real) * size + j] = a[j * size + n + real] = rows[c * 6 + j] * (quad)constrained[_i].scale * constrained[_i].scale;
+            a[(n + real) * size + j] = a[j * size + n + real] =
+                rows[c * 6 + j] * (quad)constrained[_i].scale * constrained[_i].scale;
         real++;
     }
     ck_assert_uint_eq(n + real, size);
@@ -157,17 +166,26 @@ START_TEST(conditions)
             }
             for (size_t i = 0; i < all; i++)
                 got += s.triangle[p * all + i] * s.triangle[q * all + i];
-            ck_assert_abs_for(constrained[_i].label, (got - want) / sqrt(size_p * size_q), 0, 1e-14, "of the columns' lengths");
+            ck_assert_abs_for(constrained[_i].label, (got - want) / sqrt(size_p * size_q), 0, 1e-14,
+                              "of the columns' lengths");
         }
     kel_arena_free(memory);
 }
 END_TEST
 
-/* The last column of piece `piece` is the one before it plus `apart` of something new. The rank's limit is 16 eps max(rows, columns) = 5e-14
-   of the largest singular value; the smallest one is near apart/2. */
-static const struct { const char *label; size_t piece; double apart; bool whole; const char *words; } ranks[] = {
-    { "first piece, equal", 0, 0, false, "determine only 5 of 6 parameters: between 100 K and 200 K they do not carry degree 2" },
-    { "second piece, equal", 1, 0, false, "determine only 5 of 6 parameters: between 200 K and 300 K they do not carry degree 2" },
+/* The last column of piece `piece` is the one before it plus `apart` of something new. The rank's limit is 16 eps
+   max(rows, columns) = 5e-14 of the largest singular value; the smallest one is near apart/2. */
+static const struct {
+    const char *label;
+    size_t piece;
+    double apart;
+    bool whole;
+    const char *words;
+} ranks[] = {
+    { "first piece, equal", 0, 0, false,
+      "determine only 5 of 6 parameters: between 100 K and 200 K they do not carry degree 2" },
+    { "second piece, equal", 1, 0, false,
+      "determine only 5 of 6 parameters: between 200 K and 300 K they do not carry degree 2" },
     { "just below the limit", 1, 1e-14, false, "between 200 K and 300 K" },
     { "just above the limit", 1, 1e-12, true, NULL },
     { "well above", 0, 1e-3, true, NULL },
@@ -184,7 +202,8 @@ START_TEST(rank)
     kel_arena *memory = kel_arena_new();
     kel_error err = { 0 };
     kel_status status = kel__reduce(&s, memory, r, HEIGHT, &err);
-    ck_assert_msg(status == (ranks[_i].whole ? KEL_OK : KEL_E_RANK), "%s: %d, condition %g", ranks[_i].label, status, s.condition);
+    ck_assert_msg(status == (ranks[_i].whole ? KEL_OK : KEL_E_RANK), "%s: %d, condition %g", ranks[_i].label, status,
+                  s.condition);
     ck_assert_int_eq(s.rank, ranks[_i].whole ? 6 : 5);
     ck_assert(s.every_piece == ranks[_i].whole);
     ck_assert_double_gt(s.condition * fmax(ranks[_i].apart, 1e-15), 0.5);
@@ -226,14 +245,19 @@ START_TEST(nothing_at_all)
 }
 END_TEST
 
-/* Two columns at an angle: singular values of unit columns are sqrt(1 +- cos), so that the condition is cot(angle/2) whatever their lengths. */
-static const struct { double angle, length; } angles[] = { { 1.5707963267948966, 1 }, { 1, 1 }, { 1, 1e-7 }, { 0.1, 1e12 }, { 1e-6, 3 } };
+/* Two columns at an angle: singular values of unit columns are sqrt(1 +- cos), so that the condition is cot(angle/2)
+   whatever their lengths. */
+static const struct {
+    double angle, length;
+} angles[] = { { 1.5707963267948966, 1 }, { 1, 1 }, { 1, 1e-7 }, { 0.1, 1e12 }, { 1e-6, 3 } };
 
 START_TEST(condition_number)
 {
-    double a = angles[_i].angle, length = angles[_i].length, r[12] = { 1, 0, 0, 0, length * cos(a), length * sin(a), 0, 0, 1, 2, 3, 4 };
+    double a = angles[_i].angle, length = angles[_i].length,
+           r[12] = { 1, 0, 0, 0, length * cos(a), length * sin(a), 0, 0, 1, 2, 3, 4 };
     kel_piece piece = { 0, 1, 0, 2 };
-    kel__solution s = { .layout = { .pieces = &piece, .piece_count = 1, .coefficients = 2, .curve = 2, .unknowns = 2 } };
+    kel__solution s = { .layout = {
+                            .pieces = &piece, .piece_count = 1, .coefficients = 2, .curve = 2, .unknowns = 2 } };
     kel_arena *memory = kel_arena_new();
     ck_assert_int_eq(kel__reduce(&s, memory, r, 4, NULL), KEL_OK);
     /* The smallest singular value a/sqrt 2 is known to a few eps of the largest. */

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* One fit for given degrees: against normal equations in 33 digits, from a common factor as directly, the conditions that an iterated solution
-   must meet, and what must not change it. */
+/* One fit for given degrees: against normal equations in 33 digits, from a common factor as directly, the conditions
+   that an iterated solution must meet, and what must not change it. */
 #include "unit.h"
 #include "problem.h"
 #include "by_hand.h"
@@ -8,7 +8,14 @@
 
 enum { MOST = 24, ROWS = 60 };
 
-typedef struct set { by_hand hand[2]; const kel_table *tables[2]; kel_fit_options options; kel__problem p; kel__solution s; kel_arena *memory; } set;
+typedef struct set {
+    by_hand hand[2];
+    const kel_table *tables[2];
+    kel_fit_options options;
+    kel__problem p;
+    kel__solution s;
+    kel_arena *memory;
+} set;
 
 /* A fixed sequence in -1..1 with little structure. */
 static double
@@ -38,7 +45,8 @@ solve(set *s, size_t tables, const int *degrees)
     for (size_t i = 0; i < tables; i++)
         s->tables[i] = &s->hand[i].table;
     s->memory = kel_arena_new();
-    ck_assert_msg(kel__problem_make(&s->p, s->memory, s->tables, tables, &s->options, &err) == KEL_OK, "%s", err.message);
+    ck_assert_msg(kel__problem_make(&s->p, s->memory, s->tables, tables, &s->options, &err) == KEL_OK, "%s",
+                  err.message);
     ck_assert_msg(kel__solve(&s->s, &s->p, s->memory, degrees, &err) == KEL_OK, "%s", err.message);
 }
 
@@ -65,7 +73,8 @@ functional(const kel_piece *piece, const kel_observation *o, size_t n)
     if (o->from == o->to)
         return quad_chebyshev(n, quad_piece_x(piece, o->to));
     quad half = ((quad)piece->to - piece->from) / 2;
-    quad whole = half * (quad_chebyshev_integral(n, quad_piece_x(piece, o->to)) - quad_chebyshev_integral(n, quad_piece_x(piece, o->from)));
+    quad whole = half * (quad_chebyshev_integral(n, quad_piece_x(piece, o->to)) -
+                         quad_chebyshev_integral(n, quad_piece_x(piece, o->from)));
     return o->kind == KEL_KIND_MEAN ? whole / ((quad)o->to - o->from) : whole;
 }
 
@@ -110,7 +119,8 @@ START_TEST(normal_equations)
     for (size_t j = 0; j < k; j++) /* condition below 1e3 */
         ck_assert_abs(s.s.x[j] / (double)want[0], (double)(want[j] / want[0]), 1e-13, "of the first coefficient");
     ck_assert_lre(s.s.chi2, (double)chi2, 10);
-    /* Covariance: Z R^-1 R^-T Z'; its diagonal shows in the leverages' sum and here in one functional, alpha at 300 K. */
+    /* Covariance: Z R^-1 R^-T Z'; its diagonal shows in the leverages' sum and here in one functional, alpha at 300
+       K. */
     double g[16] = { 0 }, z[16] = { 0 }, u2 = 0;
     quad v2 = 0, v[11];
     kel__add_value(g, &s.s.layout, 300, 0, 1);
@@ -199,18 +209,30 @@ static const struct {
     kel_base table, record;
     kel_step_kind step;
 } iterated[] = {
-    { "relative u", KEL_KIND_COEFFICIENT, 293, 293, 0, 0.01, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "relative and absolute u", KEL_KIND_EXPANSION, 293, 293, 1e-6, 0.02, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "shared relative", KEL_KIND_COEFFICIENT, 293, 293, 1e-8, 0, 0.03, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "shared, both parts, and relative u", KEL_KIND_MEAN, 293, 293, 0, 0.01, 0.03, 1e-7, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "nothing stated, means", KEL_KIND_MEAN, 293, 293, 0, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "other reference", KEL_KIND_EXPANSION, 480, 100, 1e-6, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "other reference, coefficients", KEL_KIND_COEFFICIENT, 480, 100, 1e-8, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "current length from expansions", KEL_KIND_EXPANSION, 293, 293, 1e-6, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_CURRENT, KEL_STEP_NONE },
-    { "current length from means, shared", KEL_KIND_MEAN, 293, 200, 1e-8, 0, 0.02, 0, KEL_BASE_REFERENCE, KEL_BASE_CURRENT, KEL_STEP_NONE },
-    { "reference length from current length", KEL_KIND_COEFFICIENT, 293, 293, 1e-8, 0, 0, 0, KEL_BASE_CURRENT, KEL_BASE_REFERENCE, KEL_STEP_NONE },
-    { "fitted step, other reference", KEL_KIND_EXPANSION, 480, 100, 1e-6, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE, KEL_STEP_FITTED },
-    { "stated step, current length, shared", KEL_KIND_EXPANSION, 480, 100, 1e-6, 0, 0.01, 0, KEL_BASE_REFERENCE, KEL_BASE_CURRENT, KEL_STEP_STATED },
+    { "relative u", KEL_KIND_COEFFICIENT, 293, 293, 0, 0.01, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE,
+      KEL_STEP_NONE },
+    { "relative and absolute u", KEL_KIND_EXPANSION, 293, 293, 1e-6, 0.02, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE,
+      KEL_STEP_NONE },
+    { "shared relative", KEL_KIND_COEFFICIENT, 293, 293, 1e-8, 0, 0.03, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE,
+      KEL_STEP_NONE },
+    { "shared, both parts, and relative u", KEL_KIND_MEAN, 293, 293, 0, 0.01, 0.03, 1e-7, KEL_BASE_REFERENCE,
+      KEL_BASE_REFERENCE, KEL_STEP_NONE },
+    { "nothing stated, means", KEL_KIND_MEAN, 293, 293, 0, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE,
+      KEL_STEP_NONE },
+    { "other reference", KEL_KIND_EXPANSION, 480, 100, 1e-6, 0, 0, 0, KEL_BASE_REFERENCE, KEL_BASE_REFERENCE,
+      KEL_STEP_NONE },
+    { "other reference, coefficients", KEL_KIND_COEFFICIENT, 480, 100, 1e-8, 0, 0, 0, KEL_BASE_REFERENCE,
+      KEL_BASE_REFERENCE, KEL_STEP_NONE },
+    { "current length from expansions", KEL_KIND_EXPANSION, 293, 293, 1e-6, 0, 0, 0, KEL_BASE_REFERENCE,
+      KEL_BASE_CURRENT, KEL_STEP_NONE },
+    { "current length from means, shared", KEL_KIND_MEAN, 293, 200, 1e-8, 0, 0.02, 0, KEL_BASE_REFERENCE,
+      KEL_BASE_CURRENT, KEL_STEP_NONE },
+    { "reference length from current length", KEL_KIND_COEFFICIENT, 293, 293, 1e-8, 0, 0, 0, KEL_BASE_CURRENT,
+      KEL_BASE_REFERENCE, KEL_STEP_NONE },
+    { "fitted step, other reference", KEL_KIND_EXPANSION, 480, 100, 1e-6, 0, 0, 0, KEL_BASE_REFERENCE,
+      KEL_BASE_REFERENCE, KEL_STEP_FITTED },
+    { "stated step, current length, shared", KEL_KIND_EXPANSION, 480, 100, 1e-6, 0, 0.01, 0, KEL_BASE_REFERENCE,
+      KEL_BASE_CURRENT, KEL_STEP_STATED },
 };
 
 START_TEST(iterated_solutions_are_stationary)
@@ -225,9 +247,11 @@ START_TEST(iterated_solutions_are_stationary)
     if (step != 0)
         by_hand_transition(h, 310, iterated[_i].step, step);
     for (int i = 0; i < ROWS; i++) {
-        double t = 103 + 6.5 * i, e = expansion(r, t) + step * ((t >= 310) - (r >= 310)), scale = 1 + 0.01 * error_of(i);
+        double t = 103 + 6.5 * i, e = expansion(r, t) + step * ((t >= 310) - (r >= 310)),
+               scale = 1 + 0.01 * error_of(i);
         double value = kind == KEL_KIND_COEFFICIENT ? alpha(t) : kind == KEL_KIND_MEAN ? e / (t - r) : e;
-        by_hand_row(h, 0, kind == KEL_KIND_COEFFICIENT ? t : r, t, value * scale, iterated[_i].u_absolute, iterated[_i].u_relative);
+        by_hand_row(h, 0, kind == KEL_KIND_COEFFICIENT ? t : r, t, value * scale, iterated[_i].u_absolute,
+                    iterated[_i].u_relative);
     }
     if (iterated[_i].shared_relative > 0 || iterated[_i].shared_absolute > 0)
         by_hand_shared(h, iterated[_i].shared_relative, iterated[_i].shared_absolute, KEL_DIM_PER_KELVIN);
@@ -279,7 +303,10 @@ distance(const set *a, const set *b)
     return worst / size;
 }
 
-static const struct { const char *label; double u, relative; } invariant[] = { { "absolute u", 1e-8, 0 }, { "relative u", 0, 0.02 }, { "both", 1e-8, 0.02 } };
+static const struct {
+    const char *label;
+    double u, relative;
+} invariant[] = { { "absolute u", 1e-8, 0 }, { "relative u", 0, 0.02 }, { "both", 1e-8, 0.02 } };
 
 START_TEST(order_of_rows_and_tables)
 {
@@ -289,7 +316,8 @@ START_TEST(order_of_rows_and_tables)
     by_hand_column(h, KEL_KIND_MEAN, 1e-9);
     for (int i = 0; i < ROWS; i++) {
         double t = 103 + 6.5 * i;
-        by_hand_row(h, 0, 293, t, expansion(293, t) / (t - 293) * (1 + 0.01 * error_of(i)), invariant[_i].u * (2 + error_of(3 * i)), invariant[_i].relative);
+        by_hand_row(h, 0, 293, t, expansion(293, t) / (t - 293) * (1 + 0.01 * error_of(i)),
+                    invariant[_i].u * (2 + error_of(3 * i)), invariant[_i].relative);
     }
     by_hand_transition(h, 320, KEL_STEP_NONE, 0);
     whole.options = (kel_fit_options)KEL_FIT_OPTIONS_INIT;
@@ -309,8 +337,10 @@ START_TEST(order_of_rows_and_tables)
     solve(&whole, 1, degrees);
     solve(&turned, 1, degrees);
     solve(&split, 2, degrees);
-    ck_assert_abs_for(invariant[_i].label, distance(&whole, &turned), 0, 1e-12, "of the largest coefficient, rows mixed");
-    ck_assert_abs_for(invariant[_i].label, distance(&whole, &split), 0, 1e-12, "of the largest coefficient, table split");
+    ck_assert_abs_for(invariant[_i].label, distance(&whole, &turned), 0, 1e-12,
+                      "of the largest coefficient, rows mixed");
+    ck_assert_abs_for(invariant[_i].label, distance(&whole, &split), 0, 1e-12,
+                      "of the largest coefficient, table split");
     ck_assert_lre_for(invariant[_i].label, split.s.chi2, whole.s.chi2, 11);
     kel_arena_free(whole.memory);
     kel_arena_free(turned.memory);
@@ -318,7 +348,8 @@ START_TEST(order_of_rows_and_tables)
 }
 END_TEST
 
-/* A row of value 0 with a stated percentage weighs what its rounding says, or with no rounding what a double resolves: never infinitely. */
+/* A row of value 0 with a stated percentage weighs what its rounding says, or with no rounding what a double resolves:
+   never infinitely. */
 START_TEST(percentage_of_nothing)
 {
     set s;
@@ -339,8 +370,8 @@ START_TEST(percentage_of_nothing)
 }
 END_TEST
 
-/* Six means with five parameters but a shared error: their degrees of freedom lie at the limit between two rules of weighing, either of which
-   leads back to the other. It must end all the same. */
+/* Six means with five parameters but a shared error: their degrees of freedom lie at the limit between two rules of
+   weighing, either of which leads back to the other. It must end all the same. */
 START_TEST(ends_at_a_limit_of_the_rules)
 {
     set s;
