@@ -81,7 +81,7 @@ say_error(const job *j, const char *file, size_t line, size_t column, const char
     if (!j->json) {
         kel_text_add(&text, "kelspan: ");
         add_place(&text, file, line, column);
-        kel_text_add(&text, message);
+        kel_text_quote(&text, message, strlen(message)); /* it may hold words of the command line */
         say_text(&text);
         return;
     }

@@ -207,6 +207,9 @@ one_piece(double *value, const kel__kernel *k, kel__task task, const double *fro
     for (size_t j = 0; j < count; j++)
         q[j] = k->numbers[j];
     for (size_t i = 0; i < n; i += LANES) {
+        __builtin_prefetch(from + i + 256, 0, 3);
+        __builtin_prefetch(to + i + 256, 0, 3);
+        __builtin_prefetch(value + i + 256, 1, 3);
         vec y = v_load(to + i), x = task == KEL__TASK_VALUE ? y : v_load(from + i);
         vec lo = v_min(x, y), hi = v_max(x, y), total = share(p, count, q, false, task != KEL__TASK_INTEGRAL, lo, hi);
         v_store(value + i, task == KEL__TASK_INTEGRAL ? v_signed(total, x, y) : total);

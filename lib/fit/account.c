@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The record's account of a fit: provenance, statistics by column, gaps, and the rows with what the curve says of them. */
+/* The record's account of a fit: provenance, statistics by column, gaps, and the rows with what the curve says of them.
+   */
 #include "problem.h"
 #include "support.h"
 
@@ -36,7 +37,8 @@ lay_gaps(account *c, kel_error *err)
         return no_memory(err);
     for (size_t i = 0; i < p->row_count; i++)
         support[i] = kel__support_of(p->rows[i].seen);
-    return kel__support_gaps(&c->content->gaps, &c->content->gap_count, c->memory, support, p->row_count, p->range, p->options->gap, err);
+    return kel__support_gaps(&c->content->gaps, &c->content->gap_count, c->memory, support, p->row_count, p->range,
+                             p->options->gap, err);
 }
 
 static kel_status
@@ -51,10 +53,24 @@ lay_sources(account *c, kel_error *err)
         size_t left_out = 0;
         for (size_t k = 0; k < t->observation_count; k++, at++)
             left_out += t->observations[k].left_out != NULL || c->p->left_out[at] != NULL;
-        list[i] = (kel_source){ .name = kel__last_component(t->name), .digest = t->digest, .material = t->material, .condition = t->condition,
-            .direction = t->direction, .product_form = t->product_form, .source = t->source, .lineage = t->lineage, .scale = t->scale,
-            .branch = t->branch, .reference_temperature = t->reference_temperature, .base = t->base, .rows = t->rows, .left_out = left_out,
-            .uncertainty = t->uncertainty, .uncertainty_count = t->uncertainty_count, .notes = t->notes, .note_count = t->note_count };
+        list[i] = (kel_source){ .name = kel__last_component(t->name),
+                                .digest = t->digest,
+                                .material = t->material,
+                                .condition = t->condition,
+                                .direction = t->direction,
+                                .product_form = t->product_form,
+                                .source = t->source,
+                                .lineage = t->lineage,
+                                .scale = t->scale,
+                                .branch = t->branch,
+                                .reference_temperature = t->reference_temperature,
+                                .base = t->base,
+                                .rows = t->rows,
+                                .left_out = left_out,
+                                .uncertainty = t->uncertainty,
+                                .uncertainty_count = t->uncertainty_count,
+                                .notes = t->notes,
+                                .note_count = t->note_count };
     }
     c->content->sources = list;
     c->content->source_count = c->p->table_count;
@@ -73,11 +89,19 @@ lay_columns(account *c, kel_error *err)
         const kel__column *column = &p->columns[i];
         double freedom = (double)column->rows - s->leverage[i];
         bool stated = column->stated == column->rows;
-        list[i] = (kel_fit_column){ .source = column->table, .kind = column->kind, .label = p->tables[column->table]->columns[column->local].label,
-            .observations = column->rows, .degrees_of_freedom = freedom,
-            .residual_standard_deviation = freedom > 1e-9 ? sqrt(s->rss[i] / freedom) : (double)NAN,
-            .scatter = stated ? (double)NAN : s->scatter[i], .resolution = column->resolution,
-            .variance = stated ? KEL_VARIANCE_GIVEN : column->stated > 0 ? KEL_VARIANCE_MIXED : s->scatter_known ? KEL_VARIANCE_ESTIMATED : KEL_VARIANCE_NONE };
+        list[i] =
+            (kel_fit_column){ .source = column->table,
+                              .kind = column->kind,
+                              .label = p->tables[column->table]->columns[column->local].label,
+                              .observations = column->rows,
+                              .degrees_of_freedom = freedom,
+                              .residual_standard_deviation = freedom > 1e-9 ? sqrt(s->rss[i] / freedom) : (double)NAN,
+                              .scatter = stated ? (double)NAN : s->scatter[i],
+                              .resolution = column->resolution,
+                              .variance = stated                                      ? KEL_VARIANCE_GIVEN
+                                          : column->stated > 0                        ? KEL_VARIANCE_MIXED
+                                          : s->scatter_known || !isnan(s->scatter[i]) ? KEL_VARIANCE_ESTIMATED
+                                                                                      : KEL_VARIANCE_NONE };
     }
     c->content->columns = list;
     c->content->column_count = p->column_count;
@@ -109,10 +133,20 @@ lay_rows(account *c, kel_error *err)
             if (at % every != 0)
                 continue;
             kel__row_result r = kel__row_evaluate(p, c->s, &row, false, work);
-            bool known = o->u_stated || (c->s->scatter_known && reason == NULL);
-            list[kept++] = (kel_fitted){ .source = i, .column = row.column, .line = o->line, .kind = o->kind, .from = o->from, .to = o->to,
-                .observed = o->value, .fitted = r.fitted, .residual = r.residual, .shared_term = r.shared_term, .u = known ? r.u : (double)NAN,
-                .side = row.side, .left_out = reason };
+            bool known = o->u_stated || (reason == NULL && (c->s->scatter_known || !isnan(c->s->scatter[row.column])));
+            list[kept++] = (kel_fitted){ .source = i,
+                                         .column = row.column,
+                                         .line = o->line,
+                                         .kind = o->kind,
+                                         .from = o->from,
+                                         .to = o->to,
+                                         .observed = o->value,
+                                         .fitted = r.fitted,
+                                         .residual = r.residual,
+                                         .shared_term = r.shared_term,
+                                         .u = known ? r.u : (double)NAN,
+                                         .side = row.side,
+                                         .left_out = reason };
         }
     c->content->rows = list;
     c->content->row_count = kept;
@@ -150,7 +184,8 @@ lay_statistics(account *c)
 }
 
 kel_status
-kel__account(kel_content *content, const kel__problem *problem, const kel__solution *solution, kel_arena *memory, kel_error *err)
+kel__account(kel_content *content, const kel__problem *problem, const kel__solution *solution, kel_arena *memory,
+             kel_error *err)
 {
     account a = { problem, solution, memory, content };
     kel_status (*const parts[])(account *, kel_error *) = { lay_gaps, lay_sources, lay_columns, lay_rows };

@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* Rows of functionals over the curve's unknowns: the value of alpha at a temperature, and its integral between two.
 
-   On a piece alpha = sum_n c_n T_n(x), x = (2T - from - to)/(to - from). The integral over the part [a, b] of a piece is taken by
-   Gauss-Legendre nodes on [a, b] itself, exact for the degree: sum of w_i T_n(x_i) (b - a)/2. No antiderivatives are subtracted, so that a
-   row over 1 mK is as exact as one over 1000 K. */
+   On a piece alpha = sum_n c_n T_n(x), x = (2T - from - to)/(to - from). The integral over the part [a, b] of a piece
+   is taken by Gauss-Legendre nodes on [a, b] itself, exact for the degree: sum of w_i T_n(x_i) (b - a)/2. No
+   antiderivatives are subtracted, so that a row over 1 mK is as exact as one over 1000 K. */
 #include "problem.h"
 
 enum { NODES = (KEL_DEGREE_MAX + 1) / 2 + 1 };
@@ -75,7 +75,8 @@ add_part(double *row, const kel__layout *l, const kel_piece *piece, double a, do
 }
 
 double
-kel__add_integral(double *row, const kel__layout *layout, const kel__problem *problem, double a, int side_a, double b, int side_b, double factor)
+kel__add_integral(double *row, const kel__layout *layout, const kel__problem *problem, double a, int side_a, double b,
+                  int side_b, double factor)
 {
     double lo = fmin(a, b), hi = fmax(a, b), sign = b >= a ? factor : -factor, stated = 0;
     size_t last = layout->piece_count - 1;

@@ -32,6 +32,8 @@ blank_before(const char *begin, const char *end)
 void
 kel__trim(const char **p, size_t *n)
 {
+    if (*p == NULL) /* no text: there is nothing that a pointer could move in */
+        *p = "";
     const char *begin = *p, *end = *p + *n;
     size_t k;
     while (begin < end && (k = kel__blank(begin, end)) != 0)

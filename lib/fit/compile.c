@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* From a solved fit to a record: one mean curve and its modes on common pieces. account.c adds statistics and provenance. */
+/* From a solved fit to a record: one mean curve and its modes on common pieces. account.c adds statistics and
+   provenance. */
 #include "problem.h"
 #include "subdivide.h"
 #include "table_inner.h"
@@ -72,7 +73,8 @@ add_mode(compiler *c, kel_mode_kind kind, const char *label, double *coefficient
     return KEL_OK;
 }
 
-/* Modes of the solution. Where the scatter is not known and no row states its u, the rows' part means nothing and is left out. */
+/* Modes of the solution. Where the scatter is not known and no row states its u, the rows' part means nothing and is
+   left out. */
 static kel_status
 add_solution_modes(compiler *c, kel_error *err)
 {
@@ -131,12 +133,14 @@ add_lot_modes(compiler *c, const kel_piece *pieces, size_t piece_count, size_t c
             double size = part == 0 ? lot->relative : lot->absolute;
             if (size == 0)
                 continue;
-            double *mode = kel_arena_take(c->memory, coefficients, sizeof *mode), *steps = kel_arena_take(c->memory, c->p->transition_count, sizeof *steps);
+            double *mode = kel_arena_take(c->memory, coefficients, sizeof *mode),
+                   *steps = kel_arena_take(c->memory, c->p->transition_count, sizeof *steps);
             if (mode == NULL || steps == NULL)
                 return no_memory(err);
             for (size_t i = 0; i < piece_count; i++) {
                 /* End pieces stand for all that lies beyond them. */
-                bool inside = (i == 0 || pieces[i].from >= lot->lo) && (i + 1 == piece_count || pieces[i].to <= lot->hi) && pieces[i].to > lot->lo &&
+                bool inside = (i == 0 || pieces[i].from >= lot->lo) &&
+                              (i + 1 == piece_count || pieces[i].to <= lot->hi) && pieces[i].to > lot->lo &&
                               pieces[i].from < lot->hi;
                 inside |= pieces[i].from == pieces[i].to && pieces[i].from >= lot->lo && pieces[i].to <= lot->hi;
                 if (!inside)
@@ -149,7 +153,8 @@ add_lot_modes(compiler *c, const kel_piece *pieces, size_t piece_count, size_t c
             for (size_t i = 0; i < c->p->transition_count && part == 0; i++)
                 if (c->p->transitions[i].at >= lot->lo && c->p->transitions[i].at <= lot->hi)
                     steps[i] = size * c->mean_steps[i];
-            kel_status status = add_mode(c, KEL_MODE_LOT, join_text(c->memory, "lot spread ", c->lot->lot_text), mode, steps, err);
+            kel_status status =
+                add_mode(c, KEL_MODE_LOT, join_text(c->memory, "lot spread ", c->lot->lot_text), mode, steps, err);
             if (status < 0)
                 return status;
         }
@@ -231,7 +236,8 @@ lay_transitions(compiler *c, kel_error *err)
 }
 
 kel_status
-kel__compile(kel_record **out, const kel__problem *problem, const kel__solution *solution, kel_arena *memory, kel_error *err)
+kel__compile(kel_record **out, const kel__problem *problem, const kel__solution *solution, kel_arena *memory,
+             kel_error *err)
 {
     *out = NULL;
     compiler c = { .p = problem, .s = solution, .memory = memory, .mean = solution->x };

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* kel_fit: tables in, record and report out. The steps are observe (rows), choose the degree, solve, compile; this file strings them together
-   and collects what the user should be told. */
+/* kel_fit: tables in, record and report out. The steps are observe (rows), choose the degree, solve, compile; this file
+   strings them together and collects what the user should be told. */
 #include "problem.h"
 #include "number_text.h"
 
@@ -82,16 +82,17 @@ warn_uncertainty(owned_report *r, const kel__problem *p, const kel__solution *s,
     if (status == KEL_OK && (below < 0.001 || below > 0.999)) {
         kel_text text = KEL_TEXT_INIT;
         char value[KEL_NUMBER_SIZE];
-        double freedom = (double)p->row_count - (double)s->parameters;
-        kel_number_format_digits(value, s->chi2 / (all_stated ? freedom : (double)s->stated - s->stated_leverage), 3);
-        kel_text_printf(&text, "chi2 per degree of freedom is %s: the stated uncertainties are %s than the residuals show", value,
-                        below > 0.5 ? "smaller" : "larger");
+        kel_number_format_digits(value, r->report.scaled_factor * r->report.scaled_factor, 3);
+        kel_text_printf(&text,
+                        "chi2 per degree of freedom is %s: the stated uncertainties are %s than the residuals show",
+                        value, below > 0.5 ? "smaller" : "larger");
         status = warn_text(r, "chi2", &text, err);
     }
     return status;
 }
 
-/* Does something in the piece resolve less than half of it? A coefficient, a short interval, or two intervals of one column that share an end. */
+/* Does something in the piece resolve less than half of it? A coefficient, a short interval, or two intervals of one
+   column that share an end. */
 static bool
 well_supported(const kel__problem *p, const kel_piece *piece)
 {
@@ -109,7 +110,8 @@ well_supported(const kel__problem *p, const kel_piece *piece)
         }
         before = row;
         lo = fmin(o->from, o->to), hi = fmax(o->from, o->to);
-        bool touches = o->kind == KEL_KIND_COEFFICIENT ? o->to >= piece->from && o->to <= piece->to : lo < piece->to && hi > piece->from;
+        bool touches = o->kind == KEL_KIND_COEFFICIENT ? o->to >= piece->from && o->to <= piece->to
+                                                       : lo < piece->to && hi > piece->from;
         if (touches && hi - lo <= half)
             return true;
     }
@@ -143,12 +145,14 @@ warn_band(owned_report *r, const kel_record *record, kel_error *err)
         for (int k = 0; k <= BAND_POINTS; k++) {
             double t = c->pieces[i].from + (c->pieces[i].to - c->pieces[i].from) * k / BAND_POINTS;
             kel_answer a;
-            if (!kel_record_inside(record, t) || kel_record_coefficient(&a, record, t, NULL) < 0 || !(fabs(a.value) < 2 * a.u))
+            if (!kel_record_inside(record, t) || kel_record_coefficient(&a, record, t, NULL) < 0 ||
+                !(fabs(a.value) < 2 * a.u))
                 continue;
             kel_text text = KEL_TEXT_INIT;
             kel_text_add(&text, "at ");
             add_temperature(&text, t);
-            kel_text_add(&text, " the coefficient is smaller than its own uncertainty (k = 2): its sign is not settled there");
+            kel_text_add(&text,
+                         " the coefficient is smaller than its own uncertainty (k = 2): its sign is not settled there");
             return warn_text(r, "sign-open", &text, err);
         }
     return KEL_OK;
@@ -171,10 +175,21 @@ warn_reference(owned_report *r, const kel_record *record, kel_error *err)
     return warn_text(r, "reference-outside", &text, err);
 }
 
+/* chi2 counts the stated rows and the prior rows; its expectation is n - k less what the unstated rows hold of that. */
+static double
+chi2_freedom(const kel__problem *p, const kel__solution *s)
+{
+    double all = -s->stated_leverage, unstated = (double)(p->row_count - s->stated);
+    for (size_t c = 0; c < p->column_count; c++)
+        all += s->leverage[c];
+    double freedom = (double)p->row_count - (double)s->parameters;
+    return unstated > 0 ? freedom - (unstated - all) : freedom;
+}
+
 static void
 fill_numbers(kel_fit_report *r, const kel__problem *p, const kel__solution *s)
 {
-    double freedom = s->stated == p->row_count ? (double)p->row_count - (double)s->parameters : (double)s->stated - s->stated_leverage;
+    double freedom = chi2_freedom(p, s);
     r->rank = s->rank;
     r->condition = s->condition;
     r->iterations = s->iterations;
@@ -188,7 +203,8 @@ check_options(const kel_fit_options *o, size_t table_count, kel_error *err)
     if (table_count == 0)
         return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "a fit needs a table");
     if (o->piecewise && o->join_count == 0)
-        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "a piecewise form needs joins: the temperatures where its pieces meet");
+        return kel_error_set(err, KEL_E_ARGUMENT, 0, 0,
+                             "a piecewise form needs joins: the temperatures where its pieces meet");
     if (o->base < -1 || o->base > KEL_BASE_CURRENT || o->range.lo > o->range.hi || o->gap < 0)
         return kel_error_set(err, KEL_E_ARGUMENT, 0, 0, "fit options: unknown base, empty range or negative gap");
     if (isinf(o->reference) || o->reference < 0)
@@ -203,7 +219,8 @@ check_options(const kel_fit_options *o, size_t table_count, kel_error *err)
 }
 
 kel_status
-kel_fit(kel_record **out, kel_fit_report **report, const kel_table *const *tables, size_t table_count, const kel_fit_options *options, kel_error *err)
+kel_fit(kel_record **out, kel_fit_report **report, const kel_table *const *tables, size_t table_count,
+        const kel_fit_options *options, kel_error *err)
 {
     static const kel_fit_options defaults = KEL_FIT_OPTIONS_INIT;
     const kel_fit_options *o = options != NULL ? options : &defaults;
@@ -224,7 +241,8 @@ kel_fit(kel_record **out, kel_fit_report **report, const kel_table *const *table
     kel__problem p;
     kel__solution s;
     if ((status = kel__problem_make(&p, memory, tables, table_count, o, err)) < 0 ||
-        (status = kel__choose_degree(&s, &r->report, &p, memory, r->memory, err)) < 0 || (status = kel__compile(out, &p, &s, memory, err)) < 0)
+        (status = kel__choose_degree(&s, &r->report, &p, memory, r->memory, err)) < 0 ||
+        (status = kel__compile(out, &p, &s, memory, err)) < 0)
         goto end;
     fill_numbers(&r->report, &p, &s);
     r->report.warnings = r->list;

@@ -1,5 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The unknowns of a fit: pieces with their Chebyshev coefficients, fitted steps, shared errors; and what continuity asks of them.
+/* The unknowns of a fit: pieces with their Chebyshev coefficients, fitted steps, shared errors; and what continuity
+   asks of them.
 
    Continuity of the d-th derivative of alpha at a join, with h the half-widths of the pieces left and right of it:
        sum_n cl_n T_n^(d)(1)/hl^d - sum_n cr_n T_n^(d)(-1)/hr^d = 0,
@@ -28,7 +29,8 @@ lay_pieces(kel__layout *l, const kel__problem *p, kel_arena *memory, const int *
         if (piece->from == piece->to && degrees[i] > 0) {
             char t[KEL_NUMBER_SIZE];
             kel__temperature_name(t, piece->from);
-            return kel_error_set(err, KEL_E_RANK, 0, 0, "all rows are at one temperature, %s K: they carry degree 0, not %d", t, degrees[i]);
+            return kel_error_set(err, KEL_E_RANK, 0, 0,
+                                 "all rows are at one temperature, %s K: they carry degree 0, not %d", t, degrees[i]);
         }
         piece->first = l->coefficients;
         piece->count = (size_t)degrees[i] + 1;
@@ -129,7 +131,8 @@ lay_nodes(kel__layout *l, kel_arena *memory, kel_error *err)
 }
 
 kel_status
-kel__layout_make(kel__layout *layout, const kel__problem *problem, kel_arena *memory, const int *degrees, kel_error *err)
+kel__layout_make(kel__layout *layout, const kel__problem *problem, kel_arena *memory, const int *degrees,
+                 kel_error *err)
 {
     *layout = (kel__layout){ 0 };
     kel_status status = lay_pieces(layout, problem, memory, degrees, err);

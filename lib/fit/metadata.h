@@ -35,13 +35,15 @@ typedef struct kel__metadata {
     const kel__entry *curve, *variable, *centre, *variable_scale;
 } kel__metadata;
 
-/* Collects and parses. `coefficients`: the file is a coefficient file (its own keys are known; `scale:` with a number in front is the variable's). */
+/* Collects and parses. `coefficients`: the file is a coefficient file (its own keys are known; `scale:` with a number
+   in front is the variable's). */
 typedef struct kel__metadata_reader kel__metadata_reader;
 kel_status kel__metadata_new(kel__metadata_reader **out, kel_arena *arena, bool coefficients, kel_error *err);
 /* A comment line's text (behind the '#'); lines that are no `key: value` pass. column is that of text's first byte. */
-kel_status kel__metadata_line(kel__metadata_reader *reader, const char *text, size_t n, size_t line, size_t column, kel_error *err);
-/* 'key: value' from --set: overrides the file's value of that key (that is the user's decision), adds for repeatable keys. Call these before the file's lines;
-   a wrong key is an error here, not a note. */
+kel_status kel__metadata_line(kel__metadata_reader *reader, const char *text, size_t n, size_t line, size_t column,
+                              kel_error *err);
+/* 'key: value' from --set: overrides the file's value of that key (that is the user's decision), adds for repeatable
+   keys. Call these before the file's lines; a wrong key is an error here, not a note. */
 kel_status kel__metadata_set(kel__metadata_reader *reader, const char *setting, kel_error *err);
 /* Cross-checks (same key twice with different values; overlapping ranges of one sort) and gives the result. */
 kel_status kel__metadata_finish(kel__metadata *out, kel__metadata_reader *reader, kel_error *err);

@@ -1,15 +1,17 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* What one printed value says about the curve: model value g(x) and gradient, for every combination of the record's base and reference R
-   with the table's base and reference r. I(a, b) is the integral of the record's alpha with the steps crossed, a(T) its value.
+/* What one printed value says about the curve: model value g(x) and gradient, for every combination of the record's
+   base and reference R with the table's base and reference r. I(a, b) is the integral of the record's alpha with the
+   steps crossed, a(T) its value.
 
    Record in `reference length`, q = 1/(1 + I(R, r)):
        coefficient, reference length    a(T) q               expansion    I(r, T) q
        coefficient, current length      a(T)/(1 + I(R, T))   mean         I(Ta, Tb) q/(Tb - Ta), at Ta = Tb: a(T) q
    Record in `current length`, where ln(L2/L1) = I:
        coefficient, current length      a(T)                 expansion    expm1 I(r, T)
-       coefficient, reference length    a(T) exp I(r, T)     mean         exp I(r, Ta) expm1 I(Ta, Tb)/(Tb - Ta), at Ta = Tb: a(T) exp I(r, T)
-   Where R = r and the bases agree these are linear; the others are solved by Gauss-Newton steps with the exact gradient, each of which
-   gains the square of the expansion or better. */
+       coefficient, reference length    a(T) exp I(r, T)     mean         exp I(r, Ta) expm1 I(Ta, Tb)/(Tb - Ta), at Ta
+       = Tb: a(T) exp I(r, T)
+   Where R = r and the bases agree these are linear; the others are solved by Gauss-Newton steps with the exact
+   gradient, each of which gains the square of the expansion or better. */
 #include "problem.h"
 
 #include <string.h>
@@ -54,7 +56,8 @@ own_functional(double *row, const kel__problem *p, const kel__layout *l, const k
 
 /* value = f/(1 + e) with e = I(R, t): gradient in place. */
 static double
-over_length(double *gradient, double *work, const kel__problem *p, const kel__layout *l, double f, double t, int side, const double *x)
+over_length(double *gradient, double *work, const kel__problem *p, const kel__layout *l, double f, double t, int side,
+            const double *x)
 {
     memset(work, 0, l->curve * sizeof *work);
     double e = kel__add_integral(work, l, p, p->reference, 0, t, side, 1);
@@ -64,8 +67,8 @@ over_length(double *gradient, double *work, const kel__problem *p, const kel__la
 }
 
 static double
-reference_length_record(double *gradient, double *work, const kel__problem *p, const kel__layout *l, const kel__row *row, double f,
-                        const double *x)
+reference_length_record(double *gradient, double *work, const kel__problem *p, const kel__layout *l,
+                        const kel__row *row, double f, const double *x)
 {
     const kel_observation *o = row->seen;
     if (o->kind == KEL_KIND_COEFFICIENT && p->tables[row->table]->base == KEL_BASE_CURRENT)
@@ -75,7 +78,8 @@ reference_length_record(double *gradient, double *work, const kel__problem *p, c
 }
 
 static double
-current_length_record(double *gradient, double *work, const kel__problem *p, const kel__layout *l, const kel__row *row, double f, const double *x)
+current_length_record(double *gradient, double *work, const kel__problem *p, const kel__layout *l, const kel__row *row,
+                      double f, const double *x)
 {
     const kel_observation *o = row->seen;
     size_t n = l->curve;
@@ -86,7 +90,8 @@ current_length_record(double *gradient, double *work, const kel__problem *p, con
     double r = kel__table_reference(p, row->table), width = o->to - o->from;
     bool over_interval = o->kind == KEL_KIND_MEAN && width != 0;
     memset(work, 0, n * sizeof *work);
-    double before = kel__add_integral(work, l, p, r, 0, over_interval ? o->from : o->to, over_interval ? 0 : row->side, 1);
+    double before =
+        kel__add_integral(work, l, p, r, 0, over_interval ? o->from : o->to, over_interval ? 0 : row->side, 1);
     before += dot(work, x, n);
     if (!over_interval) {
         combine(gradient, exp(before), work, f * exp(before), n);
@@ -98,7 +103,8 @@ current_length_record(double *gradient, double *work, const kel__problem *p, con
 }
 
 kel__model
-kel__model_row(double *gradient, double *work, const kel__problem *problem, const kel__layout *layout, const kel__row *row, const double *x)
+kel__model_row(double *gradient, double *work, const kel__problem *problem, const kel__layout *layout,
+               const kel__row *row, const double *x)
 {
     memset(gradient, 0, layout->curve * sizeof *gradient);
     double stated = own_functional(gradient, problem, layout, row);
@@ -106,12 +112,14 @@ kel__model_row(double *gradient, double *work, const kel__problem *problem, cons
     const kel_observation *o = row->seen;
     bool current = problem->tables[row->table]->base == KEL_BASE_CURRENT;
     double r = o->kind == KEL_KIND_EXPANSION ? o->from : kel__table_reference(problem, row->table);
-    bool linear = problem->base == KEL_BASE_CURRENT ? o->kind == KEL_KIND_COEFFICIENT && current
-                                                    : r == problem->reference && !(o->kind == KEL_KIND_COEFFICIENT && current);
+    bool linear = problem->base == KEL_BASE_CURRENT
+                      ? o->kind == KEL_KIND_COEFFICIENT && current
+                      : r == problem->reference && !(o->kind == KEL_KIND_COEFFICIENT && current);
     if (linear)
         return (kel__model){ f, stated, true };
-    double value = problem->base == KEL_BASE_CURRENT ? current_length_record(gradient, work, problem, layout, row, f, x)
-                                                     : reference_length_record(gradient, work, problem, layout, row, f, x);
+    double value = problem->base == KEL_BASE_CURRENT
+                       ? current_length_record(gradient, work, problem, layout, row, f, x)
+                       : reference_length_record(gradient, work, problem, layout, row, f, x);
     return (kel__model){ value, value - dot(gradient, x, layout->curve), false };
 }
 
@@ -142,8 +150,11 @@ kel__shared_size(const kel__problem *problem, size_t index, const kel__row *row,
     const kel_stated *here = NULL; /* where two ranges meet, the colder one */
     for (size_t i = 0; i < t->shared_count; i++) {
         const kel_stated *s = &t->shared[i];
-        bool has_part = shared->relative ? s->relative > 0
-                                         : s->absolute > 0 && s->dimension == (row->seen->kind == KEL_KIND_EXPANSION ? KEL_DIM_ONE : KEL_DIM_PER_KELVIN);
+        bool has_part =
+            shared->relative
+                ? s->relative > 0
+                : s->absolute > 0 &&
+                      s->dimension == (row->seen->kind == KEL_KIND_EXPANSION ? KEL_DIM_ONE : KEL_DIM_PER_KELVIN);
         if (has_part && row->seen->to >= s->lo && row->seen->to <= s->hi && (here == NULL || s->lo < here->lo))
             here = s;
     }

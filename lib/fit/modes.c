@@ -1,12 +1,14 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* Modes of a fit: vectors whose outer products add up to the covariance of the curve's unknowns, split into what they stand for.
+/* Modes of a fit: vectors whose outer products add up to the covariance of the curve's unknowns, split into what they
+   stand for.
 
-   With R = [R_cc R_cs; 0 R_ss] of the weighted problem (c: curve, s: shared errors, prior rows included) and C = (R'R)^-1, the linear
-   estimator H of the curve gives
+   With R = [R_cc R_cs; 0 R_ss] of the weighted problem (c: curve, s: shared errors, prior rows included) and C =
+   (R'R)^-1, the linear estimator H of the curve gives
        shared error j:          H F_j  = R_cc^-1 R_cs C_ss e_j
        rows' own errors:        H V H' = R_cc^-1 [1 + R_cs (C_ss - C_ss^2) R_cs'] R_cc^-T
-   and the two add up to C_cc. C_ss = U diag(d) U' with 0 < d <= 1, for each prior row has size 1, so that the bracket is G G' with
-   G = [1, R_cs U sqrt(d - d^2)]: formed without a difference of large numbers. G = L Q leaves as many modes as there are parameters. */
+   and the two add up to C_cc. C_ss = U diag(d) U' with 0 < d <= 1, for each prior row has size 1, so that the bracket
+   is G G' with G = [1, R_cs U sqrt(d - d^2)]: formed without a difference of large numbers. G = L Q leaves as many
+   modes as there are parameters. */
 #include "problem.h"
 
 #include <string.h>
@@ -54,11 +56,13 @@ to_curve(double *mode, double *g, const kel__solution *s, size_t n)
 }
 
 kel_status
-kel__modes(double **out, size_t *scatter_count, const kel__problem *problem, const kel__solution *solution, kel_arena *memory, kel_error *err)
+kel__modes(double **out, size_t *scatter_count, const kel__problem *problem, const kel__solution *solution,
+           kel_arena *memory, kel_error *err)
 {
     const kel__solution *s = solution;
     size_t k = s->parameters, q = problem->shared_count, n = k + q, curve = s->layout.curve;
-    double *modes = kel_arena_take(memory, (k + q) * curve, sizeof *modes), *g = kel_arena_take(memory, k * n, sizeof *g);
+    double *modes = kel_arena_take(memory, (k + q) * curve, sizeof *modes),
+           *g = kel_arena_take(memory, k * n, sizeof *g);
     double *c = kel_arena_take(memory, q * q, sizeof *c), *vectors = kel_arena_take(memory, q * q, sizeof *vectors);
     double *values = kel_arena_take(memory, q, sizeof *values), *lower = kel_arena_take(memory, k * k, sizeof *lower);
     double *column = kel_arena_take(memory, k, sizeof *column);

@@ -5,7 +5,8 @@
 
 #include <kelspan.h>
 
-/* A temperature as a message shows it: up to 7 significant digits, without zeros at the end. out: KEL_NUMBER_SIZE bytes. */
+/* A temperature as a message shows it: up to 7 significant digits, without zeros at the end. out: KEL_NUMBER_SIZE
+   bytes. */
 static inline void
 kel__temperature_name(char *out, double t)
 {

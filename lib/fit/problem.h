@@ -115,6 +115,11 @@ typedef struct kel__solution {
 kel_status kel__problem_make(kel__problem *problem, kel_arena *memory, const kel_table *const *tables,
                              size_t table_count, const kel_fit_options *options, kel_error *err);
 
+/* joins.c: transitions of all tables in one list; then, with the hull known, joins, sides of rows and a look at the
+   steps. */
+kel_status kel__merge_transitions(kel__problem *problem, kel_error *err);
+kel_status kel__lay_joins(kel__problem *problem, kel_error *err);
+
 /* layout.c */
 kel_status kel__layout_make(kel__layout *layout, const kel__problem *problem, kel_arena *memory, const int *degrees,
                             kel_error *err);
@@ -152,9 +157,10 @@ void kel__factor_flush(kel__factor *factor);
 /* reduce.c: the reduced problem, by LAPACK. r has `height` rows and layout.unknowns + 1 columns, by columns, the last
    one the right-hand side. Fills parameters, every_piece, x, basis, triangle, residual, condition, rank. KEL_E_RANK. */
 kel_status kel__reduce(kel__solution *solution, kel_arena *memory, const double *r, size_t height, kel_error *err);
-/* 2-norm condition and rank of an upper triangle (n x n, by columns, `stride` apart) with its columns scaled to length 1.
-   KEL_E_RANGE: it is not finite. */
-kel_status kel__condition(double *condition, int *rank, const double *triangle, size_t stride, size_t n, kel_arena *memory, kel_error *err);
+/* 2-norm condition and rank of an upper triangle (n x n, by columns, `stride` apart) with its columns scaled to length
+   1. KEL_E_RANGE: it is not finite. */
+kel_status kel__condition(double *condition, int *rank, const double *triangle, size_t stride, size_t n,
+                          kel_arena *memory, kel_error *err);
 /* modes.c needs these three. */
 /* R' y = b in place */
 void kel__solve_transposed(double *b, const double *triangle, size_t n);
@@ -177,7 +183,7 @@ kel_status kel__factor_all(kel__factor *factor, kel__layout *layout, const kel__
                            const int *degrees, kel_error *err);
 kel_status kel__solve_from(kel__solution *solution, const kel__problem *problem, kel_arena *memory,
                            const kel__factor *factor, const kel__layout *full, const int *degrees, kel_error *err);
-/* What a solution says of one row. work: 3 layout.unknowns numbers. */
+/* row_result.c: what a solution says of one row. work: 3 layout.unknowns numbers. */
 typedef struct kel__row_result { double fitted, residual, shared_term, u, leverage; } kel__row_result;
 kel__row_result kel__row_evaluate(const kel__problem *problem, const kel__solution *solution, const kel__row *row,
                                   bool with_leverage, double *work);

@@ -150,7 +150,7 @@ largest(const kel__twofold *a, size_t n)
     return most;
 }
 
-/* A step that changes z by less than 2^-48 of it leaves an error of a few eps times that: all that pairs hold. Where z
+/* The first step starts from z = 0 and finds 15 digits at most, for which plain sums do. A step that changes z by less than 2^-48 of it leaves an error of a few eps times that: all that pairs hold. Where z
    all but vanishes beside the values, the noise of the pairs is the limit. */
 static void
 refine(const work *w, kel__twofold *g, double *dz)
@@ -161,7 +161,10 @@ refine(const work *w, kel__twofold *g, double *dz)
         memset(g, 0, p * sizeof *g);
         for (size_t i = 0; i < w->n; i++)
             for (size_t k = 0; k < p; k++)
-                kel__two_gather(&g[k], w->b[i * p + k], w->r[i]);
+                if (step == 0)
+                    g[k].hi += w->b[i * p + k].hi * w->r[i].hi;
+                else
+                    kel__two_gather(&g[k], w->b[i * p + k], w->r[i]);
         for (size_t k = 0; k < p; k++)
             dz[k] = g[k].hi + g[k].lo;
         kel__solve_transposed(dz, w->u, p);

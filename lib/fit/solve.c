@@ -1,7 +1,8 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* One fit for given degrees. Rows weighted by 1/u go through a triangular factor to the reduced problem. Where weights or rows depend on the
-   answer (percentages, several columns, shared errors, other references, current length) this is repeated from the last answer until
-   nothing changes: a Gauss-Newton step with right-hand side  y - g(x) + J x  in place of y. */
+/* One fit for given degrees. Rows weighted by 1/u go through a triangular factor to the reduced problem. Where weights
+   or rows depend on the answer (percentages, several columns, shared errors, other references, current length) this is
+   repeated from the last answer until nothing changes: a Gauss-Newton step with right-hand side  y - g(x) + J x  in
+   place of y. */
 #include "problem.h"
 
 #include <string.h>
@@ -14,8 +15,8 @@ no_memory(kel_error *err)
     return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory in a fit");
 }
 
-/* Row for the factor at the solution's present x: [gradient | shared sizes | right-hand side]; returns 1/u. The very first time there is no
-   curve yet, and the printed value stands for the curve's. */
+/* Row for the factor at the solution's present x: [gradient | shared sizes | right-hand side]; returns 1/u. The very
+   first time there is no curve yet, and the printed value stands for the curve's. */
 static double
 linear_row(double *row, double *work, const kel__problem *p, const kel__solution *s, const kel__row *r, bool first)
 {
@@ -38,40 +39,15 @@ add_prior_rows(kel__factor *factor, double *row, const kel__problem *p, const ke
     }
 }
 
-kel__row_result
-kel__row_evaluate(const kel__problem *problem, const kel__solution *solution, const kel__row *row, bool with_leverage, double *work)
-{
-    const kel__layout *l = &solution->layout;
-    double *gradient = work, *spare = work + l->unknowns, *z = spare;
-    kel__model model = kel__model_row(gradient, spare, problem, l, row, solution->x);
-    kel__row_result r = { .fitted = model.value, .u = kel__row_u(problem, solution, row, model.value) };
-    for (size_t j = 0; j < problem->shared_count; j++)
-        r.shared_term += solution->x[l->curve + j] * kel__shared_size(problem, j, row, model.value);
-    r.residual = row->seen->value - r.fitted - r.shared_term;
-    if (!with_leverage)
-        return r;
-    size_t k = solution->parameters, n = k + problem->shared_count;
-    for (size_t i = 0; i < k; i++) {
-        z[i] = 0;
-        for (size_t j = 0; j < l->curve; j++)
-            z[i] += solution->basis[i * l->curve + j] * gradient[j];
-        z[i] /= r.u;
-    }
-    for (size_t j = 0; j < problem->shared_count; j++)
-        z[k + j] = kel__shared_size(problem, j, row, model.value) / r.u;
-    kel__solve_transposed(z, solution->triangle, n);
-    for (size_t i = 0; i < n; i++)
-        r.leverage += z[i] * z[i];
-    return r;
-}
-
 kel_status
-kel__factor_all(kel__factor *factor, kel__layout *layout, const kel__problem *problem, kel_arena *memory, const int *degrees, kel_error *err)
+kel__factor_all(kel__factor *factor, kel__layout *layout, const kel__problem *problem, kel_arena *memory,
+                const int *degrees, kel_error *err)
 {
     kel_status status = kel__layout_make(layout, problem, memory, degrees, err);
     if (status < 0 || (status = kel__factor_new(factor, memory, layout->unknowns + 1, err)) < 0)
         return status;
-    double *row = kel_arena_take(memory, 2 * (layout->unknowns + 1), sizeof *row), *zero = kel_arena_take(memory, layout->unknowns, sizeof *zero);
+    double *row = kel_arena_take(memory, 2 * (layout->unknowns + 1), sizeof *row),
+           *zero = kel_arena_take(memory, layout->unknowns, sizeof *zero);
     if (row == NULL || zero == NULL)
         return no_memory(err);
     const kel__solution none = { .factor = 1 }; /* stated absolute u do not look at it */
@@ -85,8 +61,8 @@ kel__factor_all(kel__factor *factor, kel__layout *layout, const kel__problem *pr
 }
 
 kel_status
-kel__solve_from(kel__solution *solution, const kel__problem *problem, kel_arena *memory, const kel__factor *factor, const kel__layout *full,
-                const int *degrees, kel_error *err)
+kel__solve_from(kel__solution *solution, const kel__problem *problem, kel_arena *memory, const kel__factor *factor,
+                const kel__layout *full, const int *degrees, kel_error *err)
 {
     *solution = (kel__solution){ .iterations = 1 };
     kel__layout *l = &solution->layout;
@@ -98,8 +74,10 @@ kel__solve_from(kel__solution *solution, const kel__problem *problem, kel_arena 
     if (r == NULL)
         return no_memory(err);
     for (size_t i = 0; i < l->piece_count; i++)
-        memcpy(r + l->pieces[i].first * height, factor->r + full->pieces[i].first * height, l->pieces[i].count * height * sizeof *r);
-    memcpy(r + l->coefficients * height, factor->r + full->coefficients * height, (l->unknowns + 1 - l->coefficients) * height * sizeof *r);
+        memcpy(r + l->pieces[i].first * height, factor->r + full->pieces[i].first * height,
+               l->pieces[i].count * height * sizeof *r);
+    memcpy(r + l->coefficients * height, factor->r + full->coefficients * height,
+           (l->unknowns + 1 - l->coefficients) * height * sizeof *r);
     if ((status = kel__reduce(solution, memory, r, height, err)) < 0)
         return status;
     if (!problem->uniform) {
@@ -138,7 +116,8 @@ iterate(kel__solution *s, const kel__problem *p, kel_arena *memory, kel_error *e
 {
     const kel__layout *l = &s->layout;
     kel__factor factor;
-    double *row = kel_arena_take(memory, l->unknowns + 1, sizeof *row), *work = kel_arena_take(memory, l->unknowns + 1, sizeof *work);
+    double *row = kel_arena_take(memory, l->unknowns + 1, sizeof *row),
+           *work = kel_arena_take(memory, l->unknowns + 1, sizeof *work);
     double *before = kel_arena_take(memory, l->unknowns, sizeof *before);
     s->x = kel_arena_take(memory, l->unknowns, sizeof *s->x);
     if (row == NULL || work == NULL || before == NULL || s->x == NULL)
@@ -170,7 +149,8 @@ iterate(kel__solution *s, const kel__problem *p, kel_arena *memory, kel_error *e
         if (status == KEL_OK) {
             change = fmax(change, relative_change(l, x, before));
             /* Rounding may keep the last digits moving: where steps no longer shrink, 1e-10 is the end. */
-            bool still = change <= 1e-13 || (s->iterations > 5 && change <= 1e-10 && change >= last) || (p->linear && p->fixed);
+            bool still =
+                change <= 1e-13 || (s->iterations > 5 && change <= 1e-10 && change >= last) || (p->linear && p->fixed);
             last = change;
             if (still || s->iterations == MOST_ITERATIONS) {
                 s->basis = kel_arena_copy(memory, s->basis, l->curve * s->parameters, sizeof *s->basis);

@@ -1,6 +1,7 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* A polynomial of n coefficients on part of its piece: values at the n Chebyshev points of the part, turned into coefficients by the discrete
-   orthogonality  c_j = (2/n) sum_k f(x_k) cos(j pi (k + 1/2)/n),  c_0 halved (Mason and Handscomb, Chebyshev Polynomials, 4.6). */
+/* A polynomial of n coefficients on part of its piece: values at the n Chebyshev points of the part, turned into
+   coefficients by the discrete orthogonality  c_j = (2/n) sum_k f(x_k) cos(j pi (k + 1/2)/n),  c_0 halved (Mason and
+   Handscomb, Chebyshev Polynomials, 4.6). */
 #include "subdivide.h"
 
 #include <math.h>
@@ -27,8 +28,8 @@ ascending(const void *a, const void *b)
 }
 
 kel_status
-kel__subdivide(kel_piece **out, size_t *out_count, size_t **parent, const kel_piece *pieces, size_t count, const double *cuts, size_t cut_count,
-               kel_arena *memory, kel_error *err)
+kel__subdivide(kel_piece **out, size_t *out_count, size_t **parent, const kel_piece *pieces, size_t count,
+               const double *cuts, size_t cut_count, kel_arena *memory, kel_error *err)
 {
     double *sorted = kel_arena_copy(memory, cuts, cut_count, sizeof *sorted);
     *out = kel_arena_take(memory, count + cut_count, sizeof **out);
@@ -55,7 +56,8 @@ kel__subdivide(kel_piece **out, size_t *out_count, size_t **parent, const kel_pi
 }
 
 void
-kel__carry_over(double *out, const kel_piece *out_pieces, size_t out_count, const size_t *parent, const double *coefficients, const kel_piece *pieces)
+kel__carry_over(double *out, const kel_piece *out_pieces, size_t out_count, const size_t *parent,
+                const double *coefficients, const kel_piece *pieces)
 {
     const double pi = 3.14159265358979323846;
     for (size_t i = 0; i < out_count; i++) {
@@ -68,8 +70,10 @@ kel__carry_over(double *out, const kel_piece *out_pieces, size_t out_count, cons
         }
         memset(d, 0, part->count * sizeof *d);
         for (size_t k = 0; k < part->count; k++) {
-            double angle = pi * ((double)k + 0.5) / n, middle = (part->from + part->to) / 2, half = (part->to - part->from) / 2;
-            double t = middle + half * cos(angle), x = ((t - whole->from) + (t - whole->to)) / (whole->to - whole->from);
+            double angle = pi * ((double)k + 0.5) / n, middle = (part->from + part->to) / 2,
+                   half = (part->to - part->from) / 2;
+            double t = middle + half * cos(angle),
+                   x = ((t - whole->from) + (t - whole->to)) / (whole->to - whole->from);
             double value = clenshaw(c, whole->count, x);
             for (size_t j = 0; j < part->count; j++)
                 d[j] += (j == 0 ? 1 : 2) / n * value * cos((double)j * angle);

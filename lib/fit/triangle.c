@@ -1,9 +1,10 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* A triangular factor that takes rows as they come: memory does not grow with their number.
 
-   Householder reflections of [R; block] (Golub and Van Loan, Matrix Computations, 5.1 and 5.2.3): for column j the vector is
-   (1, b_j/(R_jj - beta)) with beta = -sign(R_jj) |(R_jj, b_j)|; R above stays triangular, the block is annihilated. Sums run over four partial
-   sums, which both halves their rounding error and lets the compiler use vector registers. */
+   Householder reflections of [R; block] (Golub and Van Loan, Matrix Computations, 5.1 and 5.2.3): for column j the
+   vector is (1, b_j/(R_jj - beta)) with beta = -sign(R_jj) |(R_jj, b_j)|; R above stays triangular, the block is
+   annihilated. Sums run over four partial sums, which both halves their rounding error and lets the compiler use vector
+   registers. */
 #include "problem.h"
 
 #include <string.h>

@@ -1,24 +1,27 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* The independent uncertainty of each row: stated, or estimated from the residuals of its column.
 
-   Stated:    u^2 = u0^2 + (r g)^2 + resolution^2/12, g the curve's value at the row; an absolute u0 alone is u as it stands, so that a
-   table split in two, or printed in another unit, weighs what it did.
-   Estimated: u_i^2 = s^2 w_i^2 + resolution^2/12 with w = 1 for a coefficient or an expansion and 1/|Tb - Ta| for a mean, whose error is that of
-   the expansion. s >= 0 solves  sum r_i^2/u_i^2 = n - sum h_i  over the column's rows (r net residuals, h leverages, a fixed point over fits);
-   s = 0 if the sum is already smaller there. With equal w it is the classic residual variance, floored at the rounding.
-   Columns with less than 2 degrees of freedom n - sum h share one factor f of their resolutions (u_i = f resolution, times w_i/median w) from
-   their pooled equation; below 1 pooled degree the scatter is not known, and rows count with their rounding alone. */
+   Stated:    u^2 = u0^2 + (r g)^2 + resolution^2/12, g the curve's value at the row; an absolute u0 alone is u as it
+   stands, so that a table split in two, or printed in another unit, weighs what it did.
+   Estimated: u_i^2 = s^2 w_i^2 + resolution^2/12 with w = 1 for a coefficient or an expansion and 1/|Tb - Ta| for a
+   mean, whose error is that of the expansion. s >= 0 solves  sum r_i^2/u_i^2 = n - sum h_i  over the column's rows (r
+   net residuals, h leverages, a fixed point over fits); s = 0 if the sum is already smaller there. With equal w it is
+   the classic residual variance, floored at the rounding. Columns with less than 2 degrees of freedom n - sum h share
+   one factor f of their resolutions (u_i = f resolution, times w_i/median w) from their pooled equation; below 1 pooled
+   degree the scatter is not known, and rows count with their rounding alone. */
 #include "problem.h"
 
-/* Degrees of freedom at these limits are whole numbers off by rounding. Where a column's rule changes the weights so that the other rule would
-   hold, there is no fixed point: from this iteration on a column that is pooled stays so, and a scatter that is not known. */
+/* Degrees of freedom at these limits are whole numbers off by rounding. Where a column's rule changes the weights so
+   that the other rule would hold, there is no fixed point: from this iteration on a column that is pooled stays so, and
+   a scatter that is not known. */
 static const double ENOUGH = 2 - 1e-9, POOLED_ENOUGH = 1 - 1e-9;
 enum { SETTLED = 6 };
 
 kel_status
 kel__solution_arrays(kel__solution *solution, const kel__problem *problem, kel_arena *memory, kel_error *err)
 {
-    double **all[] = { &solution->scatter, &solution->leverage, &solution->rss, &solution->unstated_rss, &solution->unstated_floor };
+    double **all[] = { &solution->scatter, &solution->leverage, &solution->rss, &solution->unstated_rss,
+                       &solution->unstated_floor };
     for (size_t i = 0; i < sizeof all / sizeof all[0]; i++)
         if ((*all[i] = kel_arena_take(memory, problem->column_count, sizeof(double))) == NULL)
             return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory in a fit");
@@ -51,8 +54,9 @@ kel__row_u(const kel__problem *problem, const kel__solution *solution, const kel
     return hypot(s / row->width, column->least);
 }
 
-/* s of one column by its equation in v = s^2. The reciprocal of the sum S(v) is concave and rises (for equal w it is a line), so that Newton's
-   steps on 1/S = 1/freedom from v = 0 approach from below, in a few steps however small the floor is. */
+/* s of one column by its equation in v = s^2. The reciprocal of the sum S(v) is concave and rises (for equal w it is a
+   line), so that Newton's steps on 1/S = 1/freedom from v = 0 approach from below, in a few steps however small the
+   floor is. */
 static double
 solve_scatter(const kel__problem *p, size_t c, const double *residual, double freedom)
 {
@@ -120,7 +124,8 @@ add_row(kel__solution *s, const kel__problem *p, sums *t, size_t i, const kel__r
 {
     const kel__row *row = &p->rows[i];
     const kel__column *column = &p->columns[row->column];
-    double r2 = r->residual * r->residual, u2 = r->u * r->u, weight = relative_weight(p, row), least2 = column->least * column->least;
+    double r2 = r->residual * r->residual, u2 = r->u * r->u, weight = relative_weight(p, row),
+           least2 = column->least * column->least;
     t->residual[i] = r->residual;
     s->rss[row->column] += r2;
     s->leverage[row->column] += r->leverage;
@@ -148,11 +153,13 @@ clear(kel__solution *s, const kel__problem *p)
 }
 
 kel_status
-kel__estimate_scatter(double *change, kel__solution *solution, const kel__problem *problem, bool leverages, kel_arena *memory, kel_error *err)
+kel__estimate_scatter(double *change, kel__solution *solution, const kel__problem *problem, bool leverages,
+                      kel_arena *memory, kel_error *err)
 {
     kel__solution *s = solution;
     const kel__problem *p = problem;
-    sums t = { kel_arena_take(memory, p->row_count, sizeof(double)), kel_arena_take(memory, p->column_count, sizeof(double)),
+    sums t = { kel_arena_take(memory, p->row_count, sizeof(double)),
+               kel_arena_take(memory, p->column_count, sizeof(double)),
                kel_arena_take(memory, p->column_count, sizeof(double)), 0 };
     double *work = kel_arena_take(memory, 3 * s->layout.unknowns, sizeof *work);
     if (t.residual == NULL || t.freedom == NULL || t.scaled == NULL || work == NULL)
@@ -177,7 +184,8 @@ kel__estimate_scatter(double *change, kel__solution *solution, const kel__proble
     if (s->stated == 0)
         s->chi2 = NAN;
 
-    /* What rounding of residuals can do to a scatter is no change: where rows fit as well as doubles can, it would never end. */
+    /* What rounding of residuals can do to a scatter is no change: where rows fit as well as doubles can, it would
+       never end. */
     *change = 0;
     double factor = s->factor, noise = 0;
     for (size_t c = 0; c < p->column_count; c++) {
@@ -185,7 +193,8 @@ kel__estimate_scatter(double *change, kel__solution *solution, const kel__proble
         double before = s->scatter[c], now = NAN;
         if (t.freedom[c] >= ENOUGH && column->stated < column->rows && !(isnan(before) && s->iterations >= SETTLED))
             now = solve_scatter(p, c, t.residual, t.freedom[c]);
-        double small = 1e-3 * column->least * column->typical_width, moved = fabs(now - before) - column->rounding * column->typical_width;
+        double small = 1e-3 * column->least * column->typical_width,
+               moved = fabs(now - before) - column->rounding * column->typical_width;
         if (!(isnan(before) && isnan(now)))
             *change = fmax(*change, isnan(before) || isnan(now) ? 1 : fmax(moved, 0) / fmax(now, small));
         else if (column->stated < column->rows)

@@ -26,18 +26,19 @@ typedef struct kel_ls_result {
 /* Fits y[i] at x[i], i < n, by a polynomial of `degree`, with or without the constant term. u: standard uncertainties,
    all > 0, or NULL; with u the covariance is not scaled by the residuals unless `scale` is true.
 
-   KEL_OK. KEL_E_RANK: the x do not determine the coefficients, or n < parameters. KEL_E_ARGUMENT: non-finite data (index
-   in err->line), degree below 0 (1 without constant) or above KEL_DEGREE_MAX, no place for results. KEL_E_RANGE: numbers
-   beyond a double arise. KEL_E_NOMEM, KEL_E_CONVERGENCE. n = parameters: standard deviations are NaN without u.
+   KEL_OK. KEL_E_RANK: the x do not determine the coefficients, or n < parameters. KEL_E_ARGUMENT: non-finite data
+   (index in err->line), degree below 0 (1 without constant) or above KEL_DEGREE_MAX, no place for results. KEL_E_RANGE:
+   numbers beyond a double arise. KEL_E_NOMEM, KEL_E_CONVERGENCE. n = parameters: standard deviations are NaN without u.
 
-   Accuracy. The data are taken as exact. Up to 64 MiB of rows, which is n (parameters + 1) <= 2^22, the rows are held in
-   pairs of doubles and the solution is refined: coefficients, deviations and residual sums come out within some 1e-15 of
-   themselves as long as condition is below 1e13 (a design worse than some 1e14 is refused as KEL_E_RANK), which is more
-   than data rounded to doubles determine. Two things can spoil it: a coefficient that is smaller by 15 digits and more
-   than its standard deviation, and powers of x that cancel more than 15 digits on the range, (1 + |middle|/half)^degree
-   > 1e15. Beyond 64 MiB the triangular factor alone answers, in constant memory: rows in pairs would cost both the memory
-   and some thirty times the time, and what they win, the rounding of sums over so many rows, is small beside what such
-   data scatter. Relative error there: some 1e-16 times condition (a design worse than 1e14/parameters is refused).
+   Accuracy. The data are taken as exact. Up to 64 MiB of rows, which is n (parameters + 1) <= 2^22, the rows are held
+   in pairs of doubles and the solution is refined: coefficients, deviations and residual sums come out within some
+   1e-15 of themselves as long as condition is below 1e13 (a design worse than some 1e14 is refused as KEL_E_RANK),
+   which is more than data rounded to doubles determine. Two things can spoil it: a coefficient that is smaller by 15
+   digits and more than its standard deviation, and powers of x that cancel more than 15 digits on the range, (1 +
+   |middle|/half)^degree > 1e15. Beyond 64 MiB the triangular factor alone answers, in constant memory: rows in pairs
+   would cost both the memory and some thirty times the time, and what they win, the rounding of sums over so many rows,
+   is small beside what such data scatter. Relative error there: some 1e-16 times condition (a design worse than
+   1e14/parameters is refused).
 
    Source: refinement of least squares with residuals in twice the precision, A. Bjorck, BIT 7 (1967) 257, in a basis in
    which the design is orthonormal to a few digits. Since 0.1. */
@@ -48,8 +49,8 @@ KEL_API kel_status kel_ls_polynomial(kel_ls_result *result, const double *x, con
    y_lo[i]. For a decimal number hi is the nearest double and lo the double nearest to the rest. x_lo or y_lo may be
    NULL: all 0. (Beyond 64 MiB of rows the low parts enter with the precision of a double.) Since 0.1. */
 KEL_API kel_status kel_ls_polynomial_pairs(kel_ls_result *result, const double *x_hi, const double *x_lo,
-                                           const double *y_hi, const double *y_lo, const double *u, size_t n, int degree,
-                                           bool constant, bool scale, kel_error *err);
+                                           const double *y_hi, const double *y_lo, const double *u, size_t n,
+                                           int degree, bool constant, bool scale, kel_error *err);
 
 #ifdef __cplusplus
 }
