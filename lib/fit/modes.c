@@ -76,7 +76,7 @@ kel__modes(double **out, size_t *scatter_count, const kel__problem *problem, con
     if (q > 0) {
         shared_covariance(c, vectors, s->triangle, k, q);
         memcpy(vectors, c, q * q * sizeof *c);
-        kel_status status = kel__eigen(values, vectors, q, err);
+        kel_status status = kel__eigen(values, vectors, q, memory, err);
         if (status < 0)
             return status;
         for (size_t j = 0; j < q; j++) {

@@ -165,7 +165,8 @@ kel_status kel__condition(double *condition, int *rank, const double *triangle, 
 /* R' y = b in place */
 void kel__solve_transposed(double *b, const double *triangle, size_t n);
 void kel__solve_upper(double *b, const double *triangle, size_t stride, size_t n);                /* R y = b in place */
-kel_status kel__eigen(double *values, double *symmetric, size_t n, kel_error *err); /* vectors replace the matrix */
+/* vectors replace the matrix */
+kel_status kel__eigen(double *values, double *symmetric, size_t n, kel_arena *memory, kel_error *err);
 /* L of a = L Q, rows <= columns */
 kel_status kel__lower_factor(double *out, double *a, size_t rows, size_t columns, kel_arena *memory, kel_error *err);
 

@@ -1,12 +1,16 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The reduced problem: a small matrix that stands for all rows, conditions of continuity, rank, solution. All LAPACK calls are here.
+/* The reduced problem: a small matrix that stands for all rows, conditions of continuity, rank, solution. All LAPACK
+   calls are here.
 
    1. Columns are scaled to length 1: x = D y.
-   2. The conditions C x = 0 are removed: QR with column pivoting of (C D)' gives its rank and an orthonormal basis N of the null space, so that
+   2. The conditions C x = 0 are removed: QR with column pivoting of (C D)' gives its rank and an orthonormal basis N of
+   the null space, so that
       x = Z z with Z = D N (Golub and Van Loan, Matrix Computations, 6.2.2, 5.5).
-   3. [R Z | shared columns | right-hand side] is factored once more; the singular values of its curve part, columns scaled, decide rank and
+   3. [R Z | shared columns | right-hand side] is factored once more; the singular values of its curve part, columns
+   scaled, decide rank and
       condition. A rank that is not full is an error that names the piece: nothing is ever dropped.
-   Sizes and finiteness are checked before each call, for LAPACK prints on a bad argument. */
+   Sizes and finiteness are checked before each call, for LAPACK prints on a bad argument. Workspace is our own: the
+   LAPACKE functions that take it themselves print when memory runs out. */
 #include "problem.h"
 #include "number_text.h"
 
@@ -20,11 +24,20 @@ no_memory(kel_error *err)
     return kel_error_set(err, KEL_E_NOMEM, 0, 0, "out of memory in the reduced least-squares problem");
 }
 
+/* Workspace that serves every routine here: at least their minimum (5 (rows + columns) for dgesvd), and blocks of 32.
+   */
+typedef struct workspace { double *at; lapack_int size; } workspace;
+
+static workspace
+take_workspace(kel_arena *memory, size_t rows, size_t columns)
+{
+    size_t size = 64 * (rows + columns) + 64;
+    return (workspace){ kel_arena_take(memory, size, sizeof(double)), (lapack_int)size };
+}
+
 static kel_status
 lapack_failed(const char *routine, lapack_int info, kel_error *err)
 {
-    if (info == LAPACK_WORK_MEMORY_ERROR || info == LAPACK_TRANSPOSE_MEMORY_ERROR)
-        return no_memory(err);
     return kel_error_set(err, KEL_E_CONVERGENCE, 0, 0, "%s failed with %d on the reduced problem", routine, (int)info);
 }
 
@@ -48,7 +61,8 @@ all_finite(const double *a, size_t n)
     return true;
 }
 
-/* Singular values of a (destroyed) with its columns scaled to length 1; vt, if not NULL, gets the right vectors by rows of a column-major matrix. */
+/* Singular values of a (destroyed) with its columns scaled to length 1; vt, if not NULL, gets the right vectors by rows
+   of a column-major matrix. */
 static kel_status
 singular_values(double *values, double *vt, double *a, size_t rows, size_t columns, kel_arena *memory, kel_error *err)
 {
@@ -57,11 +71,12 @@ singular_values(double *values, double *vt, double *a, size_t rows, size_t colum
         for (size_t i = 0; i < rows && length > 0; i++)
             a[j * rows + i] /= length;
     }
-    double *work = kel_arena_take(memory, columns + rows, sizeof *work);
-    if (work == NULL)
+    workspace work = take_workspace(memory, rows, columns);
+    if (work.at == NULL)
         return no_memory(err);
-    lapack_int info = LAPACKE_dgesvd(LAPACK_COL_MAJOR, 'N', vt != NULL ? 'A' : 'N', (lapack_int)rows, (lapack_int)columns, a, (lapack_int)rows,
-                                     values, NULL, 1, vt, vt != NULL ? (lapack_int)columns : 1, work);
+    lapack_int info = LAPACKE_dgesvd_work(LAPACK_COL_MAJOR, 'N', vt != NULL ? 'A' : 'N', (lapack_int)rows,
+                                          (lapack_int)columns, a, (lapack_int)rows, values, NULL, 1, vt,
+                                          vt != NULL ? (lapack_int)columns : 1, work.at, work.size);
     return info == 0 ? KEL_OK : lapack_failed("dgesvd", info, err);
 }
 
@@ -77,7 +92,8 @@ count_rank(const double *values, size_t columns, size_t rows)
 
 /* N: orthonormal basis of the null space of C D, curve x *free by columns. */
 static kel_status
-null_space(double **out, size_t *free_count, const kel__layout *l, const double *scale, kel_arena *memory, kel_error *err)
+null_space(double **out, size_t *free_count, const kel__layout *l, const double *scale, kel_arena *memory,
+           kel_error *err)
 {
     size_t n = l->curve, m = l->condition_count, k = m < n ? m : n;
     double *q = kel_arena_take(memory, n * (n > m ? n : m), sizeof *q), *tau = kel_arena_take(memory, k, sizeof *tau);
@@ -99,13 +115,18 @@ null_space(double **out, size_t *free_count, const kel__layout *l, const double 
         for (size_t i = 0; i < n && length > 0; i++)
             column[i] /= length;
     }
-    lapack_int info = LAPACKE_dgeqp3(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)m, q, (lapack_int)n, pivot, tau);
+    workspace work = take_workspace(memory, n, m);
+    if (work.at == NULL)
+        return no_memory(err);
+    lapack_int info = LAPACKE_dgeqp3_work(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)m, q, (lapack_int)n, pivot, tau,
+                                          work.at, work.size);
     if (info != 0)
         return lapack_failed("dgeqp3", info, err);
     size_t rank = 0;
     while (rank < k && fabs(q[rank * n + rank]) > 16 * KEL__EPS * (double)n * fabs(q[0]) && q[0] != 0)
         rank++;
-    info = LAPACKE_dorgqr(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)n, (lapack_int)rank, q, (lapack_int)n, tau);
+    info = LAPACKE_dorgqr_work(LAPACK_COL_MAJOR, (lapack_int)n, (lapack_int)n, (lapack_int)rank, q, (lapack_int)n, tau,
+                               work.at, work.size);
     if (info != 0)
         return lapack_failed("dorgqr", info, err);
     *out = q + rank * n;
@@ -133,9 +154,10 @@ report_rank(const kel__solution *s, const double *direction, kel_error *err)
     char from[KEL_NUMBER_SIZE], to[KEL_NUMBER_SIZE];
     kel__temperature_name(from, l->pieces[worst].from);
     kel__temperature_name(to, l->pieces[worst].to);
-    return kel_error_set(err, KEL_E_RANK, 0, 0,
-                         "the rows determine only %d of %zu parameters: between %s K and %s K they do not carry degree %zu", s->rank,
-                         s->parameters, from, to, l->pieces[worst].count - 1);
+    return kel_error_set(
+        err, KEL_E_RANK, 0, 0,
+        "the rows determine only %d of %zu parameters: between %s K and %s K they do not carry degree %zu", s->rank,
+        s->parameters, from, to, l->pieces[worst].count - 1);
 }
 
 static kel_status
@@ -144,7 +166,8 @@ decide_rank(kel__solution *s, const double *m, size_t height, kel_arena *memory,
     size_t k = s->parameters, small = height < k ? height : k;
     double *a = kel_arena_copy(memory, m, height * k, sizeof *a);
     double *values = kel_arena_take(memory, k + 1, sizeof *values), *vt = kel_arena_take(memory, k * k, sizeof *vt);
-    double *direction = kel_arena_take(memory, k, sizeof *direction), *lengths = kel_arena_take(memory, k, sizeof *lengths);
+    double *direction = kel_arena_take(memory, k, sizeof *direction),
+           *lengths = kel_arena_take(memory, k, sizeof *lengths);
     if (a == NULL || values == NULL || vt == NULL || direction == NULL || lengths == NULL)
         return no_memory(err);
     for (size_t j = 0; j < k; j++)
@@ -239,7 +262,11 @@ kel__reduce(kel__solution *solution, kel_arena *memory, const double *r, size_t 
     project(m, s, r, height);
     if ((status = decide_rank(s, m, height, memory, err)) < 0)
         return status;
-    lapack_int info = LAPACKE_dgeqrf(LAPACK_COL_MAJOR, (lapack_int)height, (lapack_int)(n + 1), m, (lapack_int)height, tau);
+    workspace work = take_workspace(memory, height, n + 1);
+    if (work.at == NULL)
+        return no_memory(err);
+    lapack_int info = LAPACKE_dgeqrf_work(LAPACK_COL_MAJOR, (lapack_int)height, (lapack_int)(n + 1), m,
+                                          (lapack_int)height, tau, work.at, work.size);
     if (info != 0)
         return lapack_failed("dgeqrf", info, err);
     for (size_t j = 0; j < n; j++)
@@ -289,9 +316,13 @@ kel__solve_upper(double *b, const double *triangle, size_t stride, size_t n)
 }
 
 kel_status
-kel__eigen(double *values, double *symmetric, size_t n, kel_error *err)
+kel__eigen(double *values, double *symmetric, size_t n, kel_arena *memory, kel_error *err)
 {
-    lapack_int info = LAPACKE_dsyev(LAPACK_COL_MAJOR, 'V', 'U', (lapack_int)n, symmetric, (lapack_int)n, values);
+    workspace work = take_workspace(memory, n, n);
+    if (work.at == NULL)
+        return no_memory(err);
+    lapack_int info = LAPACKE_dsyev_work(LAPACK_COL_MAJOR, 'V', 'U', (lapack_int)n, symmetric, (lapack_int)n, values,
+                                         work.at, work.size);
     return info == 0 ? KEL_OK : lapack_failed("dsyev", info, err);
 }
 
@@ -299,9 +330,11 @@ kel_status
 kel__lower_factor(double *out, double *a, size_t rows, size_t columns, kel_arena *memory, kel_error *err)
 {
     double *tau = kel_arena_take(memory, rows, sizeof *tau);
-    if (tau == NULL)
+    workspace work = take_workspace(memory, rows, columns);
+    if (tau == NULL || work.at == NULL)
         return no_memory(err);
-    lapack_int info = LAPACKE_dgelqf(LAPACK_COL_MAJOR, (lapack_int)rows, (lapack_int)columns, a, (lapack_int)rows, tau);
+    lapack_int info = LAPACKE_dgelqf_work(LAPACK_COL_MAJOR, (lapack_int)rows, (lapack_int)columns, a, (lapack_int)rows,
+                                          tau, work.at, work.size);
     if (info != 0)
         return lapack_failed("dgelqf", info, err);
     for (size_t j = 0; j < rows; j++)

@@ -304,7 +304,9 @@ END_TEST
 START_TEST(eigenvalues)
 {
     double a[] = { 2, 1, 1, 2 }, values[2];
-    ck_assert_int_eq(kel__eigen(values, a, 2, NULL), KEL_OK);
+    kel_arena *memory = kel_arena_new();
+    ck_assert_int_eq(kel__eigen(values, a, 2, memory, NULL), KEL_OK);
+    kel_arena_free(memory);
     ck_assert_ulp(values[0], 1, 4);
     ck_assert_ulp(values[1], 3, 4);
     ck_assert_abs(a[0] + a[1], 0, 4 * KEL__EPS, "1"); /* (1, -1)/sqrt 2 */
