@@ -65,7 +65,7 @@ tools=$(find tools -name '*.[ch]' 2>/dev/null | sort)
 public=$(find lib/include -name '*.h' | sort)
 libraries=$(find lib/core lib/fit -name '*.[ch]' 2>/dev/null | sort)
 
-echo "1..14"
+echo "1..15"
 
 # ---- who may include what ----
 
@@ -181,6 +181,21 @@ for f in $libraries; do
 done >>"$offences"
 forbid_calls 'strtod|atof|sscanf|fscanf|strtof|strtold'
 verdict "libraries read and write no number by way of the locale"
+
+# Error-free sums and products are not what they say once a compiler may rearrange or contract them. Refused by the
+# sources themselves, and asked for by no build file.
+for f in lib/core/core.h lib/fit/problem.h lib/fit/twofold.h; do
+    test -e "$f" || continue
+    awk '/^#if defined __FAST_MATH__/ { guard = 1; next } guard && /^#error/ { found = 1 } { guard = 0 }
+        END { exit !found }' "$f" || echo "$f does not refuse -ffast-math"
+done >>"$offences"
+grep -nE -e '-(Ofast|ffast-math|funsafe-math-optimizations|fassociative-math|freciprocal-math|ffinite-math-only)' \
+    configure.ac Makefile.am $(find lib tools tests -name '*.am') >>"$offences"
+if test -d lib/fit && command -v "${CC:-cc}" >/dev/null 2>&1; then
+    "${CC:-cc}" -std=gnu17 -D_GNU_SOURCE -ffast-math -fsyntax-only -Ilib/include -Ilib/fit lib/fit/refine.c 2>/dev/null &&
+        echo "lib/fit/refine.c compiles with -ffast-math" >>"$offences"
+fi
+verdict "no fast-math: arithmetic is IEEE's"
 
 # ---- the house ----
 

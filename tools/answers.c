@@ -26,7 +26,8 @@ question_begin(const job *j, question *out, const subject *from, const units *in
 {
     static const char *const words[ANSWERS] = { "coefficient", "mean", "expansion", "ratio" };
     *out = (question){ .from = from, .in = in, .reference = from->content->reference_temperature,
-                       .base = (int)from->content->base };
+                       .base = (int)from->content->base,
+                       .assumed = from->content->reference_defaulted && !option_given(j, OPT_REFERENCE) };
     const char *wanted = option_value(j, OPT_QUANTITY);
     while (wanted != NULL && out->wanted < ANSWERS && strcmp(wanted, words[out->wanted]) != 0)
         out->wanted++;
@@ -110,6 +111,9 @@ json_head(kel_json *json, const question *q)
 
 /* --- CSV: a table of our own grammar, so that it can be read back --- */
 
+/* The length ratio has no place in that grammar; it is 1 + expansion. The grammar's column `source` holds free text:
+   there stand the quantities beside the main one that lean on the curve outside the validity range. */
+
 /* Metadata only where the record has one table behind it: of several, no one name is right. */
 static void
 csv_setting(kel_text *out, const char *key, const char *value)
@@ -134,8 +138,7 @@ csv_head(kel_text *out, const question *q)
     kel_text_number(out, q->reference);
     kel_text_printf(out, " K\n# base: %s\n", kel_base_name((kel_base)q->base));
     kel_text_printf(out, "temperature [%s],coefficient [%s],uncertainty [%s],mean coefficient [%s],uncertainty [%s],"
-                         "expansion [1],uncertainty [1]%s,reservations\n", t, a, a, a, a,
-                    q->ratio ? ",length ratio [1],uncertainty [1]" : "");
+                         "expansion [1],uncertainty [1],reservations,source\n", t, a, a, a, a);
 }
 
 /* Empty where a number is not known. */
@@ -155,14 +158,20 @@ csv_row(kel_text *out, const answers *a, const question *q, const char *t_text)
         kel_text_add(out, t_text);
     else
         kel_text_number(out, kel_unit_from_si(&q->in->temperature, a->t));
-    for (int i = 0; i < (q->ratio ? ANSWERS : ANSWERS - 1); i++) {
+    for (int i = 0; i < ANSWER_RATIO; i++) {
         bool coefficient = i == ANSWER_COEFFICIENT || i == ANSWER_MEAN;
         csv_number(out, coefficient ? kel_unit_from_si(alpha, a->of[i].value) : a->of[i].value);
         csv_number(out, coefficient ? kel_unit_from_si(alpha, a->of[i].u) : a->of[i].u);
     }
     kel_text_add(out, ",");
     add_codes(out, a->of[q->wanted].flags, "+");
-    kel_text_add(out, "\n");
+    const char *before = ",extrapolated: ";
+    for (int i = 0; i < ANSWER_RATIO; i++)
+        if (other_extrapolated(a, q, i)) {
+            kel_text_printf(out, "%s%s", before, names[i]);
+            before = "+";
+        }
+    kel_text_add(out, before[0] == ',' ? ",\n" : "\n");
 }
 
 /* --- text --- */
@@ -179,8 +188,11 @@ text_head(answer_writer *w)
     kel_text *out = &w->out->pending, *h = &w->headings;
     add_file_name(out, q->from->name);
     kel_text_add(out, ": reference temperature ");
+    if (q->assumed)
+        kel_text_add(out, "none stated: ");
     add_temperature(out, &q->in->temperature, q->reference);
-    kel_text_printf(out, ", base %s, validity range ", kel_base_name((kel_base)q->base));
+    kel_text_printf(out, "%s, base %s, validity range ", q->assumed ? " is assumed" : "",
+                    kel_base_name((kel_base)q->base));
     add_temperature(out, &q->in->temperature, q->from->content->range.lo);
     kel_text_add(out, " to ");
     add_temperature(out, &q->in->temperature, q->from->content->range.hi);

@@ -13,6 +13,7 @@ enum { ANSWER_COEFFICIENT, ANSWER_MEAN, ANSWER_EXPANSION, ANSWER_RATIO, ANSWERS 
 typedef struct question {
     const subject *from;
     double reference;     /* K; the record's or another */
+    bool assumed;         /* no table states that reference temperature */
     int base;             /* a kel_base; the record's or another */
     int wanted;           /* the main quantity: flags, status and --within-range follow it */
     const units *in;

@@ -6,7 +6,6 @@
 #include "report.h"
 #include "reservations.h"
 
-#include <string.h>
 #include <unistd.h>
 
 const option_group adopt_options = { "Record", (const option_entry[]){
@@ -34,7 +33,7 @@ adopt(job *j, kel_record **record)
     if (file_is_record(f))
         status = fail_text(j, name, "a record already; adopt reads published coefficients (CSV)");
     else if (kel_coefficients_read(record, &report, file_input(f), name, settings, n, &err) < 0)
-        status = fail(j, name, &err);
+        status = fail_or_usage(j, name, &err);
     else
         status = warn_all(j, name, report->warnings, report->warning_count);
     kel_adopt_report_free(report);
@@ -91,7 +90,7 @@ deliver(job *j, const kel_record *record, const units *in)
     if (status == EXIT_FINE && j->report_on_stderr)
         status = kel_record_format(&out.pending, record, &err) < 0 ? fail(j, NULL, &err) : sink_end(j, &out);
     else if (status == EXIT_FINE && path != NULL && kel_record_save(record, path, &err) < 0)
-        status = fail(j, path, &err);
+        status = fail_save(j, path, &err);
     if (status == EXIT_FINE && (!j->report_on_stderr || !j->quiet))
         status = sink_end(j, &report);
     kel_text_free(&out.pending);
@@ -106,7 +105,7 @@ run_adopt(job *j)
     const char *path = option_value(j, OPT_OUTPUT);
     if (j->operand_count != 1)
         return usage(j, "adopt takes one file of coefficients, not %zu", j->operand_count);
-    j->report_on_stderr = path != NULL && strcmp(path, "-") == 0;
+    j->report_on_stderr = path != NULL && output_is_stdout(path);
     if (j->report_on_stderr && j->json)
         return usage(j, "-o - puts the record on stdout: no --json");
     units in;

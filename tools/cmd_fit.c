@@ -8,7 +8,6 @@
 #include "report.h"
 #include "reservations.h"
 
-#include <string.h>
 #include <unistd.h>
 
 const option_group fit_options = { "Fit", (const option_entry[]){
@@ -66,7 +65,7 @@ fit(job *j, work *w)
     progress_end(&p);
     const char *name = w->count == 1 ? j->operands[0] : NULL;
     if (done < 0)
-        return fail(j, name, &err);
+        return err.code == KEL_E_ARGUMENT ? usage(j, "%s", err.message) : fail(j, name, &err);
     return warn_all(j, name, w->report->warnings, w->report->warning_count);
 }
 
@@ -76,7 +75,7 @@ text_report(const job *j, const work *w, kel_text *out)
 {
     const kel_content *c = kel_record_content(w->record);
     for (size_t i = 0; i < w->count; i++) {
-        text_table(out, w->tables[i], &w->in);
+        text_table(out, w->tables[i], &w->in, w->settings.options.range, c->reference_defaulted);
         kel_text_add(out, "\n");
     }
     kel_text_add(out, "Fit\n");
@@ -102,6 +101,27 @@ text_report(const job *j, const work *w, kel_text *out)
     return status;
 }
 
+/* Every value that takes no part, with the reason. */
+static void
+json_left_out(kel_json *json, const work *w)
+{
+    kel_json_array(json, "left_out_rows");
+    for (size_t i = 0; i < w->count; i++)
+        for (size_t k = 0; k < w->tables[i]->observation_count; k++) {
+            const kel_observation *o = &w->tables[i]->observations[k];
+            const char *reason = why_left_out(o, w->settings.options.range);
+            if (reason == NULL)
+                continue;
+            kel_json_inline_object(json, NULL);
+            kel_json_string(json, "table", w->tables[i]->name);
+            kel_json_count(json, "line", o->line);
+            kel_json_string(json, "kind", kel_kind_name(o->kind));
+            kel_json_string(json, "reason", reason);
+            kel_json_end(json);
+        }
+    kel_json_end(json);
+}
+
 /* Everything of the record that scripts rely on, then what only the fit itself knows. */
 static void
 json_report(const job *j, const work *w, kel_text *out)
@@ -113,6 +133,7 @@ json_report(const job *j, const work *w, kel_text *out)
     kel_json_string(&json, "record", option_value(j, OPT_OUTPUT));
     json_summary(&json, c);
     json_fit_report(&json, c, w->report);
+    json_left_out(&json, w);
     json_reservations(j, &json);
     json_warnings(j, &json);
     kel_json_end(&json);
@@ -140,7 +161,7 @@ deliver(job *j, const work *w)
         else
             status = sink_end(j, &out);
     } else if (status == EXIT_FINE && path != NULL && kel_record_save(w->record, path, &err) < 0) {
-        status = fail(j, path, &err);
+        status = fail_save(j, path, &err);
     }
     if (status == EXIT_FINE && (!j->report_on_stderr || !j->quiet))
         status = sink_end(j, &report);
@@ -156,7 +177,7 @@ run_fit(job *j)
     const char *path = option_value(j, OPT_OUTPUT);
     if (j->operand_count == 0)
         return usage(j, "fit needs a table");
-    j->report_on_stderr = path != NULL && strcmp(path, "-") == 0;
+    j->report_on_stderr = path != NULL && output_is_stdout(path);
     if (j->report_on_stderr && j->json)
         return usage(j, "-o - puts the record on stdout: no --json");
     work w = { 0 };

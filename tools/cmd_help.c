@@ -75,7 +75,10 @@ help_of(const job *j, const command *c)
     add_wrapped(&text, c->details, 0, 0);
     for (const option_group *const *g = c->groups; *g != NULL; g++)
         add_group(&text, *g);
-    kel_text_printf(&text, "\nThe manual page kelspan-%s(1) says more.\n", c->name);
+    if (c->run == run_help)
+        kel_text_add(&text, "\nThe manual page kelspan(1) says more.\n");
+    else
+        kel_text_printf(&text, "\nThe manual page kelspan-%s(1) says more.\n", c->name);
     return deliver(j, &text);
 }
 
@@ -125,7 +128,20 @@ help_json(const job *j)
     return deliver(j, &text);
 }
 
-/* An unknown command here is wrong usage like anywhere else. */
+/* The name may hold anything, so it is quoted. */
+int
+unknown_command(const job *j, const char *name)
+{
+    kel_text quoted = KEL_TEXT_INIT;
+    kel_text_quote(&quoted, name, strlen(name));
+    const command *near = command_near(name);
+    const char *shown = quoted.failed || quoted.bytes == NULL ? "" : quoted.bytes;
+    int status = near == NULL ? usage(j, "there is no command '%s'", shown)
+                              : usage(j, "there is no command '%s', the nearest is %s", shown, near->name);
+    kel_text_free(&quoted);
+    return status;
+}
+
 int
 run_help(job *j)
 {
@@ -135,6 +151,6 @@ run_help(job *j)
         return j->json ? help_json(j) : help_all(j);
     const command *c = command_find(j->operands[0]);
     if (c == NULL)
-        return usage(j, "there is no command %s", j->operands[0]);
+        return unknown_command(j, j->operands[0]);
     return help_of(j, c);
 }

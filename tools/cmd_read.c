@@ -136,7 +136,7 @@ report(job *j, kel_table *const *tables, size_t n, const units *in)
     } else {
         for (size_t i = 0; i < n; i++) {
             kel_text_add(&out.pending, i > 0 ? "\n" : "");
-            text_table(&out.pending, tables[i], in);
+            text_table(&out.pending, tables[i], in, (kel_interval){ NAN, NAN }, true);
         }
     }
     return sink_end(j, &out);
@@ -155,11 +155,11 @@ write_table(const job *j, const kel_table *table)
         kel_text_free(&out.pending);
         return fail(j, table->name, &err);
     }
-    if (path == NULL || strcmp(path, "-") == 0)
+    if (path == NULL || output_is_stdout(path))
         return sink_end(j, &out);
     status = kel_file_save(path, out.pending.bytes, out.pending.size, &err);
     kel_text_free(&out.pending);
-    return status < 0 ? fail(j, path, &err) : EXIT_FINE;
+    return status < 0 ? fail_save(j, path, &err) : EXIT_FINE;
 }
 
 /* All wrong usages are found before a table is read. */

@@ -107,9 +107,15 @@ text_result(const subject *s, const units *in, sink *out)
     const kel_content *c = s->content;
     kel_text *text = &out->pending;
     add_file_name(text, s->name);
-    kel_text_printf(text, ": %s, %zu observations, u is the standard uncertainty of a row%s\n\n", c->form,
+    kel_text_printf(text, ": %s, %zu observations, u is the standard uncertainty of a row%s\n", c->form,
                     c->observations,
                     c->thinned ? "; a thinned set of the rows" : "");
+    if (c->reference_defaulted) {
+        kel_text_add(text, "reference temperature none stated: ");
+        add_temperature(text, &in->temperature, c->reference_temperature);
+        kel_text_add(text, " is assumed\n");
+    }
+    kel_text_add(text, "\n");
     text_residuals(text, c, in, false);
 }
 

@@ -4,25 +4,23 @@
 #include "commands.h"
 #include "messages.h"
 
-#include <string.h>
 #include <unistd.h>
 
 /* The temperatures of all operands but the first; each may be a list. */
 static int
 read_temperatures(job *j, double **out, size_t *n, units *in)
 {
-    size_t most = 0;
+    const char *rest, *item;
+    size_t most = 0, size;
     for (size_t i = 1; i < j->operand_count; i++)
-        for (const char *c = j->operands[i]; c != NULL; c = strchr(c + 1, ','))
+        for (rest = j->operands[i]; next_item(&rest, &item, &size);)
             most++;
     *out = kel_arena_take(j->memory, most, sizeof **out);
     *n = 0;
     if (*out == NULL)
         return fail_memory(j);
     for (size_t i = 1; i < j->operand_count; i++) {
-        const char *rest = j->operands[i], *item;
-        size_t size;
-        while (next_item(&rest, &item, &size)) {
+        for (rest = j->operands[i]; next_item(&rest, &item, &size);) {
             const char *one = kel_arena_bytes(j->memory, item, size);
             kel_unit unit;
             if (one == NULL)

@@ -36,6 +36,8 @@ int run_help(job *j);
 
 /* Help of one command on stdout; EXIT_FINE, or EXIT_FAILED where stdout cannot be written. */
 int help_of(const job *j, const command *c);
+/* Wrong usage: there is no command of that name, but perhaps one that is near. */
+int unknown_command(const job *j, const char *name);
 /* The list of commands on stdout. */
 int help_all(const job *j);
 

@@ -144,6 +144,18 @@ output_is_no_input(const job *j, const char *output, const char *const *inputs, 
     return EXIT_FINE;
 }
 
+/* A file that stdout was sent to would otherwise be replaced under the stream. What swallows everything, such as
+   /dev/null, may be both without harm. */
+bool
+output_is_stdout(const char *output)
+{
+    struct stat to, out;
+    if (strcmp(output, "-") == 0)
+        return true;
+    return stat(output, &to) == 0 && fstat(STDOUT_FILENO, &out) == 0 && to.st_dev == out.st_dev &&
+           to.st_ino == out.st_ino && (!S_ISCHR(out.st_mode) || isatty(STDOUT_FILENO) == 1);
+}
+
 void
 sink_begin(sink *s, int fd)
 {

@@ -36,6 +36,9 @@ int table_open(job *j, kel_table **out, const char *name, const kel_table_option
 /* EXIT_USAGE if writing to `output` would overwrite one of the inputs, EXIT_FINE otherwise. */
 int output_is_no_input(const job *j, const char *output, const char *const *inputs, size_t n);
 
+/* Does -o mean stdout: as `-`, or by naming what stdout is, such as /dev/stdout? */
+bool output_is_stdout(const char *output);
+
 /* Bytes on a stream, kept until `sink_end`, or written in large blocks where more than that comes. */
 typedef struct sink { int fd; kel_text pending; int error; } sink;
 void sink_begin(sink *s, int fd);

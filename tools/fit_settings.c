@@ -42,7 +42,8 @@ read_degrees(job *j, kel_fit_options *o)
     return EXIT_FINE;
 }
 
-/* The library sorts them and judges whether they lie inside the data. */
+/* Degrees and continuities are given in the order of temperature, so the joins must be too. The library judges whether
+   they lie inside the data. */
 static int
 read_joins(job *j, kel_fit_options *o)
 {
@@ -60,6 +61,8 @@ read_joins(job *j, kel_fit_options *o)
         int status = read_quantity(j, "--joins", KEL_DIM_TEMPERATURE, one, &joins[o->join_count++], NULL);
         if (status != EXIT_FINE)
             return status;
+        if (o->join_count > 1 && !(joins[o->join_count - 2] < joins[o->join_count - 1]))
+            return usage(j, "--joins %s: the lower temperature comes first", option_value(j, OPT_JOINS));
     }
     o->joins = joins;
     return EXIT_FINE;

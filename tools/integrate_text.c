@@ -96,7 +96,8 @@ add_transitions(kel_text *out, const subject *s, const interval *v, const units 
         add_temperature(out, &in->temperature, t->at);
         kel_text_printf(out, " crossed, %s", kinds[t->step]);
         if (t->step != KEL_STEP_NONE) {
-            add_rounded(out, 1e6 * c->mean.steps[i], decimals_for(1e6 * c->mean.steps[i], NAN));
+            double x = 1e6 * c->mean.steps[i], U = t->step == KEL_STEP_FITTED ? 2e6 * step_u(c, i) : (double)NAN;
+            add_rounded(out, x, decimals_for(x, U));
             kel_text_add(out, "e-6");
         }
         kel_text_add(out, "\n");
@@ -177,6 +178,12 @@ interval_text(kel_text *out, const job *j, const subject *s, const interval *v, 
     add_shares(out, s, &a[v->wanted]);
     add_factor(out, s, &a[v->wanted]);
     add_transitions(out, s, v, in);
+    if (s->content->reference_defaulted) {
+        add_label(out, "reference");
+        kel_text_add(out, "none stated: ");
+        add_temperature(out, &in->temperature, s->content->reference_temperature);
+        kel_text_add(out, " is assumed\n");
+    }
     add_label(out, "validity range");
     add_temperature(out, &in->temperature, s->content->range.lo);
     kel_text_add(out, " to ");

@@ -9,7 +9,6 @@
 #include <fcntl.h>
 #include <getopt.h>
 #include <gsl/gsl_errno.h>
-#include <string.h>
 #include <unistd.h>
 
 /* A closed stream would be given to the next file that is opened, and a result would land in it. Each is filled with
@@ -31,20 +30,6 @@ print_version(const job *j)
     sink_begin(&s, STDOUT_FILENO);
     kel_text_printf(&s.pending, "kelspan %s\nlicence GPL-3.0-or-later; libkelspan Apache-2.0\n", kel_version());
     return sink_end(j, &s);
-}
-
-/* The name may hold anything, so it is quoted. */
-static int
-unknown_command(const job *j, const char *name)
-{
-    kel_text quoted = KEL_TEXT_INIT;
-    kel_text_quote(&quoted, name, strlen(name));
-    const command *near = command_near(name);
-    const char *shown = quoted.failed || quoted.bytes == NULL ? "" : quoted.bytes;
-    int status = near == NULL ? usage(j, "there is no command '%s'", shown)
-                              : usage(j, "there is no command '%s', the nearest is %s", shown, near->name);
-    kel_text_free(&quoted);
-    return status;
 }
 
 /* Help wins over everything else on the line that was understood. */

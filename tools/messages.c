@@ -109,6 +109,13 @@ fail(const job *j, const char *file, const kel_error *err)
     return EXIT_FAILED;
 }
 
+/* With --json the name is wanted as a member too. */
+int
+fail_save(const job *j, const char *file, const kel_error *err)
+{
+    return fail(j, j->json ? file : NULL, err);
+}
+
 int
 fail_text(const job *j, const char *file, const char *format, ...)
 {
@@ -119,6 +126,13 @@ fail_text(const job *j, const char *file, const char *format, ...)
     va_end(arguments);
     say_error(j, file, 0, 0, message);
     return EXIT_FAILED;
+}
+
+int
+fail_or_usage(const job *j, const char *file, const kel_error *err)
+{
+    bool option = err->code == KEL_E_ARGUMENT || err->code == KEL_E_SYNTAX || err->code == KEL_E_UNIT;
+    return option && err->line == 0 ? usage(j, "%s", err->message) : fail(j, file, err);
 }
 
 int

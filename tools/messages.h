@@ -7,9 +7,14 @@
 
 /* Reports an error and gives EXIT_FAILED. file may be NULL; its place comes from err. */
 int fail(const job *j, const char *file, const kel_error *err);
+/* A file that could not be written: the library's message names it already. */
+int fail_save(const job *j, const char *file, const kel_error *err);
 /* The same with a text of our own. */
 int fail_text(const job *j, const char *file, const char *format, ...) __attribute__((format(printf, 3, 4)));
 int fail_memory(const job *j);
+/* An error of a call that got options along: where it concerns one of them and no line of the file it is wrong usage,
+   else as fail. */
+int fail_or_usage(const job *j, const char *file, const kel_error *err);
 /* Wrong usage: the error, then where help is. Gives EXIT_USAGE. */
 int usage(const job *j, const char *format, ...) __attribute__((format(printf, 2, 3)));
 

@@ -178,6 +178,21 @@ read_header(const job *j, long *out)
     return EXIT_FINE;
 }
 
+/* A name that is misspelt would leave nothing out and say nothing. All operands are compared: those of `value` that
+   are temperatures do no harm. */
+static int
+check_leave_out(const job *j, const char *text)
+{
+    for (size_t i = 0; i < j->operand_count; i++) {
+        const char *name = j->operands[i];
+        size_t n = strlen(name);
+        if (strncmp(text, name, n) == 0 && text[n] == ':' && text[n + 1] >= '0' && text[n + 1] <= '9')
+            return EXIT_FINE;
+    }
+    return usage(j, strchr(text, ':') == NULL || strchr(text, '=') == NULL
+                    ? "--leave-out is FILE:LINE=REASON, not %s" : "--leave-out %s names none of the tables read", text);
+}
+
 /* All that says how a table is to be read. The lists belong to the job. */
 int
 table_options(job *j, kel_table_options *out)
@@ -192,6 +207,8 @@ table_options(job *j, kel_table_options *out)
     out->transpose = option_given(j, OPT_TRANSPOSE);
     out->include_marked = option_given(j, OPT_INCLUDE_MARKED);
     int status = read_delimiter(j, &out->delimiter);
+    for (size_t i = 0; i < out->leave_out_count && status == EXIT_FINE; i++)
+        status = check_leave_out(j, out->leave_out[i]);
     if (status == EXIT_FINE)
         status = read_kind(j, &out->kind);
     if (status == EXIT_FINE)

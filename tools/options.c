@@ -57,6 +57,8 @@ keep_option(job *j, int id, const char *value)
     const option_entry *e = find_entry(j->command, id);
     if (e->argument != NULL && !e->repeatable && option_given(j, e->id))
         return usage(j, "--%s is given twice", e->name);
+    if (e->argument == NULL && option_given(j, e->id))
+        return EXIT_FINE; /* said already; one argument can say it any number of times: -qqq */
     j->options[j->option_count++] = (given_option){ e->id, value };
     return EXIT_FINE;
 }
@@ -88,7 +90,8 @@ options_read(job *j, int argc, char **argv)
     struct option longs[MOST_OPTIONS + 1];
     char letters[2 * MOST_OPTIONS + 3];
     getopt_tables(j->command, longs, letters);
-    j->options = kel_arena_take(j->memory, (size_t)argc, sizeof *j->options);
+    /* An argument holds one option with a value at most; those without count once each. */
+    j->options = kel_arena_take(j->memory, (size_t)argc + MOST_OPTIONS, sizeof *j->options);
     j->operands = kel_arena_take(j->memory, (size_t)argc, sizeof *j->operands);
     if (j->options == NULL || j->operands == NULL)
         return fail_memory(j);

@@ -42,6 +42,8 @@ void add_unit(kel_text *out, const char *name);
 /* "16.21e-6/K   U = 0.12e-6/K (k = 2)": value and U = 2u are SI and shown in the unit. */
 void add_measured(kel_text *out, const kel_unit *unit, double value, double u);
 
+/* Standard uncertainty of a transition's step from the modes, NaN if not known. */
+double step_u(const kel_content *c, size_t transition);
 /* What U covers: "scatter of the fit, stated shared error, lot spread". */
 void add_covers(kel_text *out, const kel_content *c);
 /* Is the variance an estimate from so few degrees of freedom that k = 2 falls short of 95 %? */

@@ -10,8 +10,12 @@ void json_summary(kel_json *json, const kel_content *c);
 /* What the fit says beside its record. */
 void json_fit_report(kel_json *json, const kel_content *c, const kel_fit_report *r);
 
-/* One table as it was read, two or three lines. */
-void text_table(kel_text *out, const kel_table *t, const units *in);
+/* Why an observation takes no part: the table's own reason, or the range asked for, whose ends may be NaN. NULL: it
+   takes part. */
+const char *why_left_out(const kel_observation *o, kel_interval asked);
+/* One table as it was read, two or three lines. asked: as above. assumed: where the table states no reference
+   temperature, 293.15 K serves. */
+void text_table(kel_text *out, const kel_table *t, const units *in, kel_interval asked, bool assumed);
 /* Form, numbers of the fit, validity range, transitions, reference, base, uncertainty. r may be NULL. */
 void text_summary(kel_text *out, const kel_content *c, const kel_fit_report *r, const units *in);
 /* The candidates among which the degree was chosen. */
@@ -27,8 +31,6 @@ void add_row_temperatures(kel_text *out, const kel_unit *unit, const kel_fitted 
 double show_value(const units *in, kel_kind kind, double si);
 const char *show_unit(const units *in, kel_kind kind);
 
-/* Standard uncertainty of a transition's step from the modes, NaN if not known. */
-double step_u(const kel_content *c, size_t transition);
 /* A label in the left margin of a report. */
 void add_label(kel_text *out, const char *label);
 /* `before` and the text, made safe; nothing for NULL. */

@@ -123,7 +123,7 @@ void
 json_fit_report(kel_json *json, const kel_content *c, const kel_fit_report *r)
 {
     bool stated = !isnan(c->chi2);
-    kel_json_number(json, "chi2_per_degree_of_freedom", stated ? c->chi2 / c->degrees_of_freedom : (double)NAN);
+    kel_json_number(json, "chi2_per_degree_of_freedom", stated ? r->scaled_factor * r->scaled_factor : (double)NAN);
     kel_json_number(json, "chi2_probability", r->chi2_probability);
     kel_json_number(json, "other_scaling", r->scaled_factor);
     kel_json_count(json, "rank", (uint64_t)r->rank);

@@ -122,9 +122,11 @@ text_quality(kel_text *out, const kel_content *c, const kel_fit_report *r, const
     if (!isnan(c->chi2)) {
         add_label(out, "chi2");
         add_digits(out, c->chi2, 4);
-        if (c->degrees_of_freedom > 0) {
+        /* Of mixed rows nu is not n - k, and a record alone does not say what it is. */
+        double ratio = r != NULL ? r->scaled_factor * r->scaled_factor : c->chi2 / c->degrees_of_freedom;
+        if (isfinite(ratio) && (r != NULL || c->variance != KEL_VARIANCE_MIXED)) {
             kel_text_add(out, "; chi2/nu ");
-            add_digits(out, c->chi2 / c->degrees_of_freedom, 3);
+            add_digits(out, ratio, 3);
         }
         if (r != NULL && !isnan(r->chi2_probability)) {
             kel_text_add(out, "; a smaller one has probability ");

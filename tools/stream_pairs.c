@@ -151,7 +151,7 @@ change_of(stream *p, size_t i, kel_answer *change)
     if (kel_record_answer(change, p->s->record, &q, &err) < 0)
         return fail_at(p, b->line[i], 0, &err);
     change->value *= b->in[LENGTH][i];
-    change->u *= fabs(b->in[LENGTH][i]);
+    change->u *= b->in[LENGTH][i];
     return EXIT_FINE;
 }
 
@@ -231,6 +231,10 @@ read_row(stream *p, const kel_row *row, kel_error *err)
             err->column = c->column + (err->column > 0 ? err->column - 1 : 0);
             return status;
         }
+    }
+    if (p->lengths && !(b->in[LENGTH][b->n] > 0)) {
+        const kel_cell *c = &row->cells[p->cell[LENGTH] - 1];
+        return kel_error_set(err, KEL_E_DATA, row->line, c->column, "the length must be above 0 m");
     }
     b->line[b->n++] = row->line;
     return KEL_OK;

@@ -18,6 +18,11 @@ table_open(job *j, kel_table **out, const char *name, const kel_table_options *o
     int status = file_open(j, &f, name);
     if (status != EXIT_FINE)
         return status;
+    if (file_is_record(f)) {
+        file_close(f);
+        return fail_text(j, name, "is a record, not a table: value, integrate, tabulate, show and residuals answer "
+                                  "from it");
+    }
     kel_error err = { 0 };
     progress p;
     progress_begin(&p, j, "reading");
@@ -28,7 +33,7 @@ table_open(job *j, kel_table **out, const char *name, const kel_table_options *o
     progress_end(&p);
     file_close(f);
     if (read < 0)
-        return fail(j, name, &err);
+        return fail_or_usage(j, name, &err);
     return warn_all(j, name, (*out)->warnings, (*out)->warning_count);
 }
 
@@ -57,7 +62,7 @@ fit_table(job *j, subject *out, file *f)
         done = kel_fit(&out->record, &report, (const kel_table *const *)&table, 1, &options, &err);
     }
     progress_end(&p);
-    status = done < 0 ? fail(j, out->name, &err) : warn_all(j, out->name, table->warnings, table->warning_count);
+    status = done < 0 ? fail_or_usage(j, out->name, &err) : warn_all(j, out->name, table->warnings, table->warning_count);
     if (status == EXIT_FINE)
         status = warn_all(j, out->name, report->warnings, report->warning_count);
     kel_fit_report_free(report);

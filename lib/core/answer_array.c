@@ -1,10 +1,11 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* Answers for arrays.
 
-   Where the record's curve and the quantity allow, blocks go through the vector kernels (kernel.c), within the bound that
-   answer.h states. Everything else goes the way of single answers and has the same bits: the array is cut into blocks,
-   and each goes through values, flags and uncertainties in loops of their own. What one element needs from an earlier
-   loop (its plan) lies on the stack, so that nothing is allocated, and a call without u or flags leaves those loops out.
+   Where the record's curve and the quantity allow, blocks go through the vector kernels (kernel.c), within the bound
+   that answer.h states. Everything else goes the way of single answers and has the same bits: the array is cut into
+   blocks, and each goes through values, flags and uncertainties in loops of their own. What one element needs from an
+   earlier loop (its plan) lies on the stack, so that nothing is allocated, and a call without u or flags leaves those
+   loops out.
 
    Only input temperatures make an element fail, or a curve that gives it no length: its outputs are then NaN and the
    call goes on. An output may lie where an input lies. */

@@ -46,7 +46,7 @@ static struct block *
 add_block(kel_arena *arena, size_t least)
 {
     size_t size = least > arena->next_size ? least : arena->next_size;
-    if (size > SIZE_MAX - sizeof(struct block))
+    if (size > (size_t)PTRDIFF_MAX - sizeof(struct block)) /* no object can be larger */
         return NULL;
     struct block *b = malloc(sizeof *b + size);
     if (b == NULL)

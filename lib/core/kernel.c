@@ -1,8 +1,8 @@
 /* SPDX-License-Identifier: Apache-2.0 */
 /* Which curves the kernels answer, in which form, and how accurately.
 
-   Method. On a piece with polynomial sum_j p_j x^j, x = T - c, c the middle of the piece as a double, the integral over
-   A..B is, with a = A - c, b = B - c,
+   Method. On a piece with polynomial sum_j p_j x^j, x = T - c, c the middle of the piece as a double, the integral
+   over A..B is, with a = A - c, b = B - c,
 
        (B - A) sum_j q_j S_j,   q_j = p_j/(j + 1),   S_j = b^j + a b^(j-1) + ... + a^j = b^j + a S_(j-1)
 
@@ -10,21 +10,21 @@
    to the shortest interval, and with a = b the sum is the value. The rows S_j serve the mean curve and all modes.
    Several pieces: A and B are clamped to each piece, and the shares are added; a piece without a share adds 0.
 
-   Error bound, u = 2^-53, |x| <= X on the piece. a and b are rounded once: relative u each. With E_j u X^j the error of
-   S_j (|S_j| <= (j + 1) X^j): b^j has 2j - 1; a S_(j-1) has j for a, j for the product and E_(j-1); the sum j + 1. So
-   E_1 = 4, E_j = E_(j-1) + 5j, which is at most 5/2 j (j + 1). q_j carries 2 (one of p_j, worked out in twice the
+   Error bound, u = 2^-53, |x| <= X on the piece. a and b are rounded once: relative u each. With E_j u X^j the error
+   of S_j (|S_j| <= (j + 1) X^j): b^j has 2j - 1; a S_(j-1) has j for a, j for the product and E_(j-1); the sum j + 1.
+   So E_1 = 4, E_j = E_(j-1) + 5j, which is at most 5/2 j (j + 1). q_j carries 2 (one of p_j, worked out in twice the
    precision, one of the quotient), its product 1, and then it goes through n - j + 1 additions. Together
 
        |error of the mean over the interval| <= u sum_j |p_j| X^j (3/2 j + n + 5) + u (3 + N) sum |c_k|
 
-   n the degree, c_k the Chebyshev coefficients, whose sum bounds the mean; 3 for the width, its product and the division
-   of a mean coefficient; N additions of pieces and steps. (Fused products only take roundings away.) A curve is answered
-   by the kernels where this is at most 1e-13 sum |c_k| on each of its pieces; a hundredth is kept for second-order
-   terms. The worst, T_n alone, has 0.7e-13 at n = 5, so that up to there all are, but few of degree 10.
+   n the degree, c_k the Chebyshev coefficients, whose sum bounds the mean; 3 for the width, its product and the
+   division of a mean coefficient; N additions of pieces and steps. (Fused products only take roundings away.) A curve
+   is answered by the kernels where this is at most 1e-13 sum |c_k| on each of its pieces; a hundredth is kept for
+   second-order terms. The worst, T_n alone, has 0.7e-13 at n = 5, so that up to there all are, but few of degree 10.
 
-   Modes are not asked: their bound is that of T_12, sum_j |p_j| X^j (...) u = 0.65e-10, and a standard uncertainty needs
-   no more. Outside the pieces sum_j |p_j| |x|^j for T_n is |T_n(i y)|, y = |x|/X, which grows more slowly than T_n(y):
-   the bound of T_12 holds there too, for the terms' sizes at the far end. */
+   Modes are not asked: their bound is that of T_12, sum_j |p_j| X^j (...) u = 0.65e-10, and a standard uncertainty
+   needs no more. Outside the pieces sum_j |p_j| |x|^j for T_n is |T_n(i y)|, y = |x|/X, which grows more slowly than
+   T_n(y): the bound of T_12 holds there too, for the terms' sizes at the far end. */
 #include "kernel.h"
 #include "curve.h"
 
@@ -33,7 +33,8 @@
 
 static const double largest_error = 1e-13, second_order = 1.01;
 
-/* Far from overflow: the sum of squares of modes at KEL__KERNEL_LARGEST is below the square of this times their number. */
+/* Far from overflow: the sum of squares of modes at KEL__KERNEL_LARGEST is below the square of this times their
+   number. */
 static const double largest_size = 1e100;
 
 const kel__kernel_code *const kel__kernel_codes[] = {

@@ -12,8 +12,8 @@ enum { KEL__KERNEL_GROUP = 16 };
 /* Largest degree of a piece, and largest number of numbers a curve may have (coefficients of all pieces and steps). */
 enum { KEL__KERNEL_COUNT = 13, KEL__KERNEL_NUMBERS = 96 };
 
-/* Of an element that the kernels leave to the scalar way: no temperature, above KEL__KERNEL_LARGEST, or the mean over no
-   interval. Beside the KEL_FLAG_... in a byte. */
+/* Of an element that the kernels leave to the scalar way: no temperature, above KEL__KERNEL_LARGEST, or the mean over
+   no interval. Beside the KEL_FLAG_... in a byte. */
 enum { KEL__KERNEL_LEFT = 128 };
 #define KEL__KERNEL_LARGEST 1e6 /* K */
 
@@ -41,10 +41,10 @@ typedef struct kel__kernel {
     size_t stride, curve_count;
 } kel__kernel;
 
-/* One compilation of the kernels. n is a multiple of KEL__KERNEL_GROUP. `from` and `to` are read before the outputs of the
-   same group are written, so that an output may lie where an input lay.
-   flags: the flags of each element, KEL__KERNEL_LEFT among them; returns all of them together.
-   values: value[n], and u[n] if it is not NULL. An element to be left gets any number. */
+/* One compilation of the kernels. n is a multiple of KEL__KERNEL_GROUP. `from` and `to` are read before the outputs of
+   the same group are written, so that an output may lie where an input lay. flags: the flags of each element,
+   KEL__KERNEL_LEFT among them; returns all of them together. values: value[n], and u[n] if it is not NULL. An element
+   to be left gets any number. */
 struct kel__kernel_code {
     const char *name;
     bool (*runs)(void); /* on this processor */

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: Apache-2.0 */
-/* The kernels with four doubles in a vector and fused products: AVX2 and FMA, as x86-64 processors have them since 2013.
-   Only these functions are compiled for them, so that the library starts on any x86-64. */
+/* The kernels with four doubles in a vector and fused products: AVX2 and FMA, as x86-64 processors have them since
+   2013. Only these functions are compiled for them, so that the library starts on any x86-64. */
 #if defined __x86_64__ && defined __GNUC__
 
 #include <immintrin.h>

@@ -56,7 +56,8 @@ flags_of_vector(const kel__kernel *k, kel__task task, vec x, vec y)
 {
     const kel_content *c = k->content;
     const unsigned lanes = (1u << LANES) - 1u;
-    unsigned word = spread(~m_bits(within(x, y, v_set(c->range.lo), v_set(c->range.hi))) & lanes) * KEL_FLAG_EXTRAPOLATED;
+    mask inside = within(x, y, v_set(c->range.lo), v_set(c->range.hi));
+    unsigned word = spread(~m_bits(inside) & lanes) * KEL_FLAG_EXTRAPOLATED;
     for (size_t i = 0; i < c->gap_count; i++) {
         vec l = v_set(c->gaps[i].lo), h = v_set(c->gaps[i].hi);
         mask in = m_or(m_and(v_less(l, x), v_less(x, h)), m_and(v_less(l, y), v_less(y, h)));
@@ -78,9 +79,9 @@ flags(unsigned char *out, const kel__kernel *k, kel__task task, const double *fr
 {
     const kel_content *c = k->content;
     const unsigned always = c->mode_count == 0 ? KEL_FLAG_UNKNOWN_U : 0u;
-    /* Most groups lie inside the range, which holds no temperature that would have to be left. */
-    const bool plain = c->gap_count == 0 && c->transition_count == 0 && task != KEL__TASK_MEAN &&
-                       c->range.hi <= KEL__KERNEL_LARGEST;
+    /* Most groups lie inside the range, which holds no temperature that would have to be left: its pieces end at
+       KEL__KERNEL_LARGEST at most. */
+    const bool plain = c->gap_count == 0 && c->transition_count == 0;
     const vec l = v_set(c->range.lo), h = v_set(c->range.hi);
     unsigned all = always;
     for (size_t i = 0; i < n; i += KEL__KERNEL_GROUP) {
@@ -89,6 +90,8 @@ flags(unsigned char *out, const kel__kernel *k, kel__task task, const double *fr
             SIDE_BY_SIDE {
                 vec x = v_load(from + i + g * LANES), y = v_load(to + i + g * LANES);
                 in = m_and(in, within(x, y, l, h));
+                if (task == KEL__TASK_MEAN)
+                    in = m_and(in, v_less(v_min(x, y), v_max(x, y)));
             }
             if (m_bits(in) == (1u << LANES) - 1u) {
                 memset(out + i, (int)always, KEL__KERNEL_GROUP);
@@ -170,7 +173,8 @@ share(const kel__kernel_piece *p, size_t count, const double *q, bool clamped, b
     return v_mul(weight, sum);
 }
 
-/* One curve's functional from the rows. */
+/* One curve's functional from the rows. The operations of mean_curve in the same order, so that a value has the same
+   bits whether u is asked for or not. */
 KERNEL static inline void
 apply(vec *total, const kel__kernel *k, size_t curve, vec (*row)[VECTORS])
 {
@@ -190,14 +194,21 @@ apply(vec *total, const kel__kernel *k, size_t curve, vec (*row)[VECTORS])
                 sum[g] = v_fma(x, row[p->first + j][g], sum[g]);
         }
         SIDE_BY_SIDE
-            total[g] = v_fma(row[p->first][g], sum[g], total[g]);
+            total[g] = v_add(total[g], v_mul(row[p->first][g], sum[g]));
     }
     for (size_t i = c->coefficient_count; i < k->stride; i++)
         SIDE_BY_SIDE
-            total[g] = v_fma(v_set(numbers[i]), row[i][g], total[g]);
+            total[g] = v_add(total[g], v_mul(v_set(numbers[i]), row[i][g]));
 }
 
-/* A curve of one piece without transitions, compiled once for each `count` of the usual degrees. */
+/* One piece without transitions: the mean is that of the polynomial, without a division by the width. */
+static inline bool
+is_simple(const kel__kernel *k)
+{
+    return k->content->piece_count == 1 && k->content->transition_count == 0;
+}
+
+/* Such a curve, compiled once for each `count` of the usual degrees. */
 ALWAYS void
 one_piece(double *value, const kel__kernel *k, kel__task task, const double *from, const double *to, size_t n,
           size_t count)
@@ -207,11 +218,9 @@ one_piece(double *value, const kel__kernel *k, kel__task task, const double *fro
     for (size_t j = 0; j < count; j++)
         q[j] = k->numbers[j];
     for (size_t i = 0; i < n; i += LANES) {
-        __builtin_prefetch(from + i + 256, 0, 3);
-        __builtin_prefetch(to + i + 256, 0, 3);
-        __builtin_prefetch(value + i + 256, 1, 3);
         vec y = v_load(to + i), x = task == KEL__TASK_VALUE ? y : v_load(from + i);
         vec lo = v_min(x, y), hi = v_max(x, y), total = share(p, count, q, false, task != KEL__TASK_INTEGRAL, lo, hi);
+        total = v_add(v_set(0.0), total); /* no -0 */
         v_store(value + i, task == KEL__TASK_INTEGRAL ? v_signed(total, x, y) : total);
     }
 }
@@ -220,19 +229,19 @@ KERNEL static void
 any_pieces(double *value, const kel__kernel *k, kel__task task, const double *from, const double *to, size_t n)
 {
     const kel_content *c = k->content;
-    const bool coefficient = task == KEL__TASK_VALUE;
+    const bool coefficient = task == KEL__TASK_VALUE, average = coefficient || (task == KEL__TASK_MEAN && is_simple(k));
     for (size_t i = 0; i < n; i += LANES) {
         vec y = v_load(to + i), x = coefficient ? y : v_load(from + i), lo = v_min(x, y), hi = v_max(x, y);
         vec total = v_set(0.0);
         for (size_t j = 0; j < c->piece_count; j++) {
             const kel__kernel_piece *p = &k->pieces[j];
-            total = v_add(total, share(p, p->count, k->numbers + p->first, true, coefficient, lo, hi));
+            total = v_add(total, share(p, p->count, k->numbers + p->first, true, average, lo, hi));
         }
         for (size_t t = 0; t < c->transition_count; t++) {
             const vec at = v_set(c->transitions[t].at), step = v_set(k->numbers[c->coefficient_count + t]);
             total = v_add(total, v_pick(m_and(v_less(lo, at), v_at_most(at, hi)), step));
         }
-        if (task == KEL__TASK_MEAN)
+        if (task == KEL__TASK_MEAN && !average)
             total = v_div(total, v_sub(hi, lo));
         else if (task == KEL__TASK_INTEGRAL)
             total = v_signed(total, x, y);
@@ -243,8 +252,7 @@ any_pieces(double *value, const kel__kernel *k, kel__task task, const double *fr
 KERNEL static void
 mean_curve(double *value, const kel__kernel *k, kel__task task, const double *from, const double *to, size_t n)
 {
-    const bool simple = k->content->piece_count == 1 && k->content->transition_count == 0;
-    switch (simple ? k->pieces[0].count : 0) {
+    switch (is_simple(k) ? k->pieces[0].count : 0) {
     case 2: one_piece(value, k, task, from, to, n, 2); break;
     case 3: one_piece(value, k, task, from, to, n, 3); break;
     case 4: one_piece(value, k, task, from, to, n, 4); break;
@@ -261,7 +269,7 @@ KERNEL static void
 values(double *value, double *u, const kel__kernel *k, kel__task task, const double *from, const double *to, size_t n)
 {
     const kel_content *c = k->content;
-    const size_t curves = k->curve_count;
+    const bool average = task == KEL__TASK_VALUE || (task == KEL__TASK_MEAN && is_simple(k));
     if (u == NULL) {
         mean_curve(value, k, task, from, to, n);
         return;
@@ -277,20 +285,20 @@ values(double *value, double *u, const kel__kernel *k, kel__task task, const dou
             squares[g] = v_set(0.0);
         }
         for (size_t p = 0; p < c->piece_count; p++)
-            piece_rows(row + k->pieces[p].first, &k->pieces[p], c->piece_count > 1, task == KEL__TASK_VALUE, lo, hi);
+            piece_rows(row + k->pieces[p].first, &k->pieces[p], c->piece_count > 1, average, lo, hi);
         for (size_t t = 0; t < c->transition_count; t++) {
             const vec at = v_set(c->transitions[t].at);
             SIDE_BY_SIDE
                 row[c->coefficient_count + t][g] = v_pick(m_and(v_less(lo[g], at), v_at_most(at, hi[g])), v_set(1.0));
         }
-        for (size_t m = 0; m < curves; m++) {
+        for (size_t m = 0; m < k->curve_count; m++) {
             apply(total, k, m, row);
             if (m > 0)
                 SIDE_BY_SIDE
                     squares[g] = v_fma(total[g], total[g], squares[g]);
             else
                 SIDE_BY_SIDE {
-                    if (task == KEL__TASK_MEAN)
+                    if (task == KEL__TASK_MEAN && !average)
                         total[g] = v_div(total[g], v_sub(hi[g], lo[g]));
                     else if (task == KEL__TASK_INTEGRAL)
                         total[g] = v_signed(total[g], x[g], y[g]);
@@ -300,7 +308,7 @@ values(double *value, double *u, const kel__kernel *k, kel__task task, const dou
         if (u != NULL)
             SIDE_BY_SIDE {
                 vec root = v_sqrt(squares[g]);
-                if (task == KEL__TASK_MEAN)
+                if (task == KEL__TASK_MEAN && !average)
                     root = v_div(root, v_sub(hi[g], lo[g]));
                 v_store(u + i + g * LANES, root);
             }

@@ -7,7 +7,9 @@
    them; a file that the caller may not write is not replaced. Access control lists, extended attributes and other
    hard links are not carried over.
 
-   Anything else (a device, a pipe, a socket) is opened and written: replacing it by a file would destroy it. */
+   Anything else (a device, a pipe, a socket) is opened and written: replacing it by a file would destroy it. So is a
+   stream named by the system's folders, such as /dev/stderr, even where it leads to a regular file: what was written
+   to that stream before stays. */
 #include "io_error.h"
 #include "save_path.h"
 
@@ -70,7 +72,7 @@ write_in_place(const char *path, const char *bytes, size_t n)
 {
     int fd;
     do
-        fd = open(path, O_WRONLY | O_CLOEXEC | O_NOCTTY);
+        fd = open(path, O_WRONLY | O_APPEND | O_CLOEXEC | O_NOCTTY);
     while (fd < 0 && errno == EINTR);
     if (fd < 0)
         return errno;
@@ -78,6 +80,16 @@ write_in_place(const char *path, const char *bytes, size_t n)
     if (close(fd) != 0 && reason == 0 && errno != EINTR)
         reason = errno;
     return reason;
+}
+
+static bool
+names_stream(const char *path)
+{
+    static const char *const folders[] = { "/dev/fd/", "/dev/stdout", "/dev/stderr", "/proc/" };
+    for (size_t i = 0; i < sizeof folders / sizeof folders[0]; i++)
+        if (strncmp(path, folders[i], strlen(folders[i])) == 0)
+            return true;
+    return false;
 }
 
 /* ---- a new file beside the target ---- */
@@ -168,7 +180,9 @@ kel_file_save(const char *path, const char *bytes, size_t n, kel_error *err)
     struct stat old;
     char *target = NULL;
     int reason = kel__path_follow(&target, path);
-    if (reason == 0) {
+    if (reason == 0 && names_stream(path) && stat(path, &old) == 0) {
+        reason = write_in_place(path, bytes, n);
+    } else if (reason == 0) {
         bool there = stat(target, &old) == 0;
         if (!there && errno != ENOENT)
             reason = errno;

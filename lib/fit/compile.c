@@ -91,6 +91,32 @@ add_solution_modes(compiler *c, kel_error *err)
     return status;
 }
 
+/* Equal but for the rounding of decimals to doubles; no range at all is -infinity or infinity on both sides. */
+static bool
+same_number(double a, double b)
+{
+    return a == b || fabs(a - b) <= 1e-12 * fmin(fabs(a), fabs(b));
+}
+
+/* Do two tables state one lot spread, in whatever words and order? Ranges of one table do not overlap, so that no
+   clause finds two partners. */
+static bool
+same_lot(const kel_table *a, const kel_table *b)
+{
+    bool same = a->lot_count == b->lot_count;
+    for (size_t i = 0; i < a->lot_count && same; i++) {
+        const kel_stated *x = &a->lot[i];
+        same = false;
+        for (size_t k = 0; k < b->lot_count && !same; k++) {
+            const kel_stated *y = &b->lot[k];
+            same = same_number(x->relative, y->relative) && same_number(x->absolute, y->absolute) &&
+                (x->absolute == 0 || x->dimension == y->dimension) &&
+                same_number(x->lo, y->lo) && same_number(x->hi, y->hi);
+        }
+    }
+    return same;
+}
+
 /* Tables may repeat a lot spread, but must not state different ones. */
 static kel_status
 find_lot(compiler *c, kel_error *err)
@@ -99,7 +125,7 @@ find_lot(compiler *c, kel_error *err)
         const kel_table *t = c->p->tables[i];
         if (t->lot_count == 0)
             continue;
-        if (c->lot != NULL && strcmp(c->lot->lot_text, t->lot_text) != 0) {
+        if (c->lot != NULL && !same_lot(c->lot, t)) {
             kel_text text = KEL_TEXT_INIT;
             kel_text_printf(&text, "%s states the lot spread ", c->lot->name);
             kel__quote_into(&text, c->lot->lot_text, strlen(c->lot->lot_text));

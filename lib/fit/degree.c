@@ -45,6 +45,19 @@ rows_to_spare(size_t n)
     return n >= 5 ? (n / 3 > 2 ? n / 3 : 2) : n >= 3 ? 1 : 0;
 }
 
+/* Every column must keep as many rows to spare as a fit of it alone: a curve bent through the rows of one column would
+   make their scatter, and with it their weight, whatever it likes. */
+static bool
+some_column_overfitted(const kel__problem *p, const kel__solution *s)
+{
+    for (size_t i = 0; i < p->column_count; i++) {
+        size_t unstated = p->columns[i].rows - p->columns[i].stated;
+        if (unstated >= 3 && s->freedom[i] < (double)rows_to_spare(unstated) - 1e-6)
+            return true;
+    }
+    return false;
+}
+
 static void
 measure(candidate *c, const kel__problem *p, const kel__solution *s)
 {
@@ -96,7 +109,11 @@ try_degree(candidate *c, int degree, const kel__problem *p, int *degrees, const 
     if (status == KEL_OK) {
         size_t spare = rows_to_spare(p->row_count);
         measure(c, p, &s);
-        c->refused = s.parameters + spare > p->row_count ? "too few rows" : !s.every_piece ? "a piece has too few rows" : NULL;
+        c->refused = s.parameters + spare > p->row_count ? "too few rows" : NULL;
+        if (c->refused == NULL && !s.every_piece)
+            c->refused = "a piece has too few rows";
+        if (c->refused == NULL && some_column_overfitted(p, &s))
+            c->refused = "too few rows in a column";
         c->compared = c->refused == NULL;
     } else if (status == KEL_E_RANK || status == KEL_E_CONVERGENCE || (status == KEL_E_RANGE && degree > 0)) {
         c->refused = status == KEL_E_RANK ? "the rows do not determine it" : "no convergence";

@@ -2,11 +2,11 @@
 /* kel_fit: tables in, record and report out. The steps are observe (rows), choose the degree, solve, compile; this file
    strings them together and collects what the user should be told. */
 #include "problem.h"
+#include "blanks.h"
 #include "number_text.h"
 
 #include <stdlib.h>
 #include <string.h>
-#include <strings.h>
 
 enum { MOST_WARNINGS = 16, BAND_POINTS = 64 };
 
@@ -54,7 +54,7 @@ warn_materials(owned_report *r, const kel__problem *p, kel_error *err)
             continue;
         if (first == NULL)
             first = t;
-        if (strcasecmp(first->material, t->material) == 0)
+        if (kel__is_word(first->material, strlen(first->material), t->material))
             continue;
         kel_text text = KEL_TEXT_INIT;
         kel_text_add(&text, "the tables name their material differently: '");
@@ -121,19 +121,23 @@ well_supported(const kel__problem *p, const kel_piece *piece)
 static kel_status
 warn_support(owned_report *r, const kel__problem *p, const kel__solution *s, kel_error *err)
 {
+    kel_text text = KEL_TEXT_INIT;
+    size_t pieces = 0;
     for (size_t i = 0; i < s->layout.piece_count; i++) {
         const kel_piece *piece = &s->layout.pieces[i];
-        if (piece->from == piece->to || well_supported(p, piece))
+        if (piece->from == piece->to || well_supported(p, piece) || pieces++ > 0)
             continue;
-        kel_text text = KEL_TEXT_INIT;
         kel_text_add(&text, "the piece from ");
         add_temperature(&text, piece->from);
         kel_text_add(&text, " to ");
         add_temperature(&text, piece->to);
         kel_text_add(&text, " rests only on intervals wider than half of it");
-        return warn_text(r, "wide-support", &text, err);
     }
-    return KEL_OK;
+    if (pieces == 0)
+        return KEL_OK;
+    kel_status status = warn_text(r, "wide-support", &text, err);
+    r->list[r->report.warning_count - 1].count = pieces;
+    return status;
 }
 
 /* Where alpha is smaller than its expanded uncertainty its very sign is open. */

@@ -31,7 +31,7 @@ static const quantity_word words[] = {
     { "linear thermal contraction", KEL__CONTRACTION },
     { "uncertainty", KEL__UNCERTAINTY }, { "standard uncertainty", KEL__UNCERTAINTY }, { "u", KEL__UNCERTAINTY },
     { "source", KEL__SOURCE }, { "status", KEL__STATUS },
-    { "reservations", KEL__STATUS }, /* of the tables that kelspan writes: a row with a reservation is no plain value */
+    { "reservations", KEL__RESERVATIONS }, /* of the tables of answers that kelspan writes */
 };
 
 /* Names of coefficients. Those that stand alone mean the instantaneous one; the others need a word that says which. */
@@ -64,6 +64,7 @@ static const struct { const char *name, *example; kel_dimension dimension; } qua
     [KEL__UNCERTAINTY] = { "uncertainty", "uncertainty [1e-6/K] or uncertainty [%]", 0 },
     [KEL__SOURCE] = { "source", NULL, 0 },
     [KEL__STATUS] = { "status", NULL, 0 },
+    [KEL__RESERVATIONS] = { "reservations", NULL, 0 },
 };
 
 const char *
@@ -219,7 +220,8 @@ parse_quantity(kel__heading *out, kel__word name, size_t line, size_t column, ke
     if (status == KEL_OK && out->quantity == KEL__NOTHING)
         status = complain(err, KEL_E_SYNTAX, line, column, name, "",
                           " is no quantity of a table: temperature, from, to, interval, coefficient, "
-                          "mean coefficient, expansion, contraction, uncertainty, source or status");
+                          "mean coefficient, expansion, contraction, uncertainty, source, status or "
+                          "reservations");
     return status;
 }
 
@@ -270,7 +272,7 @@ kel__heading_parse(kel__heading *out, const char *head, size_t n, size_t line, s
 kel_status
 kel__heading_option(kel__heading *out, kel__word *name, const char *text, kel_error *err)
 {
-    /* The sign that ends the quantity follows a bracket; `source` and `status` have none. */
+    /* The sign that ends the quantity follows a bracket; columns of words have none. */
     const char *sign = NULL;
     for (const char *p = text; *p != '\0' && sign == NULL; p++) {
         kel__word before = { text, (size_t)(p - text) };

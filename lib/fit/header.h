@@ -10,7 +10,7 @@ typedef enum kel__quantity {
     KEL__NOTHING,              /* an empty head, or a column that is passed over */
     KEL__TEMPERATURE, KEL__FROM, KEL__TO, KEL__INTERVAL,
     KEL__COEFFICIENT, KEL__MEAN, KEL__EXPANSION, KEL__CONTRACTION,
-    KEL__UNCERTAINTY, KEL__SOURCE, KEL__STATUS
+    KEL__UNCERTAINTY, KEL__SOURCE, KEL__STATUS, KEL__RESERVATIONS
 } kel__quantity;
 
 typedef struct kel__heading {

@@ -2,8 +2,8 @@
 /* Polynomial least squares on plain arrays, by the triangular factor of the fits: Chebyshev rows in t = (x - c)/h on
    -1..1, weighted; then powers of x.
 
-   Without constant term the basis is x T_n(t), which spans x, x^2, ... and has no differences of large numbers where 0
-   lies far from the x. Two ways lead to the solution (kel__ls_solved):
+   Without constant term the basis is s x T_n(t), which spans x, x^2, ... and has no differences of large numbers where
+   0 lies far from the x. Two ways lead to the solution (kel__ls_solved):
 
        refine.c    rows in pairs of doubles, refined to what a double can show; needs 16 bytes a number of the design
        plain, here R of [A | y] alone, in constant memory: T = R^-1, z = Q'y, loses about condition times 1e-16
@@ -18,14 +18,14 @@
 
 enum { BLOCK = 512 };
 
-/* map[j * n + k]: coefficient of x^j in T_k; without constant all powers are one higher.
+/* map[j * n + k]: coefficient of x^j in T_k; without constant of x^(j + 1) in s x T_k.
    T_(n+1) = 2 t T_n - T_(n-1) with t = (x - middle)/half, polynomial arithmetic on powers of x. */
 static void
 powers_map(kel__twofold *map, const kel__ls_frame *f)
 {
     size_t n = f->count;
     memset(map, 0, n * n * sizeof *map);
-    map[0] = kel__two(1);
+    map[0] = kel__two(f->constant ? 1 : f->x_scale);
     for (size_t k = 1; k < n; k++)
         for (size_t j = 0; j <= k; j++) {
             kel__twofold value = kel__two_mul_one(map[j * n + k - 1], -f->middle);
@@ -42,7 +42,7 @@ static void
 plain_row(double *row, const kel__ls_frame *f, const kel__ls_data *d, size_t i)
 {
     double t = ((d->x[i] - f->middle) + (d->x_lo != NULL ? d->x_lo[i] : 0)) / f->half, before = 1, now = t;
-    double first = f->constant ? 1 : d->x[i];
+    double first = f->constant ? 1 : f->x_scale * d->x[i];
     row[0] = first;
     for (size_t k = 1; k < f->count; k++) {
         row[k] = first * now;
@@ -128,10 +128,12 @@ check_data(const kel__ls_data *d, int degree, bool constant, kel_error *err)
         if (!isfinite(d->x[i]) || !isfinite(d->y[i]) || (d->x_lo != NULL && !isfinite(d->x_lo[i]))
             || (d->y_lo != NULL && !isfinite(d->y_lo[i])) || (d->u != NULL && !(d->u[i] > 0 && isfinite(d->u[i]))))
             return kel_error_set(err, KEL_E_ARGUMENT, i, 0,
-                                 "polynomial fit: point %zu is not finite or has an uncertainty that is not positive", i);
+                                 "polynomial fit: point %zu is not finite or has an uncertainty that is not positive",
+                                 i);
     size_t parameters = (size_t)degree + constant;
     if (d->n < parameters)
-        return kel_error_set(err, KEL_E_RANK, 0, 0, "polynomial fit: %zu points for %zu coefficients", d->n, parameters);
+        return kel_error_set(err, KEL_E_RANK, 0, 0, "polynomial fit: %zu points for %zu coefficients", d->n,
+                             parameters);
     return KEL_OK;
 }
 
@@ -154,7 +156,21 @@ prepare(kel__ls_data *d, size_t parameters, bool constant)
     }
     d->y_scale = scale_of(y);
     d->u_scale = 1 / scale_of(u);
-    return (kel__ls_frame){ parameters, constant, lo + (hi - lo) / 2, hi > lo ? (hi - lo) / 2 : 1 };
+    double middle = lo + (hi - lo) / 2, half = hi > lo ? (hi - lo) / 2 : 1;
+    return (kel__ls_frame){ parameters, constant, middle, half, scale_of(fmax(-lo, hi)) };
+}
+
+/* Length of a, also where its square is beyond a double. */
+static double
+length(const double *a, size_t n)
+{
+    double most = 0, sum = 0;
+    for (size_t i = 0; i < n; i++)
+        most = fmax(most, fabs(a[i]));
+    double scale = scale_of(most);
+    for (size_t i = 0; i < n; i++)
+        sum += (scale * a[i]) * (scale * a[i]);
+    return sqrt(sum) / scale;
 }
 
 /* V = P T row by row, its sums with z, then W (n x n, by rows) and its products. The covariance goes with size^2. */
@@ -175,16 +191,15 @@ powers(kel_ls_result *r, const kel__ls_solved *s, size_t n, const kel__twofold *
         }
         r->coefficient[j] = (power.hi + power.lo) / y_scale;
         kel__solve_transposed(row, s->inner, n);
+        if (r->standard_deviation != NULL)
+            r->standard_deviation[j] = size * length(row, n);
     }
-    for (size_t j = 0; j < n; j++)
+    for (size_t j = 0; j < n && r->covariance != NULL; j++)
         for (size_t l = 0; l <= j; l++) {
             double c = 0;
             for (size_t k = 0; k < n; k++)
-                c += w[j * n + k] * w[l * n + k];
-            if (r->covariance != NULL)
-                r->covariance[j * n + l] = r->covariance[l * n + j] = c * size * size;
-            if (j == l && r->standard_deviation != NULL)
-                r->standard_deviation[j] = size * sqrt(c);
+                c += (size * w[j * n + k]) * (size * w[l * n + k]);
+            r->covariance[j * n + l] = r->covariance[l * n + j] = c;
         }
 }
 
@@ -223,8 +238,8 @@ kel_ls_polynomial_pairs(kel_ls_result *result, const double *x, const double *x_
     else
         status = refined ? kel__ls_refine(&s, &f, &d, memory, err) : plain(&s, &f, &d, memory, err);
     if (status == KEL_OK && (size_t)s.rank < p)
-        status = kel_error_set(err, KEL_E_RANK, 0, 0, "polynomial fit: the x determine only %d of %zu coefficients", s.rank,
-                               p);
+        status = kel_error_set(err, KEL_E_RANK, 0, 0, "polynomial fit: the x determine only %d of %zu coefficients",
+                               s.rank, p);
     if (status == KEL_OK) {
         powers_map(map, &f);
         statistics(result, &s, &d, p);

@@ -2,13 +2,13 @@
 /* From tables to the rows of a fit: which rows take part, what the record refers to, what is known of each column.
    joins.c lays the pieces. Nothing is solved here. */
 #include "problem.h"
+#include "blanks.h"
 #include "number_text.h"
 #include "support.h"
 #include "table_inner.h"
 
 #include <stdlib.h>
 #include <string.h>
-#include <strings.h>
 
 static kel_status
 no_memory(kel_error *err)
@@ -38,7 +38,7 @@ check_directions(const kel__problem *p, kel_error *err)
         const kel_table *t = p->tables[i];
         if (t->direction == NULL)
             continue;
-        if (first != NULL && strcasecmp(first->direction, t->direction) != 0)
+        if (first != NULL && !kel__is_word(first->direction, strlen(first->direction), t->direction))
             return contradiction(first->name, "has direction", first->direction, t->name, t->direction,
                                  "one record holds one direction", err);
         if (first == NULL)

@@ -99,6 +99,7 @@ typedef struct kel__solution {
     double *scatter;        /* s of a column's unstated rows; NaN where not known */
     double factor;          /* u = factor * least of the columns with too few degrees of freedom */
     bool scatter_known;
+    double *freedom;        /* of its unstated rows: their number less their leverages */
     double *leverage;       /* sum over all its rows */
     double *rss;            /* sum of squared residuals, net of shared terms */
     double *unstated_rss;   /* of the unstated rows, each over (w_i/median w)^2 */

@@ -3,21 +3,21 @@
 
    1. Rows of the basis in pairs of doubles (31 digits): the design A, exact for what follows. Their leading parts go
       through the triangular factor of all fits: A ~ Q R with an error of eps |A|.
-   2. T = R^-1, in doubles, and B = A T in pairs. T is not taken for the inverse of anything: its numbers, as they stand,
-      define a new basis of the same polynomials, and in that basis the design is B. Its columns are orthonormal to within
-      c eps condition(A): the condition that the doubles could not carry is now in T, where it does no harm, and B is as
-      good as orthonormal as long as condition(A) stays below some 1e14.
-   3. min |B z - y| by refinement: r = y - B z and B'r in pairs, then z += (B'B)^-1 B'r with the Cholesky factor U of B'B in
-      doubles, which for such a B has no more error than a QR. Each step gains the 15 digits of one double; two are
-      usual. This is refinement of the augmented system [I B; B' 0] [r; z] = [y; 0] (A. Bjorck, BIT 7 (1967) 257) where
-      r is taken anew from z, so that its first block is solved already.
+   2. T = R^-1, in doubles, and B = A T in pairs. T is not taken for the inverse of anything: its numbers, as they
+      stand, define a new basis of the same polynomials, and in that basis the design is B. Its columns are orthonormal
+      to within c eps condition(A): the condition that the doubles could not carry is now in T, where it does no harm,
+      and B is as good as orthonormal as long as condition(A) stays below some 1e15.
+   3. min |B z - y| by refinement: r = y - B z and B'r in pairs, then z += (B'B)^-1 B'r with the Cholesky factor U of
+      B'B in doubles, which for such a B has no more error than a QR. Each step gains the 15 digits of one double; two
+      are usual. This is refinement of the augmented system [I B; B' 0] [r; z] = [y; 0] (A. Bjorck, BIT 7 (1967) 257)
+      with r kept as what z leaves of y, so that the first block holds at every step.
    4. Coefficients are T z, taken in pairs; covariances T U^-1 U^-T T', where only U has errors, of its few eps.
 
    Refining with A itself and its Q gains only -log10(eps condition(A)) digits a step, and leaves the covariance to R,
    which at condition 1e13 holds three digits. Corrected seminormal equations do not converge there at all.
 
-   B is what the memory goes to. Rank is decided by B: the sine of the angle between a column and those before it is 1 if
-   R stands for A, and rounding noise if A lacks rank; it has to be above 1/2. */
+   B is what the memory goes to. Rank is decided by B: the sine of the angle between a column and those before it is 1
+   if R stands for A, and rounding noise if A lacks rank; it has to be above 1/2. */
 #include "problem.h"
 #include "refine.h"
 
@@ -56,7 +56,8 @@ basis_row(kel__twofold *row, const kel__ls_frame *f, kel__twofold x, kel__twofol
 {
     kel__twofold t = kel__two_div(kel__two_sub(x, kel__two(f->middle)), kel__two(f->half));
     kel__twofold twice = { 2 * t.hi, 2 * t.lo };
-    row[0] = f->constant ? weight : kel__two_mul(x, weight);
+    kel__twofold scaled = { f->x_scale * x.hi, f->x_scale * x.lo };
+    row[0] = f->constant ? weight : kel__two_mul(scaled, weight);
     if (f->count > 1)
         row[1] = kel__two_mul(row[0], t);
     for (size_t k = 2; k < f->count; k++)
@@ -65,7 +66,8 @@ basis_row(kel__twofold *row, const kel__ls_frame *f, kel__twofold x, kel__twofol
 
 /* A, the weighted values in r, and R of the leading parts (p x p, in the arena). */
 static kel_status
-build(double **triangle, const work *w, const kel__ls_frame *f, const kel__ls_data *d, kel_arena *memory, kel_error *err)
+build(double **triangle, const work *w, const kel__ls_frame *f, const kel__ls_data *d, kel_arena *memory,
+      kel_error *err)
 {
     kel__factor factor;
     double *row = kel_arena_take(memory, w->p, sizeof *row);
@@ -150,8 +152,9 @@ largest(const kel__twofold *a, size_t n)
     return most;
 }
 
-/* The first step starts from z = 0 and finds 15 digits at most, for which plain sums do. A step that changes z by less than 2^-48 of it leaves an error of a few eps times that: all that pairs hold. Where z
-   all but vanishes beside the values, the noise of the pairs is the limit. */
+/* The first step starts from z = 0 and finds 15 digits at most, for which plain sums do. A step that changes z by less
+   than 2^-48 of it leaves an error of a few eps times that: all that pairs hold. Where z all but vanishes beside the
+   values, the noise of the pairs is the limit. */
 static void
 refine(const work *w, kel__twofold *g, double *dz)
 {

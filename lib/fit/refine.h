@@ -18,8 +18,9 @@ typedef struct kel__ls_data {
     double y_scale, u_scale;
 } kel__ls_data;
 
-/* T_k(t), k < count, t = (x - middle)/half; without constant x T_k(t). middle and half are just doubles. */
-typedef struct kel__ls_frame { size_t count; bool constant; double middle, half; } kel__ls_frame;
+/* T_k(t), k < count, t = (x - middle)/half; without constant s x T_k(t) with s = x_scale, a power of two that brings
+   s x near 1. middle and half are just doubles. */
+typedef struct kel__ls_frame { size_t count; bool constant; double middle, half, x_scale; } kel__ls_frame;
 
 /* With the design A (weighted rows of the basis) and n = count: A `inverse` has columns that are nearly orthonormal,
    `inner` is their own triangular factor, and A inverse z is nearest to the values. So c = inverse z, and the

@@ -3,7 +3,8 @@
    there is none.
 
    In a file whose cells are parted by blanks a head such as `mean coefficient [1e-6/K]` falls apart into words. They
-   are put together again up to the bracket that closes the unit; `source` and `status` have no unit and stand alone.
+   are put together again up to the bracket that closes the unit; `source`, `status` and `reservations` have no unit and
+   stand alone.
    With temperatures across the top every line starts with a head, and the rows are turned into columns once all are
    read. */
 #include "sheet.h"
@@ -69,8 +70,10 @@ depth_of(const kel__printed *c)
 static size_t
 words_of_head(const kel__printed *words, size_t n)
 {
-    if (kel__is_word(words[0].bytes, words[0].size, "source") || kel__is_word(words[0].bytes, words[0].size, "status"))
-        return 1;
+    static const char *const alone[] = { "source", "status", "reservations" };
+    for (size_t i = 0; i < sizeof alone / sizeof alone[0]; i++)
+        if (kel__is_word(words[0].bytes, words[0].size, alone[i]))
+            return 1;
     int depth = 0;
     for (size_t i = 0; i < n; i++) {
         depth += depth_of(&words[i]);

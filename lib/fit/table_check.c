@@ -18,8 +18,6 @@
 
 static const double largest = 1e-3; /* 1/K */
 
-const char kel__zero_reason[] = "zero at the reference temperature";
-
 kel_status
 kel__place_of(size_t *line, size_t *column, const kel_table *t, const kel_observation *o, kel_error *err)
 {
@@ -120,6 +118,29 @@ shift_all(kel_table *t, kel_error *err)
     return kel__warn(t, "shifted", &text, zero->line, n, err);
 }
 
+/* Why an expansion at its own reference is no observation; one that is not quite zero is named with its value. */
+static kel_status
+leave_out_zero(kel_table *t, size_t i, kel_error *err)
+{
+    struct kel__table *in = t->inner;
+    kel_observation *o = &in->observed[i];
+    if (in->at_reference == NULL)
+        in->at_reference = kel_arena_take(in->memory, t->observation_count, sizeof *in->at_reference);
+    if (in->at_reference == NULL)
+        return kel__no_memory(err);
+    in->at_reference[i] = true;
+    o->left_out = "zero at the reference temperature";
+    if (o->value == 0)
+        return KEL_OK;
+    kel_text text = KEL_TEXT_INIT;
+    kel_text_add(&text, "at the reference temperature: ");
+    kel__value_into(&text, o->kind, o->value);
+    kel_text_add(&text, " taken as zero");
+    o->left_out = text.failed ? NULL : kel_arena_string(in->memory, text.bytes);
+    kel_text_free(&text);
+    return o->left_out == NULL ? kel__no_memory(err) : KEL_OK;
+}
+
 static kel_status
 check_zero(kel_table *t, kel_error *err)
 {
@@ -129,14 +150,16 @@ check_zero(kel_table *t, kel_error *err)
             return status;
     }
     for (size_t i = 0; i < t->observation_count; i++) {
-        kel_observation *o = &t->inner->observed[i];
+        const kel_observation *o = &t->observations[i];
         if (!at_reference(o))
             continue;
         /* Digit, u and value are decimals that were rounded to doubles. */
         double u = u_at_reference(t, o), allowed = fmax(t->columns[o->column].resolution, 3 * u);
         if (!(fabs(o->value) <= allowed * (1 + 1e-12)))
             return refuse_nonzero(t, o, u, err);
-        o->left_out = kel__zero_reason;
+        kel_status status = leave_out_zero(t, i, err);
+        if (status != KEL_OK)
+            return status;
     }
     return KEL_OK;
 }

@@ -257,7 +257,7 @@ kel__table_columns(kel_table *t, const kel_table_options *options, kel_error *er
         return status;
     size_t *const roles[] = { [KEL__TEMPERATURE] = &in->temperature, [KEL__FROM] = &in->from, [KEL__TO] = &in->to,
                               [KEL__INTERVAL] = &in->interval, [KEL__SOURCE] = &in->source,
-                                  [KEL__STATUS] = &in->status };
+                              [KEL__STATUS] = &in->status, [KEL__RESERVATIONS] = &in->reservations };
     for (size_t q = 0; q < sizeof roles / sizeof roles[0]; q++)
         if (roles[q] != NULL)
             *roles[q] = KEL__NONE;

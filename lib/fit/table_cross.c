@@ -76,7 +76,8 @@ collect(line *lines, size_t *n, const kel_table *t, kel_error *err)
     while (status == KEL_OK && kel__raw_next(&cursor)) {
         bool kept = false;
         for (; k < t->observation_count && t->observations[k].line <= cursor.number; k++)
-            kept = kept || t->observations[k].left_out == NULL || t->observations[k].left_out == kel__zero_reason;
+            kept = kept || t->observations[k].left_out == NULL ||
+                   (t->inner->at_reference != NULL && t->inner->at_reference[k]);
         if (!kept)
             continue;
         status = read_line(&lines[*n], t, &cursor, err);

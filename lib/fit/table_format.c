@@ -217,7 +217,7 @@ put_row(writing *w, const kel__cursor *cursor, kel_error *err)
             status = put_interval(w, &cell, err);
         } else if (q == KEL__STATUS) {
             put_status(w, cursor->number, &cell);
-        } else if (q == KEL__SOURCE) {
+        } else if (q == KEL__SOURCE || q == KEL__RESERVATIONS) {
             kel_text_add_bytes(&w->cell, cell.p, cell.n);
             put_cell(w);
         } else {

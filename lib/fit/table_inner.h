@@ -38,7 +38,8 @@ struct kel__table {
     kel__file_column *columns; /* sheet.raw.width of them */
     kel_column *fitted;        /* table->columns, while they can still change */
     kel_observation *observed; /* table->observations, likewise */
-    size_t temperature, from, to, interval, source, status; /* columns, or KEL__NONE */
+    size_t temperature, from, to, interval, source, status, reservations; /* columns, or KEL__NONE */
+    bool *at_reference;        /* observations that are left out as expansions at their own reference; NULL: none */
     kel__leave_out *leave_out; size_t leave_out_count;
     kel_warning *warnings; size_t warning_count, warning_capacity;
     const char *mark_reasons[KEL__MARK_SETS]; /* why a marked row is left out, made when first met */
@@ -61,9 +62,6 @@ kel_status kel__fail(kel_error *err, kel_status code, size_t line, size_t column
 /* Appends "293.15 K", or a value of a kind with its unit, to seven digits. */
 void kel__temperature_into(kel_text *text, double t);
 void kel__value_into(kel_text *text, kel_kind kind, double value);
-
-/* The reason of an expansion printed at its own reference. */
-extern const char kel__zero_reason[];
 
 /* The steps of reading, in this order: heads and --column; what belongs together and what is fitted; --leave-out; rows
    to observations; physics (for arrays too); kinds printed side by side; repeated and unsorted rows (for arrays too);

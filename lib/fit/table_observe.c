@@ -3,8 +3,8 @@
    it is left out.
 
    Why a value is left out, the first that holds: by hand (--leave-out, or a status that says `left out: REASON`); the
-   row's status; a mark at one of its temperatures, at the value or at its uncertainty. Marks leave no one out where
-   the user included marked rows. */
+   row's status; a reservation that the curve was not supported there; a mark at one of its temperatures, at the value
+   or at its uncertainty. Statuses, reservations and marks leave no one out where the user included marked rows. */
 #include "table_inner.h"
 
 #include "blanks.h"
@@ -132,6 +132,28 @@ status_reason(row *r, pass *p, kel_error *err)
     return r->left_out == NULL ? kel__no_memory(err) : KEL_OK;
 }
 
+/* Reservations of an answer, `extrapolated+gap`. Where the curve was not supported by data its value is none either;
+   the others, and words of other sorts, are kept and do no harm. */
+static void
+reservation_reason(row *r, pass *p)
+{
+    kel__cell c = kel__cell_at(r->cells, p->t->inner->reservations);
+    bool extrapolated = false, gap = false;
+    for (const char *end = c.p + c.n, *q = c.p; !c.empty && q < end;) {
+        const char *plus = memchr(q, '+', (size_t)(end - q));
+        size_t n = (size_t)((plus == NULL ? end : plus) - q);
+        extrapolated |= kel__is_word(q, n, "extrapolated");
+        gap |= kel__is_word(q, n, "gap");
+        q += n + (plus != NULL);
+    }
+    if (!extrapolated && !gap)
+        return;
+    count_mark(p, r);
+    if (!p->include_marked)
+        r->left_out = !gap ? "reservation: extrapolated"
+            : extrapolated ? "reservations: extrapolated, gap" : "reservation: gap";
+}
+
 static kel_status
 start_row(row *r, pass *p, const kel__cursor *cursor, kel_error *err)
 {
@@ -141,6 +163,8 @@ start_row(row *r, pass *p, const kel__cursor *cursor, kel_error *err)
     kel_status status = KEL_OK;
     if (r->left_out == NULL && in->status != KEL__NONE)
         status = status_reason(r, p, err);
+    if (status == KEL_OK && r->left_out == NULL && in->reservations != KEL__NONE)
+        reservation_reason(r, p);
     if (status == KEL_OK)
         status = kel__row_temperatures_of(&r->t, p->t, r->cells, err);
     if (status == KEL_OK && r->t.marks != 0)

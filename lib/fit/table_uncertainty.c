@@ -37,6 +37,9 @@ from_column(kel_observation *o, const kel_table *t, const kel__file_column *u, k
                                          err);
     if (status != KEL_OK)
         return status;
+    /* Tables that are written out from a curve state 0 with the zero at the reference, which is no observation. */
+    if (printed == 0 && o->kind == KEL_KIND_EXPANSION && o->from == o->to)
+        return KEL_OK;
     if (!(printed > 0)) {
         kel_text text = KEL_TEXT_INIT;
         kel_text_add(&text, "an uncertainty of ");

@@ -71,8 +71,9 @@ kel__two_mul_one(kel__twofold a, double b)
 }
 
 /* sum + a b for sums of products: the high parts are added without error and all that falls off gathers in sum->lo, so
-   that n terms come out as if summed in twice the precision, within (n u)^2 sum |a b| with u = 2^-53 (T. Ogita, S. Rump,
-   S. Oishi, SIAM J. Sci. Comput. 26 (2005) 1955, Dot2). lo may grow beyond ulp(hi): kel__two_gathered ends the sum. */
+   that n terms come out as if summed in twice the precision, within (n u)^2 sum |a b| with u = 2^-53 (T. Ogita,
+   S. Rump, S. Oishi, SIAM J. Sci. Comput. 26 (2005) 1955, Dot2). lo may grow beyond ulp(hi): kel__two_gathered ends
+   the sum. */
 static inline void
 kel__two_gather(kel__twofold *sum, kel__twofold a, kel__twofold b)
 {

@@ -11,6 +11,8 @@
    degree the scatter is not known, and rows count with their rounding alone. */
 #include "problem.h"
 
+#include <string.h>
+
 /* Degrees of freedom at these limits are whole numbers off by rounding. Where a column's rule changes the weights so
    that the other rule would hold, there is no fixed point: from this iteration on a column that is pooled stays so, and
    a scatter that is not known. */
@@ -20,7 +22,7 @@ enum { SETTLED = 6 };
 kel_status
 kel__solution_arrays(kel__solution *solution, const kel__problem *problem, kel_arena *memory, kel_error *err)
 {
-    double **all[] = { &solution->scatter, &solution->leverage, &solution->rss, &solution->unstated_rss,
+    double **all[] = { &solution->scatter, &solution->freedom, &solution->leverage, &solution->rss, &solution->unstated_rss,
                        &solution->unstated_floor };
     for (size_t i = 0; i < sizeof all / sizeof all[0]; i++)
         if ((*all[i] = kel_arena_take(memory, problem->column_count, sizeof(double))) == NULL)
@@ -108,6 +110,7 @@ kel__uniform_scatter(kel__solution *solution, const kel__problem *problem)
     solution->unstated_rss[0] = solution->rss[0];
     solution->unstated_floor[0] = (double)problem->row_count * least2;
     solution->chi2 = NAN;
+    solution->freedom[0] = freedom;
     solution->scatter_known = freedom >= 1;
     solution->scatter[0] = freedom >= 2 ? width * sqrt(fmax(0, solution->rss[0] / freedom - least2)) : (double)NAN;
     solution->factor = freedom >= 1 ? fmax(1, sqrt(solution->rss[0] / freedom / least2)) : 1;
@@ -201,6 +204,7 @@ kel__estimate_scatter(double *change, kel__solution *solution, const kel__proble
             noise = fmax(noise, column->rounding / column->least);
         s->scatter[c] = now;
     }
+    memcpy(s->freedom, t.freedom, p->column_count * sizeof *s->freedom);
     pool_few(s, p, t.freedom, t.scaled);
     *change = fmax(*change, fmax(fabs(s->factor - factor) - noise, 0) / factor);
     return KEL_OK;

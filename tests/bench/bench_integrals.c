@@ -15,12 +15,14 @@
 #include <kelspan.h>
 
 #include "bench.h"
+#include "kernel.h"
 
 enum { N = 1000000, KNOTS = 50, PIECES = 4, COUNT = 6, MODES = 6, SPLINE_SHARE = 10 };
 
 static double from[N], to[N], integral[N], u[N], sum[N];
 static unsigned char flags[N];
 static kel_record *one_piece, *four_pieces, *no_u;
+static kel__kernel kernel_now; /* of no_u, with another code */
 static gsl_spline *spline;
 static gsl_interp_accel *accel;
 
@@ -40,7 +42,8 @@ make_record(size_t pieces, size_t modes)
         piece[i] = (kel_piece){ i == 0 ? lo : piece[i - 1].to, b, i * COUNT, COUNT };
         for (size_t m = 0; m <= modes; m++)
             for (size_t j = 0; j < COUNT; j++)
-                numbers[m][i * COUNT + j] = m == 0 ? shape[j] * (a + b) / (lo + hi) : 1e-8 / (double)(1 + (m + j) % COUNT);
+                numbers[m][i * COUNT + j] =
+                    m == 0 ? shape[j] * (a + b) / (lo + hi) : 1e-8 / (double)(1 + (m + j) % COUNT);
     }
     for (size_t m = 0; m < modes; m++)
         mode[m] = (kel_mode){ KEL_MODE_FIT, "scatter", { numbers[m + 1], no_steps } };
@@ -59,6 +62,16 @@ make_record(size_t pieces, size_t modes)
         exit(EXIT_FAILURE);
     }
     return record;
+}
+
+/* The last but one in the list, without AVX2 where there is one with it. */
+static const kel__kernel_code *
+second_code(void)
+{
+    size_t n = 0;
+    while (kel__kernel_codes[n] != NULL)
+        n++;
+    return kel__kernel_codes[n < 2 ? 0 : n - 2];
 }
 
 /* ---- jobs ---- */
@@ -105,6 +118,29 @@ in_four_pieces(void)
     kel_record_integral_n(integral, NULL, flags, four_pieces, from, to, N, NULL);
 }
 
+/* The codes that the library would choose on an older processor, and on one that it has no vectors for. */
+static void
+with_code(const kel__kernel_code *code)
+{
+    kel_record record = *no_u;
+    kernel_now = *no_u->kernel;
+    kernel_now.code = code;
+    record.kernel = &kernel_now;
+    kel_record_integral_n(integral, NULL, flags, &record, from, to, N, NULL);
+}
+
+static void
+without_avx2(void)
+{
+    with_code(second_code());
+}
+
+static void
+in_plain_c(void)
+{
+    with_code(&kel__kernel_plain);
+}
+
 static void
 means(void)
 {
@@ -127,16 +163,18 @@ int
 main(void)
 {
     bench_job jobs[] = {
-        { "plain loop c[i] = a[i] + b[i]", plain_loop, N },
-        { "gsl_spline_eval_integ, 50 knots", spline_loop, N / SPLINE_SHARE },
-        { "integral, degree 5, flags", with_flags, N },
-        { "integral, flags, u of 6 modes", with_u, N },
-        { "integral, 4 pieces, flags", in_four_pieces, N },
-        { "mean coefficient, flags", means, N },
-        { "coefficient, flags", coefficients, N },
-        { "expansion, flags", expansions, N },
+        { "plain loop c[i] = a[i] + b[i]", plain_loop, N, 0.0 },
+        { "gsl_spline_eval_integ, 50 knots", spline_loop, N / SPLINE_SHARE, 0.0 },
+        { "integral, degree 5, flags", with_flags, N, 0.0 },
+        { "the same without AVX2", without_avx2, N, 0.0 },
+        { "the same in plain C", in_plain_c, N, 0.0 },
+        { "integral, flags, u of 6 modes", with_u, N, 0.0 },
+        { "integral, 4 pieces, flags", in_four_pieces, N, 0.0 },
+        { "mean coefficient, flags", means, N, 0.0 },
+        { "coefficient, flags", coefficients, N, 0.0 },
+        { "expansion, flags", expansions, N, 0.0 },
     };
-    enum { LOOP, SPLINE, FLAGS, U, FOUR, JOBS = sizeof jobs / sizeof jobs[0] };
+    enum { LOOP, SPLINE, FLAGS, SSE2, PLAIN, U, JOBS = sizeof jobs / sizeof jobs[0] };
     double knot[KNOTS], alpha[KNOTS];
     unsigned long long state = 1;
     no_u = make_record(1, 0);

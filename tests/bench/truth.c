@@ -63,10 +63,11 @@ fit(kel_ls_result *r, double *microseconds, const ls_set *s, bool pairs, kel_err
     for (int i = 0; i < REPEATS && status == KEL_OK; i++) {
         struct timespec a, b;
         clock_gettime(CLOCK_MONOTONIC, &a);
-        status = kel_ls_polynomial_pairs(r, s->x, pairs ? s->x_lo : NULL, s->y, pairs ? s->y_lo : NULL, s->u, s->n, s->degree,
-                                         s->constant, false, err);
+        status = kel_ls_polynomial_pairs(r, s->x, pairs ? s->x_lo : NULL, s->y, pairs ? s->y_lo : NULL, s->u, s->n,
+                                         s->degree, s->constant, false, err);
         clock_gettime(CLOCK_MONOTONIC, &b);
-        *microseconds = fmin(*microseconds, 1e6 * (double)(b.tv_sec - a.tv_sec) + 1e-3 * (double)(b.tv_nsec - a.tv_nsec));
+        double took = 1e6 * (double)(b.tv_sec - a.tv_sec) + 1e-3 * (double)(b.tv_nsec - a.tv_nsec);
+        *microseconds = fmin(*microseconds, took);
     }
     return status;
 }
@@ -183,7 +184,8 @@ main(int argc, char **argv)
         fprintf(stderr, "usage: truth FOLDER\n");
         return 2;
     }
-    printf("Certified digits, the least of each set (at most %d); \"(0)\": where 0 is certified, what came out\n", SET_DIGITS);
+    printf("Certified digits, the least of each set (at most %d); \"(0)\": where 0 is certified, what came out\n",
+           SET_DIGITS);
     printf("%-10s  %-7s  %5s  %5s  %12s  %12s  %12s  %12s  %9s  %7s\n", "set", "from", "rows", "terms", "coefficients",
            "deviations", "residual SD", "R2", "condition", "us/call");
     bool fine = true;

@@ -340,7 +340,7 @@ class() {
     class 2 null "needs a unit" value line.json 200
     printf '%s\n100,10\n100,11\n' "$HEADER" >same.csv
     refused 1 "degree" fit same.csv --degree 1
-    refused 2 "below 0 K" value line.json -1K
+    refused 2 "below absolute zero" value line.json -1K
     test ! -e x.json
 }
 

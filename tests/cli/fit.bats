@@ -280,3 +280,49 @@ load common
     : >empty.csv
     refused 1 "empty.csv" fit empty.csv
 }
+
+@test "--range: rows outside are listed with their lines and the reason" {
+    make_line
+    kel 0 fit line.csv --degree 1 --range 130K:270K
+    has "$output" "11, 4 left out"
+    has "$output" "line 4, 5, 13, 14: outside the range asked for"
+    has "$output" "7 values"
+    kel 0 fit line.csv --degree 1 --range 130K:270K --leave-out 'line.csv:8=slipped' --json
+    same "$(json left_out_rows.#)" 5
+    same "$(json left_out_rows.0.line)" 4
+    same "$(json left_out_rows.0.reason)" "outside the range asked for"
+    same "$(json left_out_rows.2.reason)" "slipped"
+    same "$(json observations)" 6
+}
+
+@test "options that the tables cannot follow: wrong usage" {
+    make_noisy
+    refused 2 "3 degrees for 2 pieces" fit noisy.csv --joins 270K --degree 1,2,3
+    refused 2 "the lower temperature comes first" fit noisy.csv --joins 300K,270K
+    refused 2 "the lower temperature comes first" fit noisy.csv --joins 270K,270K
+    refused 2 "a piecewise form needs joins" fit noisy.csv --form piecewise
+}
+
+@test "-o /dev/stdout: the record on stdout, also where that is a file, the report on stderr" {
+    make_line
+    kel 0 fit line.csv --degree 1 -o - --quiet
+    record=$output
+    kel 0 fit line.csv --degree 1 -o /dev/stdout --quiet
+    same "$output" "$record"
+    echo before >whole.txt
+    "$KELSPAN" fit line.csv --degree 1 -o /dev/stdout --quiet >>whole.txt
+    same "$(cat whole.txt)" "before
+$record"
+    echo before >whole.txt
+    "$KELSPAN" fit line.csv --degree 1 -o /dev/stderr --quiet 2>>whole.txt >report.txt
+    same "$(cat whole.txt)" "before
+$record"
+    has "$(cat report.txt)" "validity range"
+}
+
+@test "a record that cannot be saved: its name once" {
+    make_line
+    refused 1 "kelspan: cannot write '/dev/full': No space left on device" fit line.csv -o /dev/full
+    kel 1 fit line.csv -o /dev/full --json
+    same "$(json_error file)" /dev/full
+}

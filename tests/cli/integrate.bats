@@ -276,3 +276,36 @@ load common
         if ( ulimit -v $v; "$KELSPAN" value line.json 200K >/dev/null 2>&1 ); then echo $v; break; fi; done)
     has "$(peak $((base + 10000)))" "100,300,"
 }
+
+@test "an assumed reference temperature is said" {
+    make_noisy
+    kel 0 fit noisy.csv --degree 1 -o n.json
+    kel 0 integrate n.json --from 220K --to 300K
+    has "$output" "none stated: 293.15 K is assumed"
+    make_line_record
+    kel 0 integrate line.json --from 220K --to 300K
+    hasnt "$output" "assumed"
+}
+
+@test "--pairs: a length that is not above 0 ends the stream at its place" {
+    make_line_record
+    for l in -250 0; do
+        printf 'from [K],to [K],length [mm]\n200,100,250\n200,120,%s\n200,140,250\n' $l >pairs.csv
+        kel 1 integrate line.json --pairs pairs.csv
+        has "$stderr" "pairs.csv:3:9: the length must be above 0 m"
+        same "$(lines "$output")" 2
+    done
+}
+
+@test "a fitted step has the digits that its U supports" {
+    {
+        printf '# reference temperature: 200 K\n# transition: 250 K step\ntemperature [K],expansion [1e-6]\n'
+        awk 'BEGIN { split("3 -3 -3 3 3 -3 -3 3", s, " ")
+            for (i = 1; i <= 8; i++) { t = 85 + 15 * i; printf "%d,%d\n", t, 10 * (t - 200) + s[i] }
+            for (i = 1; i <= 8; i++) { t = 245 + 15 * i; printf "%d,%d\n", t, 600 + 20 * (t - 250) + s[i] } }'
+    } >rough.csv
+    kel 0 fit rough.csv --degree 1 -o rough.json
+    step=$(printf '%s\n' "$output" | sed -n 's/.*fitted step \([-0-9.]*e-6\).*/\1/p')
+    kel 0 integrate rough.json --from 200K --to 300K
+    has "$output" "crossed, fitted step $step"
+}

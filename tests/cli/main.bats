@@ -51,6 +51,7 @@ load common
 
 @test "help of an unknown command" {
     refused 2 "there is no command" help juggle
+    refused 2 "the nearest is tabulate" help tabulat
     refused 2 "takes one command" help fit read
 }
 
@@ -152,4 +153,9 @@ load common
     done
     LC_ALL=de_DE.UTF-8 kel 0 value line.json 210.5K --json
     same "$output" "$first"
+}
+
+@test "help of help names a page that exists" {
+    kel 0 help help
+    has "$output" "kelspan(1)"
 }

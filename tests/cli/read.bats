@@ -103,7 +103,8 @@ load common
     kel 0 read noisy.csv --set 'reference temperature: 20 degC' --set 'material: NZ-9' --json
     near "$(json tables.0.reference_temperature_K)" 293.15 0
     same "$(json tables.0.material)" NZ-9
-    refused 1 "" read noisy.csv --set 'no such key: 1'
+    refused 2 "no such key: 1" read noisy.csv --set 'no such key: 1'
+    refused 2 "the setting 'no colon'" read noisy.csv --set 'no colon'
 }
 
 @test "--column names the columns of a foreign file" {
@@ -201,4 +202,29 @@ load common
     make_line
     refused 1 "/dev/full" read line.csv --as csv -o /dev/full
     test -c /dev/full
+}
+
+@test "a reference temperature that no table states is said to be assumed" {
+    make_noisy
+    kel 0 read noisy.csv
+    has "$output" "none stated: 293.15 K is assumed"
+    kel 0 read noisy.csv --set 'reference temperature: 300 K'
+    hasnt "$output" "assumed"
+}
+
+@test "a record is no table" {
+    make_line_record
+    refused 1 "line.json: is a record, not a table" read line.json
+    refused 1 "line.json: is a record, not a table" fit line.json
+}
+
+@test "--leave-out that meets no table, and malformed options: wrong usage" {
+    make_line
+    refused 2 "--leave-out lime.csv:6=slipped names none of the tables" read line.csv --leave-out 'lime.csv:6=slipped'
+    refused 2 "--leave-out is FILE:LINE=REASON" read line.csv --leave-out 'line.csv:6'
+    refused 2 "FILE:LINE=REASON" fit line.csv --leave-out 'line.csv=slipped'
+    refused 2 "QUANTITY [UNIT]" read line.csv --column 'coefficient [1e-6/K]'
+    refused 2 "volume" read line.csv --column 'volume [K]=2'
+    refused 2 "furlong" read line.csv --column 'coefficient [1/furlong]=2'
+    refused 2 "the setting" value line.csv 200K --set 'material LN-9'
 }

@@ -106,3 +106,10 @@ load common
     refused 2 "one record" residuals line.json line.json
     refused 2 "exclude" residuals line.json --csv --json
 }
+
+@test "an assumed reference temperature is said" {
+    make_noisy
+    kel 0 fit noisy.csv --degree 1 -o n.json
+    kel 0 residuals n.json
+    has "$output" "none stated: 293.15 K is assumed"
+}

@@ -121,3 +121,10 @@ load common
     refused 2 "more than 10000000 rows" tabulate line.json --from 100K --to 300K --step 1e-6K
     refused 2 "one record" tabulate --from 100K --to 200K --step 1K
 }
+
+@test "an assumed reference temperature is said" {
+    make_noisy
+    kel 0 fit noisy.csv --degree 1 -o n.json
+    kel 0 tabulate n.json --from 200K --to 300K --step 50K
+    has "$output" "none stated: 293.15 K is assumed"
+}

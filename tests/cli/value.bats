@@ -66,7 +66,7 @@ load common
     make_line_record
     kel 3 value line.json 250K 350K --csv
     same "$(printf '%s\n' "$output" | grep -v '^#' | head -n 1)" \
-        "temperature [K],coefficient [1/K],uncertainty [1/K],mean coefficient [1/K],uncertainty [1/K],expansion [1],uncertainty [1],length ratio [1],uncertainty [1],reservations"
+        "temperature [K],coefficient [1/K],uncertainty [1/K],mean coefficient [1/K],uncertainty [1/K],expansion [1],uncertainty [1],reservations,source"
     row=$(printf '%s\n' "$output" | grep '^250,')
     near "$(printf '%s' "$row" | cut -d, -f2)" 13e-6 1e-19
     near "$(printf '%s' "$row" | cut -d, -f6)" 625e-6 1e-18
@@ -149,4 +149,23 @@ load common
     make_line_record
     refused 2 "value needs a record" value
     refused 2 "value needs temperatures" value line.json
+}
+
+@test "CSV: quantities beside the main one that are extrapolated stand in its source column" {
+    make_line_record
+    kel 0 value line.json 150K --reference 50K --csv
+    has "$output" ",extrapolated: mean coefficient+expansion"
+    printf '%s\n' "$output" >back.csv
+    kel 0 read back.csv --kind all --quiet
+    kel 0 value line.json 150K --csv
+    hasnt "$output" "extrapolated"
+}
+
+@test "an assumed reference temperature is said" {
+    make_noisy
+    kel 0 fit noisy.csv --degree 1 -o n.json
+    kel 0 value n.json 270K
+    has "$output" "none stated: 293.15 K is assumed"
+    kel 0 value n.json 270K --reference 280K
+    hasnt "$output" "assumed"
 }

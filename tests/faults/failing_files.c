@@ -80,6 +80,9 @@ refuses(bool fault)
     return true;
 }
 
+/* Before those of the C library, whatever the build's default is. */
+#pragma GCC visibility push(default)
+
 ssize_t
 write(int fd, const void *bytes, size_t n)
 {
@@ -135,3 +138,5 @@ fchmod(int fd, mode_t mode)
     bool fault = is_faulty("fchmod");
     return refuses(fault) ? -1 : (int)leave(fault, syscall(SYS_fchmod, fd, mode));
 }
+
+#pragma GCC visibility pop

@@ -4,6 +4,7 @@
 
 #include <errno.h>
 #include <stdlib.h>
+#include <string.h>
 
 static bool armed, failing_onwards;
 static size_t calls, failing_call;
@@ -38,6 +39,9 @@ void *__libc_calloc(size_t n, size_t size);
 void *__libc_realloc(void *block, size_t size);
 void *__libc_memalign(size_t alignment, size_t size);
 void __libc_free(void *block);
+
+/* Seen by other libraries whatever the build's default is. */
+#pragma GCC visibility push(default)
 
 static bool
 refuse(void)
@@ -105,16 +109,22 @@ free(void *block)
     __libc_free(block);
 }
 
-/* Not taken for granted: a tool may have put its own heap before this one. */
+#pragma GCC visibility pop
+
+/* Not taken for granted: a tool may have put its own heap before this one. In the program and in the C library. By
+   pointers, for a compiler takes it that malloc itself changes no variables. */
 bool
 allocation_fails(void)
 {
-    void *volatile block;
-    allocation_arm(1, false);
-    block = malloc(1);
-    bool failed = block == NULL && allocation_disarm() == 1;
+    void *(*volatile request)(size_t) = malloc;
+    char *(*volatile copy)(const char *) = strdup;
+    allocation_arm(1, true);
+    void *block = request(1);
+    char *text = copy("text");
+    bool failed = block == NULL && text == NULL && allocation_disarm() == 2;
     allocation_disarm();
     free(block);
+    free(text);
     return failed;
 }
 

@@ -3,13 +3,13 @@
 #
 # Eight threads share a record, under the thread sanitizer: libkelspan's sources and threads.c are compiled for it here,
 # because its objects do not mix with others. Prints TAP; skipped where the sanitizer is missing or cannot run.
-# CC names the compiler, DEPENDENCIES what jansson and nettle need, as configure found them.
+# KEL_CC names the compiler, KEL_CORE_LIBS what jansson and nettle need, as configure found them.
 set -u
 LC_ALL=C
 export LC_ALL
 source=${KEL_SOURCE_DIR:-${srcdir:-.}}
-CC=${CC:-cc}
-DEPENDENCIES=${DEPENDENCIES:--ljansson -lnettle}
+CC=${KEL_CC:-cc}
+DEPENDENCIES=${KEL_CORE_LIBS:--ljansson -lnettle}
 folder=$(mktemp -d) || exit 99
 trap 'rm -rf "$folder"' EXIT
 

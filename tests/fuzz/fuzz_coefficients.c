@@ -43,8 +43,8 @@ write_again(const kel_record *record, const char *temperature, const char *value
     status = read_bytes(&again, NULL, first.bytes, first.size, NULL, 0, &err);
     if (status < 0) {
         fuzz_error(status, &err);
-        FUZZ_REQUIRE(status == KEL_E_RANGE || status == KEL_E_DATA, "line %zu, column %zu: %s\n%s", err.line, err.column,
-                     err.message, first.bytes);
+        FUZZ_REQUIRE(status == KEL_E_RANGE || status == KEL_E_DATA, "line %zu, column %zu: %s\n%s", err.line,
+                     err.column, err.message, first.bytes);
     } else {
         const kel_content *a = kel_record_content(record), *b = kel_record_content(again);
         FUZZ_REQUIRE(a->base == b->base && a->reference_temperature == b->reference_temperature, "%s", first.bytes);

@@ -209,9 +209,9 @@ make_data(fuzz_bytes *b, made *m, kel_content *c)
         m->strings[i] = text_of(b);
     c->source_count = count(b, 2);
     for (size_t i = 0; i < c->source_count; i++)
-        m->sources[i] = (kel_source){ text_of(b), text_of(b), text_of(b), text_of(b), text_of(b), text_of(b), text_of(b),
-                                      text_of(b), text_of(b), text_of(b), kelvin(b), (kel_base)count(b, 1), count(b, 9),
-                                      count(b, 9), m->strings, texts_of_one, m->strings, texts_of_one };
+        m->sources[i] = (kel_source){ text_of(b), text_of(b), text_of(b), text_of(b), text_of(b), text_of(b),
+                                      text_of(b), text_of(b), text_of(b), text_of(b), kelvin(b), (kel_base)count(b, 1),
+                                      count(b, 9), count(b, 9), m->strings, texts_of_one, m->strings, texts_of_one };
     c->column_count = count(b, 2);
     for (size_t i = 0; i < c->column_count; i++)
         m->columns[i] = (kel_fit_column){ count(b, 1), (kel_kind)count(b, 2), text_of(b), count(b, 3), number(b),

@@ -171,9 +171,10 @@ LLVMFuzzerTestOneInput(const uint8_t *data, size_t size)
     } else {
         check_table(table);
         FUZZ_REQUIRE(kel_table_format(&first, table, &err) == KEL_OK, "%s", err.message);
-        /* Marks are kept as printed, so the rows that have one are asked for again. */
+        /* Marks and columns are kept as printed, so what takes them is asked for again. */
         kel_table_options same = KEL_TABLE_OPTIONS_INIT;
         same.include_marked = a.options.include_marked;
+        same.kind = a.options.kind;
         status = read_bytes(&again, first.bytes, first.size, &same, &err);
         FUZZ_REQUIRE(status == KEL_OK, "line %zu, column %zu: %s\n%s", err.line, err.column, err.message, first.bytes);
         FUZZ_REQUIRE(kel_table_format(&second, again, &err) == KEL_OK, "%s", err.message);

@@ -57,7 +57,8 @@ read_in(const kel_unit *u, const char *number, size_t n)
         return;
     }
     FUZZ_REQUIRE(status == KEL_OK, "'%s' %s: %s", number, u->name, err.message);
-    FUZZ_REQUIRE(isfinite(si) && (u->dimension != KEL_DIM_TEMPERATURE || si >= 0), "'%s' %s is %a", number, u->name, si);
+    FUZZ_REQUIRE(isfinite(si) && (u->dimension != KEL_DIM_TEMPERATURE || si >= 0), "'%s' %s is %a", number, u->name,
+                 si);
     FUZZ_REQUIRE(isfinite(resolution) && resolution >= 0, "'%s' %s has resolution %a", number, u->name, resolution);
     /* plain is rounded already: half a unit of its last place, which the offset may leave as all there is. */
     long double allowed = (fabsl(want) + scale) * (long double)DBL_EPSILON + 2 * (long double)DBL_TRUE_MIN;

@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
 /* NIST StRD, linear least squares: certified coefficients, standard deviations, residual deviation, R^2 and residual
-   sum of squares through the polynomial fits, from data read as doubles and from their decimal text as pairs of doubles.
+   sum of squares through the polynomial fits, from data read as doubles and from decimal text as pairs of doubles.
 
    Digits asked for, of the 15 that are certified:
 
@@ -8,8 +8,8 @@
        doubles     13             13.5         14      the rounding of the data to doubles
        text        14             14           14      the rounding of the certificates: half a unit of the 15th digit
 
-   and in place of a certified 0 at most 1e-14. The residual sum goes with the square of the deviation: a third of a digit
-   less from doubles. The transcription of the data is held by the digits from text.
+   and in place of a certified 0 at most 1e-14. The residual sum goes with the square of the deviation: a third of a
+   digit less from doubles. The transcription of the data is held by the digits from text.
 
    Stress sets beyond NIST's, condition above 1e13, have exact solutions (stress_exact.py) and data that doubles hold
    exactly: 14 digits of everything either way.
@@ -44,8 +44,8 @@ hold(const char *set, const char *entry, const char *item, double got, quad want
     if (want == 0)
         ck_assert_abs_for(label, got, 0, ZERO, "1");
     else
-        ck_assert_msg(set_digits(got, want) >= digits, "%s: got %.17g, certified %.17g: %.2f digits, %g are asked for", label,
-                      got, (double)want, set_digits(got, want), digits);
+        ck_assert_msg(set_digits(got, want) >= digits, "%s: got %.17g, certified %.17g: %.2f digits, %g are asked for",
+                      label, got, (double)want, set_digits(got, want), digits);
 }
 
 static void
@@ -65,7 +65,8 @@ hold_all(const char *name, const char *entry, const ls_certificates *certified, 
         ck_assert_msg(c != NULL && c->has_sd, "%s: no certificate of %s", name, item);
         hold(name, entry, item, r->coefficient[k], c->value, a.coefficient);
         hold(name, entry, item, r->standard_deviation[k], c->sd, a.deviation);
-        ck_assert_lre_for("variance", r->covariance[k * p + k], r->standard_deviation[k] * r->standard_deviation[k], 15);
+        double variance = r->standard_deviation[k] * r->standard_deviation[k];
+        ck_assert_lre_for("variance", r->covariance[k * p + k], variance, 15);
     }
     for (size_t k = 0; k < sizeof whole / sizeof whole[0]; k++) {
         const ls_certificate *c = certificate_find(certified, name, whole[k].item);
@@ -93,7 +94,8 @@ START_TEST(certified)
     ck_assert_uint_eq(r.degrees_of_freedom, s.n - (size_t)s.degree - s.constant);
     ck_assert(r.refined);
     hold_all(name, "doubles", &c, &s, &r, exact ? from_text : from_doubles);
-    made(kel_ls_polynomial_pairs(&r, s.x, s.x_lo, s.y, s.y_lo, s.u, s.n, s.degree, s.constant, false, &err), &err, name);
+    made(kel_ls_polynomial_pairs(&r, s.x, s.x_lo, s.y, s.y_lo, s.u, s.n, s.degree, s.constant, false, &err), &err,
+         name);
     hold_all(name, "text", &c, &s, &r, from_text);
     if (exact)
         ck_assert_double_gt(r.condition, 1e13);

@@ -125,7 +125,7 @@ def main():
     if sys.argv[1:2] == ["data"] and sys.argv[2:] in (["plain"], ["weighted"]):
         weighted = sys.argv[2] == "weighted"
         print("# SPDX-License-Identifier: GPL-3.0-or-later")
-        print("# quantity: y against x, invented; twenty x in 1 to 2, four in 120 to 301; binary fractions printed in full")
+        print("# quantity: y against x, invented; twenty x in 1 to 2, four in 120 to 301; binary fractions in full")
         print("# made by: python3 tests/published/stress_exact.py data %s" % sys.argv[2])
         print("# model: y = B0+B1*x+...+B%d*x^%d, 24 points" % (DEGREE, DEGREE))
         print("# exact solution: stress_certified.csv")
@@ -134,8 +134,8 @@ def main():
             print(",".join(map(decimal, (x, y, u) if weighted else (x, y))))
     elif sys.argv[1:2] == ["solve"] and len(sys.argv) > 2:
         print("# SPDX-License-Identifier: GPL-3.0-or-later")
-        print("# Exact least-squares solutions of the stress sets, rounded to %d digits; weighted: weights 1/u^2, deviations" % DIGITS)
-        print("# not scaled by the residuals, residual_sd = sqrt(residual_ss/(n - parameters))")
+        print("# Exact least-squares solutions of the stress sets, rounded to %d digits; with a column u," % DIGITS)
+        print("# weights 1/u^2 and deviations not scaled by the residuals; residual_sd^2 = residual_ss/(n - parameters)")
         print("# made by: python3 tests/published/stress_exact.py solve " + " ".join(sys.argv[2:]))
         print("dataset,item,certified,certified_sd")
         for path in sys.argv[2:]:

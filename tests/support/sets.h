@@ -6,8 +6,8 @@
 
        dataset,item,certified,certified_sd                items B0, B1, ..., residual_sd, R2, residual_ss
 
-   Numbers are kept in 33 digits, points also as pairs of doubles: what the text says, not what one double holds. Plain C,
-   for tests and for programs that measure. What fails is said in words, and nothing is kept. */
+   Certified numbers are kept in 33 digits and points as pairs of doubles: what the text says, not what one double
+   holds. Plain C, for tests and for programs that measure; what fails is said in words. */
 #ifndef KEL_TEST_SETS_H
 #define KEL_TEST_SETS_H
 

@@ -190,6 +190,43 @@ START_TEST(lot_of_a_step)
 }
 END_TEST
 
+/* What two tables say of their lots, beside "1 % from 100 K to 250 K; 3 % from 250 K to 500 K". */
+static const struct { const char *label; size_t count; kel_stated lot[2]; bool same; } other_lots[] = {
+    { "k = 3", 2, { { 0.03 / 3, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL },
+                    { 0.09 / 3, 0, KEL_DIM_PER_KELVIN, 250, 500, NULL } }, true },
+    { "the other way round", 2, { { 0.03, 0, KEL_DIM_PER_KELVIN, 250, 500, NULL },
+                                  { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL } }, true },
+    { "no dimension without an absolute part", 2, { { 0.01, 0, KEL_DIM_ONE, 100, 250, NULL },
+                                                    { 0.03, 0, KEL_DIM_ONE, 250, 500, NULL } }, true },
+    { "another size", 2, { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL },
+                           { 0.03001, 0, KEL_DIM_PER_KELVIN, 250, 500, NULL } }, false },
+    { "another range", 2, { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL },
+                            { 0.03, 0, KEL_DIM_PER_KELVIN, 250, INFINITY, NULL } }, false },
+    { "an absolute part too", 2, { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL },
+                                   { 0.03, 1e-8, KEL_DIM_PER_KELVIN, 250, 500, NULL } }, false },
+    { "a part of it", 1, { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL } }, false },
+};
+
+START_TEST(lots_of_two_tables)
+{
+    by_hand a, b;
+    plain(&a, "a.csv");
+    plain(&b, "b.csv");
+    kel_stated one[] = { { 0.01, 0, KEL_DIM_PER_KELVIN, 100, 250, NULL },
+                         { 0.03, 0, KEL_DIM_PER_KELVIN, 250, 500, NULL } };
+    kel_stated other[] = { other_lots[_i].lot[0], other_lots[_i].lot[1] };
+    add_lot(&a, one, 2, "1 % from 100 K to 250 K; 3 % from 250 K to 500 K");
+    add_lot(&b, other, other_lots[_i].count, other_lots[_i].label);
+    tables[0] = &a.table;
+    tables[1] = &b.table;
+    kel_record *record;
+    kel_error err = { 0 };
+    kel_status status = kel_fit(&record, NULL, tables, 2, NULL, &err);
+    ck_assert_msg(status == (other_lots[_i].same ? KEL_OK : KEL_E_DATA), "%s: %s", other_lots[_i].label, err.message);
+    kel_record_free(record);
+}
+END_TEST
+
 START_TEST(lots_that_are_refused)
 {
     by_hand a, b;
@@ -323,6 +360,7 @@ loops(void)
 {
     TCase *c = tcase_create("loops");
     tcase_add_loop_test(c, lot_inside_its_range, 0, KEL_LENGTH(lots));
+    tcase_add_loop_test(c, lots_of_two_tables, 0, KEL_LENGTH(other_lots));
     tcase_add_loop_test(c, stated_steps, 0, KEL_LENGTH(stated));
     return c;
 }

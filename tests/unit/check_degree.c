@@ -137,6 +137,23 @@ START_TEST(every_piece_needs_its_rows)
 }
 END_TEST
 
+/* Stated and unstated rows by turns: no curve may buy its freedom by running through the unstated ones. */
+START_TEST(unstated_rows_are_not_interpolated)
+{
+    by_hand h;
+    make(&h, 17, 5e-8, 5e-8);
+    for (size_t i = 0; i < h.table.observation_count; i += 2) {
+        h.rows[i].u_absolute = 0;
+        h.rows[i].u_stated = false;
+    }
+    size_t k;
+    kel_fit_report *r = fit(&h, NULL, &k);
+    ck_assert_uint_eq(k, 3);
+    ck_assert_str_eq(r->candidates[8].refused, "too few rows in a column");
+    kel_fit_report_free(r);
+}
+END_TEST
+
 START_TEST(chi_square_probability)
 {
     /* Upper 5 % points of chi-square, NIST/SEMATECH e-Handbook 1.3.6.7.4: 3.841 (1), 18.307 (10), 43.773 (30). */
@@ -155,5 +172,6 @@ by_rows(void)
     return c;
 }
 
-KEL_TCASE(rule, criterion_without_u, criterion_with_u, incredible_u_become_weights, every_piece_needs_its_rows, chi_square_probability)
+KEL_TCASE(rule, criterion_without_u, criterion_with_u, incredible_u_become_weights, every_piece_needs_its_rows,
+          unstated_rows_are_not_interpolated, chi_square_probability)
 KEL_TEST_MAIN("degree", rule, by_rows)

@@ -18,6 +18,7 @@ static const struct {
     { "", KEL__NOTHING, "", "", 1 },
     { "  ", KEL__NOTHING, "", "", 1 },
     { "temperature [K]", KEL__TEMPERATURE, "", "K", 1 },
+    { "Reservations", KEL__RESERVATIONS, "", "", 1 },
     { "Temperature[degF]", KEL__TEMPERATURE, "", "degF", 1 },
     { "T [K]", KEL__TEMPERATURE, "", "K", 1 },
     { "t (\xC2\xB0" "C)", KEL__TEMPERATURE, "", "\xC2\xB0" "C", 1 },

@@ -519,7 +519,10 @@ START_TEST(directions)
     s.hand[0].table.direction = "along";
     s.hand[2].table.direction = "ALONG"; /* the second says nothing */
     make_well(&s, 3);
-    s.hand[2].table.direction = "across";
+    s.hand[0].table.direction = "A axis";
+    s.hand[2].table.direction = "a \t axis";
+    make_well(&s, 3);
+    s.hand[2].table.direction = "aaxis";
     ck_assert_int_eq(make(&s, 3), KEL_E_DATA);
     ck_assert_ptr_nonnull(strstr(s.err.message, "first.csv"));
     ck_assert_ptr_nonnull(strstr(s.err.message, "third.csv"));

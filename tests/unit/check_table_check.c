@@ -143,6 +143,20 @@ static const struct {
     { "just above 3 u",
       "# reference temperature: 293 K\nT [K],expansion [1e-5],u [1e-5]\n100,-271.3,0.1\n293,0.4,0.1\n", KEL_E_DATA,
           4, 5, "3 u are 3e-6" },
+    { "no u at the reference, where there is none",
+      "# reference temperature: 293 K\nT [K],expansion [1e-5],u [1e-5]\n100,-271.3,0.1\n293,0,0\n", KEL_OK, 0, 0, "" },
+    { "in other units and by a factor", "# reference temperature: 293.15 K\nT [degC],expansion [%],u k=2 [%]\n"
+      "-173,-0.2713,0.001\n20,0.0000,0e0\n", KEL_OK, 0, 0, "" },
+    { "it widens nothing",
+      "# reference temperature: 293 K\nT [K],expansion [1e-5],u [1e-5]\n100,-271.3,0.1\n293,0.2,0\n", KEL_E_DATA, 4, 5,
+      "one printed digit is 1e-6)" },
+    { "no u beside it", "# reference temperature: 293 K\nT [K],expansion [1e-5],u [1e-5]\n292,-1.3,0.0\n293,0,0\n",
+      KEL_E_RANGE, 3, 10, "an uncertainty of '0.0': it must be above zero" },
+    { "below zero", "# reference temperature: 293 K\nT [K],expansion [1e-5],u [1e-5]\n292,-1.3,1\n293,0,-1\n",
+      KEL_E_RANGE, 4, 7, "an uncertainty of '-1'" },
+    { "no u of a mean at its reference",
+      "# reference temperature: 293 K\nT [K],mean alpha [1e-6/K],u [1e-6/K]\n292,13,1\n293,13,0\n",
+      KEL_E_RANGE, 4, 8, "an uncertainty of '0'" },
     { "3 u of shared and own parts",
       "# reference temperature: 293 K\n# uncertainty: 4 [1e-6]\nT [K],expansion [1e-5],u "
       "[1e-6]\n100,-271.3,3\n293,1.5,3\n",
@@ -209,7 +223,23 @@ START_TEST(shift)
 }
 END_TEST
 
-KEL_TCASE(singles, shift)
+/* A value at the reference that is not quite zero is named, and its row still takes part in the cross-check. */
+START_TEST(taken_as_zero)
+{
+    kel_table *t = kel_test_table("# reference temperature: 293 K\nT [K],contraction [1e-5],u [1e-5],alpha [1e-6/K]\n"
+                                  "193,95.0,0.1,9.00\n293,0.3,0.1,10.00\n293,0,0.1,\n393,-105.0,0.1,30.00\n", NULL);
+    ck_assert_ptr_null(t->observations[0].left_out);
+    ck_assert_str_eq(t->observations[1].left_out, "at the reference temperature: -3e-6 taken as zero");
+    ck_assert_str_eq(t->observations[2].left_out, "zero at the reference temperature");
+    ck_assert_ptr_null(t->observations[3].left_out);
+    const kel_warning *w = kel_test_warning(t, "cross-check");
+    ck_assert_ptr_nonnull(w);
+    ck_assert_uint_eq(w->line, 6);
+    kel_table_free(t);
+}
+END_TEST
+
+KEL_TCASE(singles, shift, taken_as_zero)
 
 static TCase *
 loops(void)

@@ -36,13 +36,55 @@ START_TEST(marks)
 }
 END_TEST
 
-KEL_TCASE(singles, marks)
+/* Of the codes of reservations two say that no data were there; what else stands in the column does no harm. */
+static const struct { const char *cell, *left_out; } reservations[] = {
+    { "", NULL }, { "-", NULL }, { "transition", NULL }, { "unknown-uncertainty", NULL },
+    { "transition+unreachable+unknown-uncertainty", NULL }, { "+", NULL }, { "gaps", NULL },
+    { "extrapolated gap", NULL }, { "left out: no", NULL },
+    { "extrapolated", "reservation: extrapolated" }, { " Extrapolated ", "reservation: extrapolated" },
+    { "gap", "reservation: gap" }, { "gap+transition", "reservation: gap" }, { "transition+gap", "reservation: gap" },
+    { "unknown-uncertainty + extrapolated", "reservation: extrapolated" },
+    { "extrapolated+gap+transition", "reservations: extrapolated, gap" },
+};
+
+START_TEST(reservation)
+{
+    const char *label = reservations[_i].cell, *want = reservations[_i].left_out;
+    for (int include = 0; include < 2; include++) {
+        char text[160];
+        kel_table_options options = { .kind = -1, .header = -1, .include_marked = include };
+        snprintf(text, sizeof text, "T [K],alpha [1e-6/K],reservations\n100,11.5,%s\n200,16.4,\n", label);
+        kel_table *t = kel_test_table(text, &options);
+        const char *reason = t->observations[0].left_out;
+        bool same = want == NULL || include ? reason == NULL : reason != NULL && strcmp(reason, want) == 0;
+        ck_assert_msg(same, "'%s': %s", label, reason == NULL ? "taken" : reason);
+        ck_assert_ptr_null(t->observations[1].left_out);
+        ck_assert_uint_eq(t->marked_cells, want != NULL);
+        kel_table_free(t);
+    }
+}
+END_TEST
+
+/* The row's status is the graver word of the two. */
+START_TEST(status_before_reservation)
+{
+    kel_table *t = kel_test_table("T [K],alpha [1e-6/K],reservations,status\n100,11.5,gap,doubtful\n"
+                                  "200,16.4,gap,ok\n300,19,,\n", NULL);
+    ck_assert_str_eq(t->observations[0].left_out, "status: doubtful");
+    ck_assert_str_eq(t->observations[1].left_out, "reservation: gap");
+    ck_assert_ptr_null(t->observations[2].left_out);
+    kel_table_free(t);
+}
+END_TEST
+
+KEL_TCASE(singles, marks, status_before_reservation)
 
 static TCase *
 loops(void)
 {
     TCase *c = tcase_create("loops");
     tcase_add_loop_test(c, status, 0, KEL_LENGTH(statuses));
+    tcase_add_loop_test(c, reservation, 0, KEL_LENGTH(reservations));
     return c;
 }
 

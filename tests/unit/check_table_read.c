@@ -71,6 +71,11 @@ static const struct {
     size_t line;
     const char *left_out;
 } layouts[] = {
+    { "good-answers.csv", 6, 0, E, 293, 93, -0.0018, 1.25e-5, 0, 1e-7, 5, "reservation: extrapolated" },
+    { "good-answers.csv", 6, 1, E, 293, 143, -0.0013875, 9.375e-6, 0, 1e-7, 6, "reservation: gap" },
+    { "good-answers.csv", 6, 2, E, 293, 193, -0.00095, 6.25e-6, 0, 1e-7, 7, NULL },
+    { "good-answers.csv", 6, 3, E, 293, 293, 0, 0, 0, 1e-7, 8, "zero at the reference temperature" },
+    { "good-answers.csv", 6, 5, E, 293, 493, 0.0022, 0, 0, 1e-7, 10, NULL },
     { "good-coefficient.csv", 15, 3, C, 100, 100, 11.51e-6, 0, 0, 1e-8, 9, NULL },
     { "good-mean.csv", 8, 2, M, 293.15, 173.15, 17.51e-6, 0, 0, 1e-8, 7, NULL },
     { "good-mean.csv", 8, 5, M, 293.15, 293.15, 19.28e-6, 0, 0, 1e-8, 10, NULL },

@@ -43,7 +43,9 @@ typedef struct kel_answer {
    whatever is asked for with another reference needs that and R (except in these four cases). In a current-length
    record: MEAN needs the reference, and so do COEFFICIENT and INTEGRAL asked for in `reference length`. Gap: `to` or an
    end of the interval lies strictly inside one. Transition: one lies in lo < T <= hi of the interval; EXPANSION is the
-   interval from the reference, COEFFICIENT has none. Bounds compare exactly. Accuracy: see each scalar. Since 0.1. */
+   interval from the reference, COEFFICIENT has none. Bounds compare exactly.
+   Accuracy: each coefficient and integral of alpha that the answer is made of is within the bound below; its error goes into the answer with the
+   answer's derivative by it, and 8 eps of the answer come on top. Since 0.1. */
 KEL_API kel_status kel_record_answer(kel_answer *out, const kel_record *record, const kel_query *query, kel_error *err);
 
 /* The same in the record's own reference and base. value within (2n + 4) eps sum |c_k| of the piece for the
@@ -63,9 +65,15 @@ KEL_API kel_status kel_record_length_ratio(kel_answer *out, const kel_record *re
 KEL_API kel_status kel_record_covariance(double *out, const kel_record *record, const kel_query *a, const kel_query *b,
                                          kel_error *err);
 
-/* Array calls: n answers into value[n]; u[n] and flags[n] may be NULL. No allocation; returns the worst status. A query
-   that fails gives NaN, and the call goes on with the next; its status is negative at the end, err holds the first one
-   with its place, counted from 1, in err->line. Any number of threads may share the record. Since 0.1. */
+/* Array calls: n answers into value[n]; u[n] and flags[n] may be NULL. No allocation; returns the worst status. A query that fails
+   gives NaN, and the call goes on with the next; its status is negative at the end, err holds the first one with its place,
+   counted from 1, in err->line. value or u may be the array `from`, `to` or `t`; flags, status and failures are those of single calls.
+   Accuracy: curves whose pieces have at most degree 12, and whose rounding as powers of T - centre has been bounded beforehand, go through
+   vector code. It gives alpha, mean and integral within 1e-13 of what sum |c_k| gives in the place of alpha (times the width for an
+   integral; steps crossed count with their sizes), in the base `current length` expansion and length ratio within that times L(T)/L(from),
+   and u within 1e-10 of what the modes' sum |c_k| gives; outside the pieces 1e-10, each term with the size that it has there. Degree 5 and
+   below always do, higher ones where the coefficients fall off. All other curves, and length ratio and mean of a base where they lean on
+   more than from and to, give the same bits as single calls. The processor chooses the code: last bits may differ between machines. Since 0.1. */
 KEL_API kel_status kel_record_coefficient_n(double *value, double *u, unsigned char *flags, const kel_record *record,
                                             const double *t, size_t n, kel_error *err);
 KEL_API kel_status kel_record_mean_n(double *value, double *u, unsigned char *flags, const kel_record *record,

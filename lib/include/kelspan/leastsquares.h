@@ -27,18 +27,18 @@ typedef struct kel_ls_result {
    all > 0, or NULL; with u the covariance is not scaled by the residuals unless `scale` is true.
 
    KEL_OK. KEL_E_RANK: the x do not determine the coefficients, or n < parameters. KEL_E_ARGUMENT: non-finite data
-   (index in err->line), degree below 0 (1 without constant) or above KEL_DEGREE_MAX, no place for results. KEL_E_RANGE:
-   numbers beyond a double arise. KEL_E_NOMEM, KEL_E_CONVERGENCE. n = parameters: standard deviations are NaN without u.
+   (index in err->line), degree below 0 (1 without constant) or above KEL_DEGREE_MAX, no place for results.
+   KEL_E_RANGE: numbers beyond a double arise. KEL_E_NOMEM, KEL_E_CONVERGENCE. n = parameters: standard deviations are
+   NaN without u.
 
    Accuracy. The data are taken as exact. Up to 64 MiB of rows, which is n (parameters + 1) <= 2^22, the rows are held
-   in pairs of doubles and the solution is refined: coefficients, deviations and residual sums come out within some
-   1e-15 of themselves as long as condition is below 1e13 (a design worse than some 1e14 is refused as KEL_E_RANK),
-   which is more than data rounded to doubles determine. Two things can spoil it: a coefficient that is smaller by 15
-   digits and more than its standard deviation, and powers of x that cancel more than 15 digits on the range, (1 +
-   |middle|/half)^degree > 1e15. Beyond 64 MiB the triangular factor alone answers, in constant memory: rows in pairs
-   would cost both the memory and some thirty times the time, and what they win, the rounding of sums over so many rows,
-   is small beside what such data scatter. Relative error there: some 1e-16 times condition (a design worse than
-   1e14/parameters is refused).
+   in pairs of doubles and the solution is refined: coefficients, deviations and sums come out to some 1e-15 of
+   themselves, whatever condition is up to 1e15; one beyond some 1e16 is refused (KEL_E_RANK). The limit is that of 30
+   digits: a coefficient that changes of the values by 1e-30 of the largest one would move has no more digits than
+   that leaves, and powers lose theirs where (1 + |middle|/half)^degree of the range is above 1e15. Beyond 64 MiB the
+   triangular factor alone answers, in constant memory, to some 1e-16 times condition (a design worse than
+   1e14/parameters is refused): pairs would cost both the memory and tens of times the time, and rows by the million
+   leave a condition worth refining to few designs.
 
    Source: refinement of least squares with residuals in twice the precision, A. Bjorck, BIT 7 (1967) 257, in a basis in
    which the design is orthonormal to a few digits. Since 0.1. */
