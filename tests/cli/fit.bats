@@ -118,7 +118,7 @@ load common
     refused 2 "--continuity lists 2, --joins 1" fit noisy.csv --joins 270K --continuity slope,value
     refused 2 "--continuity is value" fit noisy.csv --joins 270K --continuity smooth
     refused 2 "270 needs a unit" fit noisy.csv --joins 270
-    kel 1 fit noisy.csv --form piecewise
+    kel 2 fit noisy.csv --form piecewise
     kel 0 fit noisy.csv --form polynomial --degree 1
     kel 0 fit noisy.csv --form piecewise --joins 270K --degree 1
 }

@@ -306,6 +306,6 @@ load common
     } >rough.csv
     kel 0 fit rough.csv --degree 1 -o rough.json
     step=$(printf '%s\n' "$output" | sed -n 's/.*fitted step \([-0-9.]*e-6\).*/\1/p')
-    kel 0 integrate rough.json --from 200K --to 300K
+    kel 3 integrate rough.json --from 200K --to 300K
     has "$output" "crossed, fitted step $step"
 }

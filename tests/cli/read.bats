@@ -221,7 +221,7 @@ load common
 @test "--leave-out that meets no table, and malformed options: wrong usage" {
     make_line
     refused 2 "--leave-out lime.csv:6=slipped names none of the tables" read line.csv --leave-out 'lime.csv:6=slipped'
-    refused 2 "--leave-out is FILE:LINE=REASON" read line.csv --leave-out 'line.csv:6'
+    refused 2 "FILE:LINE=REASON" read line.csv --leave-out 'line.csv:6'
     refused 2 "FILE:LINE=REASON" fit line.csv --leave-out 'line.csv=slipped'
     refused 2 "QUANTITY [UNIT]" read line.csv --column 'coefficient [1e-6/K]'
     refused 2 "volume" read line.csv --column 'volume [K]=2'

@@ -66,7 +66,7 @@ load common
     make_line_record
     kel 0 tabulate line.json --from 100K --to 300K --step 50K --csv
     same "$(printf '%s\n' "$output" | grep -v '^#' | head -n 1)" \
-        "temperature [K],coefficient [1/K],uncertainty [1/K],mean coefficient [1/K],uncertainty [1/K],expansion [1],uncertainty [1],reservations"
+        "temperature [K],coefficient [1/K],uncertainty [1/K],mean coefficient [1/K],uncertainty [1/K],expansion [1],uncertainty [1],reservations,source"
     same "$(printf '%s\n' "$output" | grep -vc '^#')" 6
     has "$output" "# reference temperature: 200 K"
     has "$output" "# base: reference length"

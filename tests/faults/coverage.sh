@@ -4,9 +4,8 @@
 # Line and branch coverage of the libraries and the tool, a line for each source file and one for all, from what the tests
 # left in a tree that was configured with --enable-coverage:    coverage.sh [--missing] SOURCE
 #
-# A branch counts as taken when it was gone at least once. Where a file was compiled more than once (for the libraries
-# and for programs), the run with the most lines is taken. --missing lists the lines that were never reached, with their
-# text. Run in the build tree; files outside the source tree, tests and headers are passed over.
+# A branch counts as taken when it was gone at least once; what any of a file's objects reached is reached. --missing lists the lines that were never reached,
+# with their text. Run in the build tree; files outside the source tree, tests and headers are passed over.
 set -u
 LC_ALL=C
 export LC_ALL
@@ -48,7 +47,7 @@ awk -v root="$source/" -v missing="$missing" '
     }
     !inside { next }
     /^branch/ {
-        key = file SUBSEP line SUBSEP ++branch
+        key = file "|" line "|" ++branch
         branches[key] = 1
         if ($0 !~ /never executed/ && $4 + 0 > 0) taken[key] = 1
         next
@@ -60,14 +59,14 @@ awk -v root="$source/" -v missing="$missing" '
         line = part[2] + 0
         branch = 0
         if (count == "-" || line == 0) next
-        key = file SUBSEP line
+        key = file "|" line
         code[key] = 1
         if (count !~ /^[#=]/) reached[key] = 1
         text[key] = substr($0, index($0, ":") + 1)
     }
     END {
-        for (k in code) { split(k, p, SUBSEP); lines[p[1]]++; hit[p[1]] += k in reached }
-        for (k in branches) { split(k, p, SUBSEP); ways[p[1]]++; gone[p[1]] += k in taken }
+        for (k in code) { split(k, p, "|"); lines[p[1]]++; hit[p[1]] += k in reached }
+        for (k in branches) { split(k, p, "|"); ways[p[1]]++; gone[p[1]] += k in taken }
         for (f in files) {
             if (!lines[f]) continue
             all += lines[f]; all_hit += hit[f]; all_ways += ways[f]; all_gone += gone[f]
@@ -75,7 +74,7 @@ awk -v root="$source/" -v missing="$missing" '
         }
         printf "2 total %d %d %d %d\n", all_hit, all, all_gone, all_ways
         if (missing)
-            for (k in code) if (!(k in reached)) { split(k, p, SUBSEP); printf "3 %s %06d %s\n", p[1], p[2], text[k] }
+            for (k in code) if (!(k in reached)) { split(k, p, "|"); printf "3 %s %06d %s\n", p[1], p[2], text[k] }
     }' build="$build" "$folder/text" | sort -k1,1n -k2,2 -k3,3n | awk '
     function share(a, b) { return b ? sprintf("%.1f %%", 100 * a / b) : "-" }
     NR == 1 { printf "%-36s %16s %10s %16s %10s\n", "file", "lines", "", "branches", "" }

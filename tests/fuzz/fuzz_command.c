@@ -1,9 +1,9 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* The command line. The bytes are its words, parted by line ends; NUL ends them.
+/* The command line. The bytes are its words, parted by line ends; NUL ends them, and what follows is on stdin.
 
    Options are read for the command that the first word names, or the one that the first byte picks, with the values
-   that belong to tables, fits and units. Where the operands are those of the list below, and nothing is to be written,
-   the command is run too.
+   that belong to tables, fits and units. Where the operands are stdin or those of the list below, and no file is to be
+   written, the command is run too.
 
    What the tool writes is caught: the linker hands every write(2) of this program to the one below (-Wl,--wrap=write).
    One line of an error for wrong usage and failure, nothing on stdout then, no byte that a terminal would obey. */
@@ -11,6 +11,7 @@
 
 #include <errno.h>
 #include <gsl/gsl_errno.h>
+#include <sys/mman.h>
 #include <unistd.h>
 
 #include "answers.h"
@@ -21,7 +22,7 @@
 const char *const fuzz_name = "command";
 const char *const fuzz_data[] = { NULL };
 
-enum { MOST_WORDS = 24, LARGEST = 4096, MOST_BYTES = 1 << 20 };
+enum { MOST_WORDS = 24, LARGEST = 1 << 14, MOST_BYTES = 1 << 20 };
 
 static bool catching;
 static kel_text said, answered;
@@ -112,10 +113,12 @@ read_values(job *j)
     return status;
 }
 
-/* A word that stands for a file of the tests, put in its place. */
+/* A word that stands for a file of the tests, put in its place; or stdin. */
 static bool
 known_file(const char **operand, char path[4096])
 {
+    if (*operand != NULL && strcmp(*operand, "-") == 0)
+        return true;
     static const struct { const char *word, *file; } files[] = {
         { "REC", "tests/data/good-record.json" }, { "TABLE", "tests/data/good-uncertainty.csv" },
         { "STEP", "tests/data/good-transition.csv" }, { "CURVE", "tests/data/good-coefficients-two-pieces.csv" },
@@ -144,6 +147,21 @@ may_run(job *j, char paths[][4096])
         if (!known_file(&j->operands[i], paths[i]) && !(temperatures && i > 0))
             return false;
     return true;
+}
+
+/* Puts the bytes on stdin, as a file that begins anew. */
+static void
+fill_stdin(const fuzz_bytes *bytes)
+{
+    static int file = -1;
+    if (file < 0) {
+        file = memfd_create("stdin", 0);
+        FUZZ_REQUIRE(file >= 0 && dup2(file, STDIN_FILENO) == STDIN_FILENO, "no file for stdin: %s", strerror(errno));
+    }
+    bool good = ftruncate(file, 0) == 0 && lseek(file, 0, SEEK_SET) == 0 &&
+        (bytes->left == 0 || __real_write(file, bytes->at, bytes->left) == (ssize_t)bytes->left) &&
+        lseek(file, 0, SEEK_SET) == 0;
+    FUZZ_REQUIRE(good, "stdin cannot be filled: %s", strerror(errno));
 }
 
 static void
@@ -185,6 +203,7 @@ LLVMFuzzerTestOneInput(const uint8_t *data, size_t size)
     if (size == 0 || size > LARGEST)
         return 0;
     char *text = fuzz_string(&bytes, '\0');
+    fill_stdin(&bytes);
     fuzz_bytes rest = { (const uint8_t *)text, strlen(text) };
     while (rest.left > 0 && n < MOST_WORDS) {
         given[n] = words[n] = fuzz_string(&rest, '\n');

@@ -59,7 +59,7 @@ START_TEST(kept)
     ck_assert(p[0].u_stated && p[2].u_stated && !p[1].u_stated);
     ck_assert_uint_eq(p[0].line, 1);
     ck_assert_uint_eq(p[2].line, 40);
-    ck_assert_str_eq(p[4].left_out, "zero at the reference temperature"); /* below the digit of its column */
+    ck_assert_str_eq(p[4].left_out, "at the reference temperature: 5e-7 taken as zero"); /* below its digit */
     ck_assert_str_eq(p[6].left_out, "cracked");
     /* A mean from the reference has one printed temperature, another interval two. */
     ck_assert_ulp(p[1].printed_lo, 77, 0);

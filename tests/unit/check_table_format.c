@@ -7,8 +7,9 @@
 
 #define FILES(X) X("good-answers.csv") X("good-blank-rows.csv") X("good-code-table.csv") X("good-coefficient.csv") \
     X("good-contraction.csv") X("good-current-length.csv") X("good-decimal-comma.csv") X("good-expansion-percent.csv") \
-    X("good-from-to.csv") X("good-intervals.csv") X("good-limits.csv") X("good-mean.csv") X("good-notes.csv") X("good-shifted.csv") \
-    X("good-status-marks.csv") X("good-transition.csv") X("good-uncertainty-percent.csv") X("good-uncertainty.csv")
+    X("good-from-to.csv") X("good-intervals.csv") X("good-limits.csv") X("good-mean.csv") X("good-notes.csv") \
+    X("good-shifted.csv") X("good-status-marks.csv") X("good-transition.csv") X("good-uncertainty-percent.csv") \
+    X("good-uncertainty.csv")
 #define ITEM(name) name,
 static const char *const good[] = { FILES(ITEM) };
 
