@@ -161,7 +161,7 @@ ways(const kel_record *record, double from, double to)
         compare("length ratio", status, &a, value, u, flags, stretch + share, INFINITY);
     status = kel_record_mean(&a, record, from, to, &err);
     kel_record_mean_n(&value, &u, &flags, record, &from, &to, 1, NULL);
-    compare("mean", status, &a, value, u, flags, from == to ? INFINITY : stretch / fabs(to - from) + point, INFINITY);
+    compare("mean", status, &a, value, u, flags, from == to ? (double)INFINITY : stretch / fabs(to - from) + point, INFINITY);
     status = kel_record_integral(&a, record, from, to, &err);
     kel_record_integral_n(&value, &u, &flags, record, &from, &to, 1, NULL);
     compare("integral", status, &a, value, u, flags, stretch, u_stretch);

@@ -153,14 +153,14 @@ may_run(job *j, char paths[][4096])
 static void
 fill_stdin(const fuzz_bytes *bytes)
 {
-    static int file = -1;
-    if (file < 0) {
-        file = memfd_create("stdin", 0);
-        FUZZ_REQUIRE(file >= 0 && dup2(file, STDIN_FILENO) == STDIN_FILENO, "no file for stdin: %s", strerror(errno));
+    static int standard = -1;
+    if (standard < 0) {
+        standard = memfd_create("stdin", 0);
+        FUZZ_REQUIRE(standard >= 0 && dup2(standard, STDIN_FILENO) == STDIN_FILENO, "no file for stdin: %s", strerror(errno));
     }
-    bool good = ftruncate(file, 0) == 0 && lseek(file, 0, SEEK_SET) == 0 &&
-        (bytes->left == 0 || __real_write(file, bytes->at, bytes->left) == (ssize_t)bytes->left) &&
-        lseek(file, 0, SEEK_SET) == 0;
+    bool good = ftruncate(standard, 0) == 0 && lseek(standard, 0, SEEK_SET) == 0 &&
+        (bytes->left == 0 || __real_write(standard, bytes->at, bytes->left) == (ssize_t)bytes->left) &&
+        lseek(standard, 0, SEEK_SET) == 0;
     FUZZ_REQUIRE(good, "stdin cannot be filled: %s", strerror(errno));
 }
 
