@@ -266,7 +266,8 @@ START_TEST(evaluation_takes_no_memory)
     for (int i = 0; i < N; i++)
         for (int quantity = KEL_COEFFICIENT; quantity <= KEL_CHANGE; quantity++)
             for (int base = -1; base <= KEL_BASE_CURRENT; base++) {
-                const kel_query q = { (kel_quantity)quantity, from[i], t[i], 300.0, i % 2 == 0 ? (double)NAN : 77.0, base };
+                const double reference = i % 2 == 0 ? (double)NAN : 77.0;
+                const kel_query q = { (kel_quantity)quantity, from[i], t[i], 300.0, reference, base };
                 const kel_query other = { KEL_EXPANSION, 0.0, t[i], 0.0, NAN, -1 };
                 kel_record_answer(&a, rich_record, &q, &err);
                 kel_record_covariance(&covariance, rich_record, &q, &other, &err);
@@ -302,7 +303,9 @@ END_TEST
 /* Temperatures, units and numbers neither. */
 START_TEST(reading_a_quantity_takes_no_memory)
 {
-    static const char *const units[] = { "1e-6/K", "um/(m.K)", "10\xE2\x81\xBB\xE2\x81\xB6 K\xE2\x81\xBB\xC2\xB9", "ppm/degF" };
+    static const char *const units[] = {
+        "1e-6/K", "um/(m.K)", "10\xE2\x81\xBB\xE2\x81\xB6 K\xE2\x81\xBB\xC2\xB9", "ppm/degF"
+    };
     static const char number[] = "299792458.000000000000000000000000000000000000001e-3";
     kel_unit unit;
     double x;

@@ -254,14 +254,17 @@ static const struct fit_row {
     kel_status expected;
 } fits[] = {
     { "degree auto", "good-coefficient.csv", NULL, NULL, 0, false, NAN, -1, KEL_CHOOSE_DEFAULT, KEL_OK },
-    { "degree auto, stated u", "good-uncertainty-percent.csv", NULL, NULL, 0, false, NAN, -1, KEL_CHOOSE_DEFAULT, KEL_OK },
+    { "degree auto, stated u", "good-uncertainty-percent.csv", NULL, NULL, 0, false, NAN, -1, KEL_CHOOSE_DEFAULT,
+      KEL_OK },
     { "shared and lot", "good-uncertainty.csv", NULL, line, 1, false, NAN, -1, KEL_CHOOSE_DEFAULT, KEL_OK },
     { "two pieces", "good-coefficient.csv", NULL, mixed, 2, true, NAN, -1, KEL_CHOOSE_DEFAULT, KEL_OK },
     { "a fitted step", "good-transition.csv", NULL, line, 1, false, NAN, -1, KEL_CHOOSE_DEFAULT, KEL_OK },
     { "three columns", "good-code-table.csv", NULL, line, 1, false, NAN, -1, KEL_CHOOSE_ALL, KEL_OK },
-    { "two tables, another reference and base", "good-uncertainty.csv", "good-transition.csv", line, 1, false, 250.0, KEL_BASE_CURRENT,
+    { "two tables, another reference and base", "good-uncertainty.csv", "good-transition.csv", line, 1, false, 250.0,
+      KEL_BASE_CURRENT,
       KEL_CHOOSE_DEFAULT, KEL_OK },
-    { "more parameters than rows", "good-coefficient.csv", NULL, far_too_many, 1, false, NAN, -1, KEL_CHOOSE_DEFAULT, KEL_E_RANK },
+    { "more parameters than rows", "good-coefficient.csv", NULL, far_too_many, 1, false, NAN, -1, KEL_CHOOSE_DEFAULT,
+      KEL_E_RANK },
 };
 
 /* LAPACKE says on stdout that memory ran out, unless its caller brings the memory. A library prints nothing. */

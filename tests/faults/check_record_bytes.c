@@ -56,7 +56,8 @@ judge(const original *o, const char *bytes, size_t n, size_t at, const char *wha
     kel_record *record = (kel_record *)&err;
     kel_status status = kel_record_parse(&record, bytes, n, &err);
     if (status != KEL_OK) {
-        KEL_REQUIRE(record == NULL && err.code == status && err.message[0] != '\0', "byte %zu, %s: no clean error", at, what);
+        KEL_REQUIRE(record == NULL && err.code == status && err.message[0] != '\0',
+                    "byte %zu, %s: no clean error", at, what);
         KEL_REQUIRE(status == KEL_E_SYNTAX || status == KEL_E_DATA || status == KEL_E_DIGEST || status == KEL_E_RANGE ||
                     status == KEL_E_VERSION, "byte %zu, %s: %s: %s", at, what, kel_status_text(status), err.message);
         return false;

@@ -159,8 +159,8 @@ END_TEST
 
 /* ---- kill -9 ---- */
 
-/* After a child was killed while it saved: whole, old or new; and at most one temporary file, which is ours by its name.
-   Says whether the new one is there. */
+/* After a child was killed while it saved: whole, old or new; and at most one temporary file, which is ours by its
+   name. Says whether the new one is there. */
 static bool
 survived(bool there, const char *when, size_t number)
 {
@@ -169,8 +169,8 @@ survived(bool there, const char *when, size_t number)
     KEL_REQUIRE(is_new || (there ? holds("r.json", &old_text) : access("r.json", F_OK) != 0),
                 "%s %zu: the file is neither the old nor the new record", when, number);
     size_t left = sweep(".kelspan-", &others);
-    KEL_REQUIRE(left <= 1 && others == (is_new || there), "%s %zu: %zu temporary files and %zu others", when, number, left,
-                others);
+    KEL_REQUIRE(left <= 1 && others == (is_new || there), "%s %zu: %zu temporary files and %zu others", when,
+                number, left, others);
     return is_new;
 }
 

@@ -4,8 +4,9 @@
 # Line and branch coverage of the libraries and the tool, a line for each source file and one for all, from what the tests
 # left in a tree that was configured with --enable-coverage:    coverage.sh [--missing] SOURCE
 #
-# A branch counts as taken when it was gone at least once; what any of a file's objects reached is reached. --missing lists the lines that were never reached,
-# with their text. Run in the build tree; files outside the source tree, tests and headers are passed over.
+# A branch counts as taken when it was gone at least once; what any of a file's objects reached is reached. --missing
+# lists the lines that were never reached, with their text. Run in the build tree; files outside the source tree, tests
+# and headers are passed over.
 set -u
 LC_ALL=C
 export LC_ALL

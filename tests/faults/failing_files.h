@@ -1,6 +1,6 @@
 /* SPDX-License-Identifier: GPL-3.0-or-later */
-/* System calls of a save that fail on demand, one by one, or end the process. Link failing_files.c into the program: its
-   write, fsync, rename and their kin then serve the library that is linked into it. */
+/* System calls of a save that fail on demand, one by one, or end the process. Link failing_files.c into the program:
+   its write, fsync, rename and their kin then serve the library that is linked into it. */
 #ifndef KEL_TEST_FAILING_FILES_H
 #define KEL_TEST_FAILING_FILES_H
 

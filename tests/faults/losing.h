@@ -3,8 +3,8 @@
 
    First it is run undisturbed, twice: what it gives is kept as text, and its calls are counted. Then, for every n,
    it is run once with the n-th call failed and once with all from the n-th on. Each time it must either fail with
-   KEL_E_NOMEM and a message and give NULL, or, for no more calls than the operation says it can spare, give the same text
-   as undisturbed; and afterwards as many blocks are in use as before. */
+   KEL_E_NOMEM and a message and give NULL, or, for no more calls than the operation says it can spare, give the same
+   text as undisturbed; and afterwards as many blocks are in use as before. */
 #ifndef KEL_TEST_LOSING_H
 #define KEL_TEST_LOSING_H
 
@@ -97,8 +97,8 @@ lose_each(const operation *op)
         survived += lose_one(op, n, false, &undisturbed);
         lose_one(op, n, true, &undisturbed);
     }
-    KEL_REQUIRE(op->expected < 0 || survived <= op->spare, "%s: the loss of %zu of %zu calls was not noticed", op->label,
-                survived, calls);
+    KEL_REQUIRE(op->expected < 0 || survived <= op->spare, "%s: the loss of %zu of %zu calls was not noticed",
+                op->label, survived, calls);
     kel_text_free(&undisturbed);
     return calls;
 }

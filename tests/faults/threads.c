@@ -67,7 +67,8 @@ evaluate(results *out, const kel_record *record, const char *bytes, size_t size)
     for (int i = 0; i < N; i++) {
         kel_query other = { KEL_EXPANSION, 0, from[i], 0, NAN, -1 };
         for (int q = 0; q < QUANTITIES; q++) {
-            kel_query query = { (kel_quantity)q, from[i], to[i], from[i], i % 3 == 0 ? 250.0 : (double)NAN, i % 2 == 0 ? -1 : KEL_BASE_CURRENT };
+            kel_query query = { (kel_quantity)q, from[i], to[i], from[i], i % 3 == 0 ? 250.0 : (double)NAN,
+                                i % 2 == 0 ? -1 : KEL_BASE_CURRENT };
             kel_record_answer(&out->answer[q][i], record, &query, &err);
             if (q == KEL_INTEGRAL)
                 kel_record_covariance(&out->covariance[i], record, &query, &other, &err);

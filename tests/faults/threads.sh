@@ -19,9 +19,13 @@ skip() {
 }
 
 # Some kernels place memory where the sanitizer does not expect it; without random places it works.
-printf '#include <pthread.h>\nstatic void *f(void *p) { return p; }\nint main(void) { pthread_t t; return pthread_create(&t, 0, f, 0) || pthread_join(t, 0); }\n' \
-    >"$folder/try.c"
-$CC -fsanitize=thread "$folder/try.c" -o "$folder/try" -lpthread >"$folder/log" 2>&1 || skip "$CC has no thread sanitizer"
+cat >"$folder/try.c" <<'END'
+#include <pthread.h>
+static void *f(void *p) { return p; }
+int main(void) { pthread_t t; return pthread_create(&t, 0, f, 0) || pthread_join(t, 0); }
+END
+$CC -fsanitize=thread "$folder/try.c" -o "$folder/try" -lpthread >"$folder/log" 2>&1 ||
+    skip "$CC has no thread sanitizer"
 run=
 "$folder/try" >"$folder/log" 2>&1 || {
     run="setarch $(uname -m) -R"
@@ -30,8 +34,9 @@ run=
 
 echo "1..2"
 # shellcheck disable=SC2086
-if ! $CC -std=gnu17 -D_GNU_SOURCE -ffp-contract=off -O1 -g -fsanitize=thread -I"$source/lib/include" -I"$source/lib/core" \
-    "$source"/lib/core/*.c "$source/tests/faults/threads.c" $DEPENDENCIES -lm -lpthread -o "$folder/threads" >"$folder/log" 2>&1
+if ! $CC -std=gnu17 -D_GNU_SOURCE -ffp-contract=off -O1 -g -fsanitize=thread \
+    -I"$source/lib/include" -I"$source/lib/core" "$source"/lib/core/*.c "$source/tests/faults/threads.c" \
+    $DEPENDENCIES -lm -lpthread -o "$folder/threads" >"$folder/log" 2>&1
 then
     sed 's/^/# /' "$folder/log"
     echo "not ok 1 threads.c and libkelspan under the thread sanitizer: they do not compile"
@@ -42,7 +47,9 @@ failed=0
 n=0
 for record in good-record.json good-record-modes.json; do
     n=$((n + 1))
-    if TSAN_OPTIONS="halt_on_error=1 exitcode=66" $run "$folder/threads" "$source/tests/data/$record" >"$folder/log" 2>&1; then
+    if TSAN_OPTIONS="halt_on_error=1 exitcode=66" $run "$folder/threads" "$source/tests/data/$record" \
+        >"$folder/log" 2>&1
+    then
         echo "ok $n $record: $(tail -n 1 "$folder/log")"
     else
         failed=1
